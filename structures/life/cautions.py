@@ -1,0 +1,189 @@
+"""The one list of cautions: code, level, words. Pages, sheets and commands print from here.
+
+Levels: block (not to be built or sanctioned so), hold (kept out until decided), warn, note.
+The program never declares a trench, a slope, a pit or a water safe. Source: handbook section 11.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Final
+
+if TYPE_CHECKING:
+    from structures.errors import Level
+
+CLOSING_SENTENCE: Final = "Local codes and licensed practice decide; this sheet does not."
+
+
+@dataclass(frozen=True, slots=True)
+class Caution:
+    """One caution as it is printed."""
+
+    code: str
+    level: Level
+    text: str
+
+
+# code -> (level, words); braces are filled in by `caution`.
+CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
+    # rock
+    "rock-not-known": (
+        "block",
+        "No rock line: {why} Bore, or open a pit under the trench rules, until rock is met at two "
+        "places or more, or have a licensed engineer settle the line.",
+    ),
+    "rock-untied": (
+        "hold",
+        "Soundings alone give the top of weathered or of sheet rock{where}. Good for a preliminary "
+        "estimate, for no design: meet rock in a bore, pit or outcrop on the same line.",
+    ),
+    "rock-bounds-contradict": (
+        "warn",
+        "Tests contradict each other near {where}: {what} Look at the records, or bore there.",
+    ),
+    "rock-bounds-thinned": (
+        "note",
+        "{count} of {total} probes and soil holes bound the line no further and were left out of "
+        "the draws; the deepest in each 2 m was kept.",
+    ),
+    "rock-default-spread": (
+        "note",
+        "Range {range_m:g} m and sill {sill_m2:.2f} m2 of the rock line are defaults: {count} "
+        "observations, 15 are needed to fit them.",
+    ),
+    "rock-line-above-test": (
+        "block",
+        "The settled rock line stands at {line_m:.2f} m at offset {offset_m:.2f} m, but {test} "
+        "went down to {test_m:.2f} m. Lower the line.",
+    ),
+    "sounding-differs": (
+        "warn",
+        "Sounding {label} reads rock at {depth_m:.1f} m ({low_m:.1f} to {high_m:.1f} m); the "
+        "settled line has it at {line_m:.1f} m. Say why in the record, or bore there.",
+    ),
+    "sounding-not-interpretable": (
+        "warn",
+        "Sounding {label} gives no depth of rock: {why}",
+    ),
+    "refraction-not-interpretable": (
+        "warn",
+        "Refraction line {label} gives no depth of rock: {why}",
+    ),
+    # wall
+    "flank-open-left": (
+        "block",
+        "OPEN left flank: at {offset_m:.2f} m, where the rock line ends, rock is still {below_m:.2f} m "
+        "below the bed. Survey further out; quantities are those of the surveyed part.",
+    ),
+    "flank-open-right": (
+        "block",
+        "OPEN right flank: at {offset_m:.2f} m, where the rock line ends, rock is still {below_m:.2f} m "
+        "below the bed. Survey further out; quantities are those of the surveyed part.",
+    ),
+    "low-ground-left": (
+        "warn",
+        "Low ground on the left from {from_m:.2f} to {to_m:.2f} m: ground lies under the bed level, "
+        "water leaves at the surface there, whatever the wall does.",
+    ),
+    "low-ground-right": (
+        "warn",
+        "Low ground on the right from {from_m:.2f} to {to_m:.2f} m: ground lies under the bed level, "
+        "water leaves at the surface there, whatever the wall does.",
+    ),
+    "rock-bar": (
+        "note",
+        "Rock stands above the crest from {from_m:.2f} to {to_m:.2f} m: the wall is interrupted "
+        "there and keyed to the rock on each side.",
+    ),
+    "trench-deep": (
+        "block",
+        "The trench goes {depth_m:.2f} m down to the bottom of the key, over {limit_m:g} m: it "
+        "needs a licensed design.",
+    ),
+    "side-steep": (
+        "block",
+        "Sides of {slope:g} across to 1 up are steeper than {limit:g}. Flatten them, or name the "
+        "signed support design of a licensed engineer in works.support_design.",
+    ),
+    "side-drained": (
+        "warn",
+        "Sides of {slope:g} across to 1 up stand only where the sand is drained and a licensed "
+        "engineer signs for it.",
+    ),
+    "side-supported": (
+        "warn",
+        "Sides of {slope:g} across to 1 up rest on the support design named: {design}.",
+    ),
+    "default-changed": (
+        "warn",
+        "{words}: {value:g} {unit} instead of {default:g} (accepted {low:g} to {high:g}). A licensed "
+        "engineer's name, licence number, date and reason are asked for.",
+    ),
+    "default-used": (
+        "note",
+        "{words} was not measured: {value:g} {unit} is taken ({source}).",
+    ),
+    # money
+    "estimate-incomplete": ("block", "The estimate is incomplete: {lines}."),
+    "rates-out-of-date": (
+        "warn",
+        "The rate schedule {schedule} ended on {ended}. Price again with this year's rates.",
+    ),
+    # works and water
+    "trench-collapse": (
+        "warn",
+        "Sand stands only while damp; a wet or drying face fails without warning, in seconds. From "
+        "1.2 m on nobody enters a cut without slope or support; nobody goes in alone, or where the "
+        "day's look says stop. " + CLOSING_SENTENCE,
+    ),
+    "edge": (
+        "warn",
+        "Spoil and machines stay {distance_m:.2f} m or more from the edge: nobody goes in until "
+        "they are moved. A ladder within 7.6 m from 1.2 m depth; fence and light at night. "
+        + CLOSING_SENTENCE,
+    ),
+    "pumping": (
+        "warn",
+        "Pumping from inside the trench pulls sand from the sides: sump off the wall line. If the "
+        "pump stops, people leave. Nearby wells and footings can suffer: tell their owners first. "
+        + CLOSING_SENTENCE,
+    ),
+    "uplift": (
+        "warn",
+        "A clay layer can hold water under pressure beneath it. A licensed engineer checks the cover "
+        "against uplift before each lift; this program gives no pass for it. " + CLOSING_SENTENCE,
+    ),
+    "flood": (
+        "warn",
+        "A stream can come from rain nobody saw: dry season only, a watch upstream with an agreed "
+        "signal, no tools worth going back for. " + CLOSING_SENTENCE,
+    ),
+    "geophysics": (
+        "note",
+        "Geophysics gives a range, not a fact. Boulders pass for rock, thin layers hide; only rock "
+        "seen in the trench is seen.",
+    ),
+    "raw-water": (
+        "note",
+        "Water behind the wall is raw water: treat and test it under local rules. This program never "
+        "says it may be drunk.",
+    ),
+    "downstream": (
+        "note",
+        "Water held above is water not passing below. People below are heard before sanction and "
+        "their wells are read before.",
+    ),
+    "water-not-known": ("note", "{what} cannot be computed: {why}."),
+}
+
+
+def caution(code: str, **values: object) -> Caution:
+    """Give the caution of a code with its words filled in.
+
+    Raises
+    ------
+    KeyError
+        If the code is not in the list, or a value for its words is missing.
+    """
+    level, words = CATALOGUE[code]
+    return Caution(code, level, words.format(**values))
