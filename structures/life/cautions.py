@@ -29,13 +29,17 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     # rock
     "rock-not-known": (
         "block",
-        "No rock line: {why} Bore, or open a pit under the trench rules, until rock is met at two "
-        "places or more, or have a licensed engineer settle the line.",
+        (
+            "No rock line: {why} Bore, or open a pit under the trench rules, until rock is met at two "
+            "places or more, or have a licensed engineer settle the line."
+        ),
     ),
     "rock-untied": (
         "hold",
-        "Soundings alone give the top of weathered or of sheet rock{where}. Good for a preliminary "
-        "estimate, for no design: meet rock in a bore, pit or outcrop on the same line.",
+        (
+            "Soundings alone give the top of weathered or of sheet rock{where}. Good for a preliminary "
+            "estimate, for no design: meet rock in a bore, pit or outcrop on the same line."
+        ),
     ),
     "rock-bounds-contradict": (
         "warn",
@@ -43,23 +47,31 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     ),
     "rock-bounds-thinned": (
         "note",
-        "{count} of {total} probes and soil holes bound the line no further and were left out of "
-        "the draws; the deepest in each 2 m was kept.",
+        (
+            "{count} of {total} probes and soil holes bound the line no further and were left out of "
+            "the draws; the deepest in each 2 m was kept."
+        ),
     ),
     "rock-default-spread": (
         "note",
-        "Range {range_m:g} m and sill {sill_m2:.2f} m2 of the rock line are defaults: {count} "
-        "observations, 15 are needed to fit them.",
+        (
+            "Range {range_m:g} m and sill {sill_m2:.2f} m2 of the rock line are defaults: {count} "
+            "observations, 15 are needed to fit them."
+        ),
     ),
     "rock-line-above-test": (
         "block",
-        "The settled rock line stands at {line_m:.2f} m at offset {offset_m:.2f} m, but {test} "
-        "went down to {test_m:.2f} m. Lower the line.",
+        (
+            "The settled rock line stands at {line_m:.2f} m at offset {offset_m:.2f} m, but {test} "
+            "went down to {test_m:.2f} m. Lower the line."
+        ),
     ),
     "sounding-differs": (
         "warn",
-        "Sounding {label} reads rock at {depth_m:.1f} m ({low_m:.1f} to {high_m:.1f} m); the "
-        "settled line has it at {line_m:.1f} m. Say why in the record, or bore there.",
+        (
+            "Sounding {label} reads rock at {depth_m:.1f} m ({low_m:.1f} to {high_m:.1f} m); the "
+            "settled line has it at {line_m:.1f} m. Say why in the record, or bore there."
+        ),
     ),
     "sounding-not-interpretable": (
         "warn",
@@ -72,43 +84,59 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     # wall
     "flank-open-left": (
         "block",
-        "OPEN left flank: at {offset_m:.2f} m, where the rock line ends, rock is still {below_m:.2f} m "
-        "below the bed. Survey further out; quantities are those of the surveyed part.",
+        (
+            "OPEN left flank: at {offset_m:.2f} m, where the rock line ends, rock is still {below_m:.2f} m "
+            "below the bed. Survey further out; quantities are those of the surveyed part."
+        ),
     ),
     "flank-open-right": (
         "block",
-        "OPEN right flank: at {offset_m:.2f} m, where the rock line ends, rock is still {below_m:.2f} m "
-        "below the bed. Survey further out; quantities are those of the surveyed part.",
+        (
+            "OPEN right flank: at {offset_m:.2f} m, where the rock line ends, rock is still {below_m:.2f} m "
+            "below the bed. Survey further out; quantities are those of the surveyed part."
+        ),
     ),
     "low-ground-left": (
         "warn",
-        "Low ground on the left from {from_m:.2f} to {to_m:.2f} m: ground lies under the bed level, "
-        "water leaves at the surface there, whatever the wall does.",
+        (
+            "Low ground on the left from {from_m:.2f} to {to_m:.2f} m: ground lies under the bed level, "
+            "water leaves at the surface there, whatever the wall does."
+        ),
     ),
     "low-ground-right": (
         "warn",
-        "Low ground on the right from {from_m:.2f} to {to_m:.2f} m: ground lies under the bed level, "
-        "water leaves at the surface there, whatever the wall does.",
+        (
+            "Low ground on the right from {from_m:.2f} to {to_m:.2f} m: ground lies under the bed level, "
+            "water leaves at the surface there, whatever the wall does."
+        ),
     ),
     "rock-bar": (
         "note",
-        "Rock stands above the crest from {from_m:.2f} to {to_m:.2f} m: the wall is interrupted "
-        "there and keyed to the rock on each side.",
+        (
+            "Rock stands above the crest from {from_m:.2f} to {to_m:.2f} m: the wall is interrupted "
+            "there and keyed to the rock on each side."
+        ),
     ),
     "trench-deep": (
         "block",
-        "The trench goes {depth_m:.2f} m down to the bottom of the key, over {limit_m:g} m: it "
-        "needs a licensed design.",
+        (
+            "The trench goes {depth_m:.2f} m down to the bottom of the key, over {limit_m:g} m: it "
+            "needs a licensed design."
+        ),
     ),
     "side-steep": (
         "block",
-        "Sides of {slope:g} across to 1 up are steeper than {limit:g}. Flatten them, or name the "
-        "signed support design of a licensed engineer in works.support_design.",
+        (
+            "Sides of {slope:g} across to 1 up are steeper than {limit:g}. Flatten them, or name the "
+            "signed support design of a licensed engineer in works.support_design."
+        ),
     ),
     "side-drained": (
         "warn",
-        "Sides of {slope:g} across to 1 up stand only where the sand is drained and a licensed "
-        "engineer signs for it.",
+        (
+            "Sides of {slope:g} across to 1 up stand only where the sand is drained and a licensed "
+            "engineer signs for it."
+        ),
     ),
     "side-supported": (
         "warn",
@@ -116,8 +144,10 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     ),
     "default-changed": (
         "warn",
-        "{words}: {value:g} {unit} instead of {default:g} (accepted {low:g} to {high:g}). A licensed "
-        "engineer's name, licence number, date and reason are asked for.",
+        (
+            "{words}: {value:g} {unit} instead of {default:g} (accepted {low:g} to {high:g}). A licensed "
+            "engineer's name, licence number, date and reason are asked for."
+        ),
     ),
     "default-used": (
         "note",
@@ -160,18 +190,24 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     ),
     "geophysics": (
         "note",
-        "Geophysics gives a range, not a fact. Boulders pass for rock, thin layers hide; only rock "
-        "seen in the trench is seen.",
+        (
+            "Geophysics gives a range, not a fact. Boulders pass for rock, thin layers hide; only rock "
+            "seen in the trench is seen."
+        ),
     ),
     "raw-water": (
         "note",
-        "Water behind the wall is raw water: treat and test it under local rules. This program never "
-        "says it may be drunk.",
+        (
+            "Water behind the wall is raw water: treat and test it under local rules. This program never "
+            "says it may be drunk."
+        ),
     ),
     "downstream": (
         "note",
-        "Water held above is water not passing below. People below are heard before sanction and "
-        "their wells are read before.",
+        (
+            "Water held above is water not passing below. People below are heard before sanction and "
+            "their wells are read before."
+        ),
     ),
     "water-not-known": ("note", "{what} cannot be computed: {why}."),
 }
