@@ -117,6 +117,13 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
             "there and keyed to the rock on each side."
         ),
     ),
+    "no-wall": (
+        "warn",
+        (
+            "Rock stands at or above the crest all along the surveyed line: there is no room for a "
+            "wall and none is measured. Look at another line."
+        ),
+    ),
     "trench-deep": (
         "block",
         (
