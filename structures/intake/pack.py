@@ -79,12 +79,16 @@ class SoundingReading:
 
 @dataclass(frozen=True, slots=True)
 class Sounding:
-    """One electrical sounding; `offset_m` is None where only the curve was handed in."""
+    """One electrical sounding; `offset_m` is None where only the curve was handed in.
+
+    `findings` is filled for such a lone curve; those of a pack's soundings stand in the pack.
+    """
 
     offset_m: float | None
     array: Literal["schlumberger", "wenner"]
     readings: tuple[SoundingReading, ...]
     label: str
+    findings: tuple[Finding, ...] = field(default=(), compare=False)
 
 
 @dataclass(frozen=True, slots=True)
@@ -170,11 +174,20 @@ class Works:
 
 
 @dataclass(frozen=True, slots=True)
+class Note:
+    """Something handed in that a pack has no place for, kept as it was written."""
+
+    where: str
+    field: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True)
 class SurveyPack:
     """One site's survey, read and found usable.
 
     `rock_line` is None where none was settled. `findings` holds what the reader doubts but keeps
-    (levels "hold", "warn", "note"), unknown keys among them.
+    (levels "hold", "warn", "note"), unknown keys among them; `notes` holds what those keys said.
     """
 
     site: Site
@@ -189,3 +202,4 @@ class SurveyPack:
     wall: WallSettings = WallSettings()
     works: Works = Works()
     findings: tuple[Finding, ...] = field(default=(), compare=False)
+    notes: tuple[Note, ...] = field(default=(), compare=False)
