@@ -48,10 +48,10 @@ def build_pack(root: Node, ledger: Ledger) -> SurveyPack:
         raise refusal(ledger)
     parts.read_version(root.named("pack"), ledger)
     parts.tell_unknown_parts(root, ledger)
-    site = parts.read_site(_open(root, "site"), ledger)
+    site = None if "site" in ledger.unread else parts.read_site(_open(root, "site"), ledger)
     ground = _ground(root, ledger)
     toes_node = _open(root, "toes")
-    toes = parts.read_toes(toes_node, ledger)
+    toes = None if "toes" in ledger.unread else parts.read_toes(toes_node, ledger)
     read = _tests(root, ledger)
     water_node = _open(root, "ground_water")
     water = parts.read_ground_water(water_node, ledger)
@@ -107,6 +107,8 @@ def _ground(root: Node, ledger: Ledger) -> list[Placed[GroundPoint]]:
     """Read the ground; empty where anything in it is wrong, so that nothing is judged by it."""
     node = root.named("ground")
     blocks = ledger.blocks
+    if "ground" in ledger.unread:
+        return []
     if node.value is None:
         ledger.add(node, "The ground points are missing.", "Give two or more, from the left bank.")
         return []

@@ -100,13 +100,15 @@ class Ledger:
     """Findings and notes in the order in which they were met.
 
     `blocks` counts the findings that forbid keeping what was handed in; `told` names the fields
-    that nobody knows and that were told of once.
+    that nobody knows and that were told of once; `unread` names tables that are there and cannot
+    be read, so that they are not called missing as well.
     """
 
     findings: list[Finding] = field(default_factory=list)
     notes: list[Note] = field(default_factory=list)
     blocks: int = 0
     told: set[str] = field(default_factory=set)
+    unread: set[str] = field(default_factory=set)
 
     def add(
         self, node: Node, what: str, remedy: str, *, level: Level = "block", rule: str = ""

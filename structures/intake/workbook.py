@@ -1,0 +1,156 @@
+"""XLSX bytes to tables, one a sheet; findings name cells as the person sees them (ground!B4).
+
+Before a workbook is opened its XML is scanned for what would make a small file large: a value far
+from the table, one long text repeated in many cells.
+"""
+
+from __future__ import annotations
+
+import io
+import re
+from html import unescape
+from typing import TYPE_CHECKING, Final
+
+from openpyxl.utils.cell import column_index_from_string, get_column_letter
+from python_calamine import CalamineError, CalamineWorkbook, SheetTypeEnum
+
+from structures.intake.archive import FILE_MOST_BYTES, read_archive
+from structures.intake.table_form import is_part
+from structures.intake.tables import COLUMNS_MOST, Cell, Row, Table, make_table, plain_digits
+from structures.intake.tree import Node, shown
+
+if TYPE_CHECKING:
+    from structures.intake.tree import Ledger
+
+BOOK: Final = "xl/workbook.xml"
+LINKS: Final = "xl/_rels/workbook.xml.rels"
+LAST_ROW: Final = 50_000  # a survey's tables have some hundred rows
+TEXT_MOST_BYTES: Final = 10 * FILE_MOST_BYTES  # longest text times cells, before it is spread out
+_VALUE: Final = re.compile(
+    rb"(?i)<(?:\w+:)?c\s[^>]*?\br=[\"']([A-Z]{1,3})([0-9]{1,9})[\"'][^>]*?[^/>]>"
+)
+_FORMULA: Final = re.compile(
+    rb"<(?:\w+:)?c\s[^>]*?\br=[\"']([A-Z]{1,3}[0-9]{1,9})[\"'][^>]*>\s*<(?:\w+:)?f[\s/>]"
+)
+_SHEET: Final = re.compile(rb"<(?:\w+:)?sheet\s[^>]*>")
+_LINK: Final = re.compile(rb"<(?:\w+:)?Relationship\s[^>]*>")
+_LONG_TEXT: Final = re.compile(rb"<(?:\w+:)?si[\s>].*?</(?:\w+:)?si>", re.DOTALL)
+
+
+def read_workbook(name: str, data: bytes, ledger: Ledger) -> list[Table]:
+    """Read the sheets of a workbook that a pack has; none, with findings, where it cannot be read.
+
+    A formula counts as the value it had when the workbook was saved; one without a value is
+    refused at its cell.
+    """
+    blocks = ledger.blocks
+    entries = read_archive(name, data, ledger)
+    _check_size(name, entries, ledger)
+    if ledger.blocks > blocks:
+        return []
+    try:
+        sheets = _sheets(data)
+    except (CalamineError, ValueError, OSError) as error:
+        what = f"The workbook cannot be read: {shown(str(error))}."
+        ledger.add(Node(None, name), what, "Save it again as XLSX.")
+        return []
+    formulas = _formulas(entries)
+    tables = []
+    for title, rows in sheets:
+        if not is_part(title.strip().lower(), f"{name} {shown(title)[1:-1]}", ledger):
+            continue
+        _tell_formulas(name, title, rows, formulas.get(title, []), ledger)
+        table = _table(name, title, rows, ledger)
+        if table is None:
+            ledger.unread.add(title.strip().lower())
+        else:
+            tables.append(table)
+    return tables
+
+
+def _sheets(data: bytes) -> list[tuple[str, list[list[object]]]]:
+    book = CalamineWorkbook.from_filelike(io.BytesIO(data))
+    return [
+        (sheet.name, book.get_sheet_by_name(sheet.name).to_python(skip_empty_area=False))
+        for sheet in book.sheets_metadata
+        if sheet.typ == SheetTypeEnum.WorkSheet
+    ]
+
+
+def _table(name: str, title: str, rows: list[list[object]], ledger: Ledger) -> Table | None:
+    where = f"{name} {shown(title)[1:-1]}"
+    lines = [
+        Row(
+            tuple(
+                Cell(
+                    value.strip() if isinstance(value, str) else value,
+                    f"{where}!{get_column_letter(column)}{line}",
+                )
+                for column, value in enumerate(values, start=1)
+            ),
+            f"{where} row {line}",
+        )
+        for line, values in enumerate(rows, start=1)
+    ]
+    return make_table(title.strip().lower(), where, plain_digits(lines, where, ledger), ledger)
+
+
+def _check_size(name: str, entries: dict[str, bytes], ledger: Ledger) -> None:
+    longest = cells = 0
+    for inner, content in entries.items():
+        if not inner.endswith(".xml"):
+            continue
+        if b"\0" in content or b"<!DOCTYPE" in content:
+            ledger.add(
+                Node(None, name), f"{shown(inner)} is no plain XML.", "Save it again as XLSX."
+            )
+        for letters, digits in _VALUE.findall(content):
+            cells += 1
+            column = column_index_from_string(letters.decode())
+            if int(digits) > LAST_ROW or column > COLUMNS_MOST:
+                place = f"{name} {inner.rsplit('/', 1)[-1]}!{letters.decode()}{digits.decode()}"
+                what = "A value stands far from the table."
+                ledger.add(Node(None, place), what, "Delete it and save again.", rule="FI-02")
+                return
+        longest = max([longest, *(len(text) for text in _LONG_TEXT.findall(content))])
+    if longest * cells > TEXT_MOST_BYTES:
+        what = "The texts of this workbook are too long."
+        ledger.add(Node(None, name), what, "Save the tables alone.", rule="FI-02")
+
+
+def _formulas(entries: dict[str, bytes]) -> dict[str, list[str]]:
+    """Give the addresses of formula cells by the sheet's title."""
+    parts = {
+        _attribute(link, b"Id"): _attribute(link, b"Target").removeprefix("/").removeprefix("xl/")
+        for link in _LINK.findall(entries.get(LINKS, b""))
+    }
+    return {
+        _attribute(sheet, b"name"): [
+            address.decode()
+            for address in _FORMULA.findall(
+                entries.get("xl/" + parts.get(_attribute(sheet, rb"\w+:id"), ""), b"")
+            )
+        ]
+        for sheet in _SHEET.findall(entries.get(BOOK, b""))
+    }
+
+
+def _attribute(tag: bytes, name: bytes) -> str:
+    found = re.search(rb"\s" + name + rb"=[\"']([^\"']*)[\"']", tag)
+    return unescape(found[1].decode(errors="replace")) if found else ""
+
+
+def _tell_formulas(
+    name: str, title: str, rows: list[list[object]], addresses: list[str], ledger: Ledger
+) -> None:
+    for address in addresses:
+        letters, digits = re.fullmatch(r"([A-Z]+)([0-9]+)", address).groups()
+        line, column = int(digits) - 1, column_index_from_string(letters) - 1
+        value = rows[line][column] if line < len(rows) and column < len(rows[line]) else ""
+        node = Node(None, f"{name} {shown(title)[1:-1]}!{address}")
+        if value == "":
+            ledger.add(node, "A formula without a value stands here.", "Type the value itself.")
+    if addresses:
+        node = Node(None, f"{name} {shown(title)[1:-1]}!{addresses[0]}")
+        what = f"{len(addresses)} cells hold formulas; the values last computed were read."
+        ledger.add(node, what, "Type the values where they matter.", level="note")
