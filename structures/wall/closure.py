@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from structures.wall.section import SAME_LEVEL_M
+
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
@@ -51,7 +53,7 @@ def _outward(
     if not x[0] <= toe_m <= x[-1]:
         return np.full(draws, x[-1]), np.zeros(draws, dtype=bool)
     start = int(np.searchsorted(x, toe_m))
-    high = rock[:, start:] >= closing_m
+    high = rock[:, start:] >= closing_m - SAME_LEVEL_M
     closed = high.any(axis=1)
     j = start + np.where(closed, high.argmax(axis=1), 0)
     rows = np.arange(draws)
@@ -59,5 +61,5 @@ def _outward(
     low, reached = rock[rows, before], rock[rows, j]
     climbed = j > before  # not so where the rock is that high at the toe itself
     share = np.divide(closing_m - low, reached - low, out=np.ones(draws), where=climbed)
-    crossing = x[before] + (x[j] - x[before]) * share
+    crossing = x[before] + (x[j] - x[before]) * np.minimum(share, 1.0)
     return np.where(closed, crossing, x[-1]), closed

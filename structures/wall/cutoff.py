@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from structures.wall.closure import Ends, find_ends
+from structures.wall.section import SAME_LEVEL_M
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -127,8 +128,8 @@ def cut(section: Section) -> Cutoff:
     ends = find_ends(section)
     x0, x1 = section.offset_m[:-1], section.offset_m[1:]
     top0, top1 = section.top_m
-    room0 = top0 - section.rock_m[:, :-1]
-    room1 = top1 - section.rock_m[:, 1:]
+    room0 = _room_m(top0, section.rock_m[:, :-1])
+    room1 = _room_m(top1, section.rock_m[:, 1:])
     # Where only one side has room the top meets the rock between them.
     meets = (room0 > 0.0) != (room1 > 0.0)
     share = np.divide(room0, room0 - room1, out=np.zeros_like(room0), where=meets)
@@ -141,6 +142,12 @@ def cut(section: Section) -> Cutoff:
     stop = np.where(buried | (stop < start), start, stop)
     tops = (top0, top1)
     return Cutoff(section, ends, _upright(section, tops, start), _upright(section, tops, stop))
+
+
+def _room_m(top: NDArray, rock: NDArray) -> NDArray[np.float64]:
+    """Height of the top over the rock; a height of rounding only is none, or it would get a key."""
+    room = top - rock
+    return np.where(np.abs(room) > SAME_LEVEL_M, room, 0.0)
 
 
 def _upright(section: Section, tops: tuple[NDArray, NDArray], at_m: NDArray) -> Upright:

@@ -7,7 +7,7 @@ draws, and a single line is one draw.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
@@ -18,6 +18,10 @@ if TYPE_CHECKING:
     from numpy.typing import ArrayLike, NDArray
 
     from structures.intake.pack import GroundPoint, Toes, WallSettings
+
+SAME_LEVEL_M: Final = (
+    1e-9  # rounding of interpolated levels; they are booked to 0.001, handbook 1.4
+)
 
 
 @dataclass(frozen=True, eq=False, slots=True)
