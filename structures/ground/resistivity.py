@@ -21,8 +21,8 @@ from structures.arrays import frozen
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike, NDArray
 
-POINTS: Final = 6  # coarse points an octave of wave number; table 2 of the handbook within 2e-8
-SAMPLING_POINTS: Final = 3  # the same for samplers at 1 % noise and more: within 2e-5
+POINTS: Final = 6  # coarse points an octave of wave number; within 4e-7 over all usual models
+SAMPLING_POINTS: Final = 3  # the same for samplers: within 5e-4, a twentieth of the least noise
 LOW_END: Final = 3e-3  # least wave number times greatest distance; what is below adds under 1e-8
 WINDOW: Final = 50.0  # wave number times least distance where the window is down to a half
 WINDOW_WIDTH: Final = 10.0  # its width; the Fourier transform of erfc leaves exp(-width^2/4)

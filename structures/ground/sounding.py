@@ -44,7 +44,8 @@ LEAST_READINGS: Final = 8  # field rule SO-08
 LEAST_AB2_M: Final = 15.0  # [A] the prior ends at a third of it: 5 m, a shallow wall
 SPREAD_TO_DEPTH: Final = 5.0  # handbook 2.9: the widest AB/2 over the depth looked for
 LOW, MEDIAN, HIGH = 0.10, 0.50, 0.90  # handbook 4.8
-RESOLVED_SHARE: Final = 0.5  # handbook 2: an sd over half the depth is no resolved layer
+# Handbook 2: an sd over half the depth is no resolved layer; a normal spread has a range of 2.56 sd.
+WIDEST_RANGE: Final = 1.28  # of the median, 10 to 90 %
 EQUIVALENT_SHARES: Final = (0.1, 0.3, 0.5, 0.7, 0.9)  # [A] of the depth range, one model each
 
 
@@ -327,12 +328,12 @@ def _doubt(fit: Fit, ensemble: Ensemble, fitting: NDArray, prior: Prior) -> Refu
             f"models that fit, {100 * rock.share:.0f} % is asked. Soil may go deeper than the spread "
             "reaches, or weathered rock over sheet rock may blur the contrast. Bore, or open a pit.",
         )
-    median, sd = ensemble.depth_quantile_m(MEDIAN), ensemble.depth_sd_m
-    if sd > RESOLVED_SHARE * median:
+    low, median, high = (ensemble.depth_quantile_m(share) for share in (LOW, MEDIAN, HIGH))
+    if high - low > WIDEST_RANGE * median:
         return Refusal(
             "not-resolved",
-            f"the layers are not resolved: the depth of rock is {median:.2g} m with a standard "
-            f"deviation of {sd:.2g} m. Measure the saturated sand at an open well or pit, or bore.",
+            f"the layers are not resolved: rock may lie anywhere from {low:.2g} to {high:.2g} m. "
+            "Measure the saturated sand at an open well or pit, or bore.",
         )
     return None
 
