@@ -16,7 +16,7 @@ from structures.intake.line_checks import (
     check_toes,
     check_water_level,
 )
-from structures.intake.pack import GroundWater, SurveyPack, WallSettings, Works
+from structures.intake.pack import SurveyPack
 from structures.intake.probe_checks import check_gaps, check_lone_refusal, check_rod
 from structures.intake.tree import Ledger, Node, shown
 
@@ -52,7 +52,7 @@ def build_pack(root: Node, ledger: Ledger) -> SurveyPack:
     ground = _ground(root, ledger)
     toes_node = _open(root, "toes")
     toes = None if "toes" in ledger.unread else parts.read_toes(toes_node, ledger)
-    read = _tests(root, ledger)
+    read, sound = _tests(root, ledger)
     water_node = _open(root, "ground_water")
     water = parts.read_ground_water(water_node, ledger)
     wall = parts.read_wall(_open(root, "wall"), ledger)
@@ -60,7 +60,9 @@ def build_pack(root: Node, ledger: Ledger) -> SurveyPack:
     if ground:
         if toes:
             _check_line(toes, toes_node, ground, ledger)
-        _check_tests(read, ground, toes, ledger)
+        placed = _check_places(read, ground, ledger)
+        if toes and sound and placed:
+            _doubt_tests(read, ground, toes, ledger)
         if water:
             check_water_level(water, water_node, ground, ledger)
     if ledger.blocks:
@@ -74,9 +76,9 @@ def build_pack(root: Node, ledger: Ledger) -> SurveyPack:
         soundings=_records(read["soundings"]),
         refraction=_records(read["refraction"]),
         rock_line=_records(read["rock_line"]) or None,
-        ground_water=water or GroundWater(),
-        wall=wall or WallSettings(),
-        works=works or Works(),
+        ground_water=water,
+        wall=wall,
+        works=works,
         findings=tuple(ledger.findings),
         notes=tuple(ledger.notes),
     )
@@ -117,7 +119,8 @@ def _ground(root: Node, ledger: Ledger) -> list[Placed[GroundPoint]]:
     return ground if ledger.blocks == blocks else []
 
 
-def _tests(root: Node, ledger: Ledger) -> dict[str, list[Placed]]:
+def _tests(root: Node, ledger: Ledger) -> tuple[dict[str, list[Placed]], bool]:
+    """Read what was found under the ground, and say whether all of it could be read."""
     readers = {
         "rock": parts.read_rock,
         "probes": parts.read_probes,
@@ -126,10 +129,12 @@ def _tests(root: Node, ledger: Ledger) -> dict[str, list[Placed]]:
         "rock_line": parts.read_rock_line,
     }
     nodes = {part: root.named(part) for part in readers}
-    return {
+    blocks = ledger.blocks
+    read = {
         part: [] if node.value is None else readers[part](node, ledger)
         for part, node in nodes.items()
     }
+    return read, ledger.blocks == blocks
 
 
 def _check_line(toes: Toes, node: Node, ground: list[Placed[GroundPoint]], ledger: Ledger) -> None:
@@ -139,28 +144,30 @@ def _check_line(toes: Toes, node: Node, ground: list[Placed[GroundPoint]], ledge
         check_section(toes, ground, ledger)
 
 
-def _check_tests(
-    read: dict[str, list[Placed]],
-    ground: list[Placed[GroundPoint]],
-    toes: Toes | None,
-    ledger: Ledger,
+def _check_places(
+    read: dict[str, list[Placed]], ground: list[Placed[GroundPoint]], ledger: Ledger
+) -> bool:
+    """Refuse what lies outside the ground, or a rock line above it; true where nothing does."""
+    blocks = ledger.blocks
+    for part in ("rock", "probes", "soundings", "refraction"):
+        check_inside(read[part], ground, ledger)
+    if read["rock_line"]:
+        check_rock_line(read["rock_line"], ground, ledger)
+    return ledger.blocks == blocks
+
+
+def _doubt_tests(
+    read: dict[str, list[Placed]], ground: list[Placed[GroundPoint]], toes: Toes, ledger: Ledger
 ) -> None:
+    """Doubt tests by their neighbours; only once every one of them stands where it should."""
     rock: list[Placed[RockTest]] = read["rock"]
     probes: list[Placed[Probe]] = read["probes"]
     line: list[Placed[RockLinePoint]] = read["rock_line"]
-    inside = [
-        check_inside(read[part], ground, ledger)
-        for part in ("rock", "probes", "soundings", "refraction")
-    ]
     check_depths([*rock, *probes], ground, ledger)
     check_lone_refusal(probes, ground, ledger)
     check_rod(probes, ledger)
-    if toes:
-        check_gaps(probes, rock, toes, ledger)
-    blocks = ledger.blocks
+    check_gaps(probes, rock, toes, ledger)
     if line:
-        check_rock_line(line, ground, ledger)
-    if line and all(inside) and ledger.blocks == blocks:
         soil = [placed for placed in rock if not placed.record.met_rock]
         check_feet(line, [*probes, *soil], ground, ledger)
 

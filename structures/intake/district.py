@@ -234,7 +234,7 @@ def _works(drawn: Rows, rules: Node, ledger: Ledger) -> Node:
     if not drawn:
         return Node(None, "", "works", tabular=True)
     length_m = _number(drawn[0], "right_end_m", ledger) - _number(drawn[0], "left_end_m", ledger)
-    strips = math.ceil(length_m / _number(rules, "strip_m", ledger) - STRIP_SLACK)
-    hours = strips * _number(rules, "pump_hours_per_strip", ledger)
-    value = Node(hours, drawn[0].where, "works.pump_hours", tabular=True)
+    strip_m, hours = (_number(rules, key, ledger) for key in ("strip_m", "pump_hours_per_strip"))
+    strips = math.ceil(length_m / strip_m - STRIP_SLACK) if strip_m else 0
+    value = Node(hours * strips, drawn[0].where, "works.pump_hours", tabular=True)
     return Node({"pump_hours": value}, drawn[0].where, "works", tabular=True)

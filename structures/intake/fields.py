@@ -76,7 +76,7 @@ def _setting(default: Default) -> Field:
 
 
 SITE: Final = (
-    Field("code", "code of the site, letters, digits, - _ .", "code", required=True),
+    Field("code", "code of the site", "code", required=True),
     Field("name", "name of the place", "text"),
     Field("stream", "name of the stream", "text"),
     Field(

@@ -46,6 +46,9 @@ class Placed(NamedTuple, Generic[Record]):
 
 def read_elements(node: Node, least: int, ledger: Ledger) -> list[Node]:
     """Give the elements of a list; none, with a finding, where it is no list or of a wrong length."""
+    if node.value is None:
+        ledger.add(node, "This is missing.", "Give its rows.")
+        return []
     if not isinstance(node.value, list):
         ledger.add(node, f"A list is wanted, not {shown(node.value)}.", "Write a list.")
         return []
@@ -54,7 +57,8 @@ def read_elements(node: Node, least: int, ledger: Ledger) -> list[Node]:
         ledger.add(node, f"{count} rows are more than {ROWS_MOST}.", "Send one site's survey.")
         return []
     if count < least:
-        ledger.add(node, f"{count} of at least {least} rows are here.", "Give the missing ones.")
+        what = f"Rows here: {count}; {least} are the least."
+        ledger.add(node, what, "Give the missing ones.")
         return []
     return node.elements()
 
@@ -166,7 +170,8 @@ def read_refraction(node: Node, ledger: Ledger) -> list[Placed[RefractionLine]]:
         if not isinstance(element.value, dict):
             continue
         picks = read_list(element.named("picks"), fields.PICKS, RefractionPick, ledger, least=1)
-        check_spread(picks, element, ledger)
+        if picks:
+            check_spread(picks, element, ledger)
         if values is not None:
             label = values.get("line") or f"R{place}"
             record = RefractionLine(values["offset_m"], tuple(p.record for p in picks), label)

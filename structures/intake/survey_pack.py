@@ -75,7 +75,10 @@ def read_pack_bytes(name: str, data: bytes) -> SurveyPack:
     ledger = Ledger()
     if is_packed(data):
         if BOOK in entry_names(data):
-            return _build_tables(name, read_workbook(name, data, ledger), ledger)
+            tables = read_workbook(name, data, ledger)
+            if ledger.blocks and not tables:
+                raise refusal(ledger)
+            return _build_tables(name, tables, ledger)
         return _read_zip(name, data, ledger)
     kind = no_table(data)
     if kind:

@@ -19,34 +19,24 @@ if TYPE_CHECKING:
 NUMBER: Final = re.compile(r"[+-]?(\d+(\.\d*)?|\.\d+)([eE][+-]?\d{1,3})?", re.ASCII)
 NUMBER_LONGEST: Final = 40  # characters; no measured number is longer
 # What a number cell often holds instead, most telling first: (pattern, what, remedy).
-SLIPS: Final = (
-    (re.compile(r"[=@].*|[+-].*[A-Za-z(].*"), "is a formula", "Type the number itself."),
-    (
-        re.compile(r"(?i)[+-]?(nan|inf|infinity)"),
-        "is not a number",
-        "Leave out what was not measured.",
-    ),
-    (re.compile(r"[+-]?\d+,\d+"), "has a comma", "Write a decimal point, no thousands mark."),
-    (
-        re.compile(r"[+-]?\d[\d ,.']*,[\d ,.']+"),
-        "has a comma",
-        "Write a decimal point, no thousands mark.",
-    ),
-    (
-        re.compile(r"[+-]?[\doOlI]*[\d.][\doOlI.]*"),
-        "has a letter in place of a digit",
-        "Look at the field sheet and type the digits.",
-    ),
-    (
-        re.compile(r"[<>~].*|.*[+]"),
-        "is a limit, not a number",
-        "Type the number; say the rest in a note.",
-    ),
-    (
-        re.compile(r"[+-]?[\d.]+\s*[^\d\s].*"),
-        "has words behind the number",
-        "Type the number alone, in the unit of the heading.",
-    ),
+SLIPS: Final = tuple(
+    (re.compile(pattern, re.ASCII), what, remedy)
+    for pattern, what, remedy in (
+        (r"(?i)[+-]?(nan|inf|infinity)", "is not a number", "Leave out what was not measured."),
+        (r"[=@].*|[+-].*[A-Za-z(].*", "is a formula", "Type the number itself."),
+        (r"[+-]?\d[\d ,.']*,[\d ,.']+", "has a comma", "Write a decimal point, no thousands mark."),
+        (
+            r"(?=.*[oOlI])[+-]?[\doOlI]*[\d.][\doOlI.]*",
+            "has a letter in place of a digit",
+            "Look at the field sheet and type the digits.",
+        ),
+        (r"[<>~].*|.*[+]", "is a limit, not a number", "Type the number; say the rest in a note."),
+        (
+            r"[+-]?[\d.]+\s*[^\d\s].*",
+            "has words behind the number",
+            "Type the number alone, in the unit of the heading.",
+        ),
+    )
 )
 FORMULA_SIGNS: Final = ("=", "+", "-", "@")
 YES: Final = {"yes": True, "true": True, "1": True, "no": False, "false": False, "0": False}
@@ -124,7 +114,8 @@ def _number(node: Node, field: Field, ledger: Ledger) -> float | None:
     if value is None:
         return None
     if not math.isfinite(value):
-        ledger.add(node, f"{shown(value)} is not a number.", "Leave out what was not measured.")
+        what = "NaN is not a number." if math.isnan(value) else "The number is too large."
+        ledger.add(node, what, "Leave out what was not measured.")
         return None
     if field.low is not None and (value < field.low or (field.open_low and value == field.low)):
         _tell_range(node, field, value, field.low_says, ledger)
@@ -157,7 +148,7 @@ def _plain_number(node: Node, ledger: Ledger) -> float | None:
     text = value.strip()
     if node.tabular and len(text) <= NUMBER_LONGEST and NUMBER.fullmatch(text):
         return float(text)
-    if NUMBER.fullmatch(text[:NUMBER_LONGEST]):
+    if not node.tabular and NUMBER.fullmatch(text[:NUMBER_LONGEST]):
         ledger.add(node, f"{shown(value)} stands in quotes.", "Write the number without quotes.")
         return None
     ledger.add(node, *_slip(text))

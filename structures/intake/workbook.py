@@ -152,5 +152,5 @@ def _tell_formulas(
             ledger.add(node, "A formula without a value stands here.", "Type the value itself.")
     if addresses:
         node = Node(None, f"{name} {shown(title)[1:-1]}!{addresses[0]}")
-        what = f"{len(addresses)} cells hold formulas; the values last computed were read."
+        what = f"Cells with formulas: {len(addresses)}; the values last computed were read."
         ledger.add(node, what, "Type the values where they matter.", level="note")
