@@ -12,7 +12,7 @@ import io
 import re
 from typing import TYPE_CHECKING, Final
 
-from structures.intake.tables import Cell, Row, Table, make_table, plain_digits
+from structures.intake.tables import Cell, Row, Table, make_table
 from structures.intake.tree import Node
 
 if TYPE_CHECKING:
@@ -30,8 +30,8 @@ NO_TABLES: Final = (
     (b"PK\x03\x04", "an archive or a workbook"),
     (b"\xd0\xcf\x11\xe0", "a workbook of the old XLS kind"),
 )
-_COMMA: Final = re.compile(r"[+-]?[0-9]+,[0-9]+")
-_POINT: Final = re.compile(r"[+-]?[0-9]*\.[0-9]+")
+_COMMA: Final = re.compile(r"[+-]?\d+,\d+")  # digits of any script
+_POINT: Final = re.compile(r"[+-]?\d*\.\d+")
 THOUSANDS_DIGITS: Final = 3  # 1,234 is read both ways
 
 
@@ -62,7 +62,6 @@ def read_delimited(name: str, where: str, data: bytes, ledger: Ledger) -> Table 
     lines = _lines(text, mark, where, ledger) if mark else None
     if lines is None:
         return None
-    lines = plain_digits(lines, where, ledger)
     if mark != ",":
         lines = _points_for_commas(lines, where, mark, ledger)
     return make_table(name, where, lines, ledger) if lines is not None else None

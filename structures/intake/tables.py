@@ -1,9 +1,7 @@
-"""Tables whose rows and cells know where they stood, and the text styles they come in."""
+"""Tables whose rows and cells know where they stood."""
 
 from __future__ import annotations
 
-import re
-import unicodedata
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
@@ -13,7 +11,6 @@ if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
 COLUMNS_MOST: Final = 200  # a survey's tables have some ten
-NUMERAL: Final = re.compile(r"[+-]?[0-9][0-9.,]*")
 
 
 @dataclass(frozen=True, slots=True)
@@ -91,23 +88,3 @@ def _check_width(row: Row, width: int, ledger: Ledger) -> None:
         what = f"This row has {count} cells, the heading {width}."
         remedy = "A comma too many or too few? Decimal commas are written as points."
         ledger.add(Node(None, row.where), what, remedy)
-
-
-def plain_digits(lines: list[Row], where: str, ledger: Ledger) -> list[Row]:
-    """Turn numbers in digits of other scripts into 0 to 9 by their Unicode value, and tell it."""
-    turned: list[str] = []
-
-    def plain(cell: Cell) -> Cell:
-        if not isinstance(cell.value, str) or cell.value.isascii():
-            return cell
-        digits = "".join(str(unicodedata.decimal(sign, sign)) for sign in cell.value.strip())
-        if digits == cell.value.strip() or not NUMERAL.fullmatch(digits):
-            return cell
-        turned.append(f"{cell.value.strip()} as {digits}")
-        return Cell(digits, cell.where)
-
-    plained = [Row(tuple(plain(cell) for cell in row.cells), row.where) for row in lines]
-    if turned:
-        what = f"Digits of another script were read by their value in {len(turned)} cells ({turned[0]})."
-        ledger.add(Node(None, where), what, "Say so if one is wrong.", level="note", rule="FI-04")
-    return plained

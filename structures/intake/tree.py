@@ -99,8 +99,8 @@ class Node:
 class Ledger:
     """Findings and notes in the order in which they were met.
 
-    `blocks` counts the findings that forbid keeping what was handed in; `told` names the fields
-    that nobody knows and that were told of once; `unread` names tables that are there and cannot
+    `blocks` counts the findings that forbid keeping what was handed in; `told` names what
+    is told of once a column; `unread` names tables that are there and cannot
     be read, so that they are not called missing as well.
     """
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 import difflib
 import math
 import re
+import unicodedata
 from typing import TYPE_CHECKING, Final
 
 from structures.intake.fields import CODE_PATTERN, TEXT_MOST
@@ -146,13 +147,26 @@ def _plain_number(node: Node, ledger: Ledger) -> float | None:
         ledger.add(node, f"A number is wanted, not {shown(value)}.", "Write the number.")
         return None
     text = value.strip()
-    if node.tabular and len(text) <= NUMBER_LONGEST and NUMBER.fullmatch(text):
-        return float(text)
+    if node.tabular and len(text) <= NUMBER_LONGEST:
+        digits = _plain_digits(node, text, ledger)
+        if NUMBER.fullmatch(digits):
+            return float(digits)
     if not node.tabular and NUMBER.fullmatch(text[:NUMBER_LONGEST]):
         ledger.add(node, f"{shown(value)} stands in quotes.", "Write the number without quotes.")
         return None
     ledger.add(node, *_slip(text))
     return None
+
+
+def _plain_digits(node: Node, text: str, ledger: Ledger) -> str:
+    """Turn digits of other scripts into 0 to 9 by their Unicode value, told once a column."""
+    digits = "".join(str(unicodedata.decimal(sign, sign)) for sign in text)
+    told = f"digits of {node.field}"
+    if digits != text and NUMBER.fullmatch(digits) and told not in ledger.told:
+        what = f"{shown(text)} stands in digits of another script, read by their value as {digits}."
+        ledger.add(node, what, "Say so if that is wrong.", level="note", rule="FI-04")
+        ledger.told.add(told)
+    return digits
 
 
 def _slip(text: str) -> tuple[str, str]:

@@ -16,7 +16,7 @@ from python_calamine import CalamineError, CalamineWorkbook, SheetTypeEnum
 
 from structures.intake.archive import FILE_MOST_BYTES, read_archive
 from structures.intake.table_form import is_part
-from structures.intake.tables import COLUMNS_MOST, Cell, Row, Table, make_table, plain_digits
+from structures.intake.tables import COLUMNS_MOST, Cell, Row, Table, make_table
 from structures.intake.tree import Node, shown
 
 if TYPE_CHECKING:
@@ -92,7 +92,7 @@ def _table(name: str, title: str, rows: list[list[object]], ledger: Ledger) -> T
         )
         for line, values in enumerate(rows, start=1)
     ]
-    return make_table(title.strip().lower(), where, plain_digits(lines, where, ledger), ledger)
+    return make_table(title.strip().lower(), where, lines, ledger)
 
 
 def _check_size(name: str, entries: dict[str, bytes], ledger: Ledger) -> None:

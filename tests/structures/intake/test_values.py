@@ -24,7 +24,6 @@ SLIPS = [
     ("-inf", "is not a number"),
     ("R 3.2", "is not a number"),
     ("--3", "is not a number"),
-    ("९.१", "is not a number"),
     ("1" * 50, "is not a number"),
 ]
 
@@ -51,6 +50,16 @@ def test_json_takes_numbers_only(value):
     ledger = Ledger()
     assert read_value(Node(value, "$", "depth_m"), DEPTH, ledger) is None
     assert ledger.blocks == 1
+
+
+def test_digits_of_another_script_are_read_and_told_once_a_column():
+    """Oracle: Unicode, DEVANAGARI DIGIT NINE and ONE have the decimal values 9 and 1."""
+    ledger = Ledger()
+    for line in (2, 3):
+        node = Node("९.१", f"p.csv line {line}", "depth_m", tabular=True)
+        assert read_value(node, DEPTH, ledger) == 9.1
+    assert [(f.where, f.level) for f in ledger.findings] == [("p.csv line 2", "note")]
+    assert read_value(Node("९.१", "$", "depth_m"), DEPTH, ledger) is None
 
 
 def test_an_open_limit_leaves_out_its_own_value():
