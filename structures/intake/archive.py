@@ -9,6 +9,7 @@ import io
 import re
 import zipfile
 import zlib
+from collections import Counter
 from typing import TYPE_CHECKING, Final
 
 from structures.intake.tree import Node, shown
@@ -60,7 +61,7 @@ def read_archive(name: str, data: bytes, ledger: Ledger) -> dict[str, bytes]:
             entries = [entry for entry in archive.infolist() if not entry.is_dir()]
             blocks = ledger.blocks
             _check_total(name, entries, ledger)
-            for entry in entries:
+            for entry in entries[:ENTRIES_MOST]:
                 _check_entry(name, entry, ledger)
             if ledger.blocks > blocks:
                 return {}
@@ -96,9 +97,8 @@ def _check_total(name: str, entries: list[zipfile.ZipInfo], ledger: Ledger) -> N
         limit = ARCHIVE_MOST_BYTES // MEGABYTE
         what = f"The archive opens to {total / MEGABYTE:.0f} MB, limit {limit}. Nothing was read."
         ledger.add(node, what, "Split it.", rule="FI-02")
-    names = [entry.filename for entry in entries]
-    for inner in dict.fromkeys(names):
-        if names.count(inner) > 1:
+    for inner, count in Counter(entry.filename for entry in entries).items():
+        if count > 1:
             ledger.add(_place(name, inner), "Two entries have this name.", "Keep one.")
 
 

@@ -12,7 +12,7 @@ import io
 import re
 from typing import TYPE_CHECKING, Final
 
-from structures.intake.tables import Cell, Row, Table, make_table
+from structures.intake.tables import COLUMNS_MOST, LINES_MOST, Cell, Row, Table, make_table
 from structures.intake.tree import Node
 
 if TYPE_CHECKING:
@@ -130,6 +130,10 @@ def _lines(text: str, mark: str, where: str, ledger: Ledger) -> list[Row] | None
             unclosed = "unexpected end" in str(error) or "expected after" in str(error)
             what = "A quote is not closed." if unclosed else f"The row cannot be read: {error}."
             ledger.add(Node(None, place), what, "Close it, or take the quotes out.")
+            return None
+        if len(rows) == LINES_MOST or len(cells) > COLUMNS_MOST:
+            what = f"The table has more than {LINES_MOST} rows or {COLUMNS_MOST} columns."
+            ledger.add(Node(None, place), what, "Send one site's survey.", rule="FI-02")
             return None
         rows.append(Row(tuple(Cell(_unguarded(cell.strip()), place) for cell in cells), place))
 

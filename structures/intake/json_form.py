@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import re
+from collections import Counter
 from typing import Final
 
 import numpy as np
@@ -35,8 +36,8 @@ def read_json(name: str, data: bytes) -> Node:
     def members(pairs: list[tuple[str, object]]) -> dict[str, object]:
         seen = dict(pairs)
         if len(seen) < len(pairs):
-            keys = [key for key, _ in pairs]
-            twice.extend(key for key in seen if keys.count(key) > 1)
+            counts = Counter(key for key, _ in pairs)
+            twice.extend(key for key, count in counts.items() if count > 1)
         return seen
 
     try:

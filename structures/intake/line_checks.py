@@ -14,6 +14,8 @@ from structures.intake.fields import DEPTH_MOST_M
 from structures.intake.parts import Placed, check_rising
 
 if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
     from structures.intake.pack import GroundPoint, GroundWater, RockLinePoint, Toes
     from structures.intake.tree import Ledger, Node
 
@@ -105,8 +107,8 @@ def check_rock_line(
     check_rising(line, ledger, rule="XS-02")
     if not check_inside(line, ground, ledger) or ledger.blocks > blocks:
         return
-    for point, node in line:
-        above_m = point.level_m - level_at(point.offset_m, ground)
+    for (point, node), ground_m in zip(line, levels_at(line, ground), strict=True):
+        above_m = point.level_m - ground_m
         place = node.named("level_m")
         if above_m > SAME_LEVEL_M:
             what = f"Rock stands {above_m:.2f} m above the ground at {point.offset_m:g} m."
@@ -122,18 +124,17 @@ def _check_between(
     line: list[Placed[RockLinePoint]], ground: list[Placed[GroundPoint]], ledger: Ledger
 ) -> None:
     """Refuse a line that is under the ground at its points and above it between them."""
-    first_m, last_m = line[0].record.offset_m, line[-1].record.offset_m
-    for point, node in ground:
-        if not first_m <= point.offset_m <= last_m:
-            continue
-        above_m = level_at(point.offset_m, line) - point.level_m
+    covered = _within(ground, line)
+    for (point, node), rock_m in zip(covered, levels_at(covered, line), strict=True):
+        above_m = rock_m - point.level_m
         if above_m > SAME_LEVEL_M:
-            later = next(p for p in line if p.record.offset_m >= point.offset_m)
+            later = next(placed for placed in line if placed.record.offset_m >= point.offset_m)
             what = (
                 f"Rock drawn straight stands {above_m:.2f} m above the ground point at "
                 f"{point.offset_m:g} m ({node.where})."
             )
             ledger.add(later.node, what, "Add a point of the rock line there.")
+            return
 
 
 def check_feet(
@@ -143,16 +144,17 @@ def check_feet(
     ledger: Ledger,
 ) -> None:
     """Hold a settled line that stands above the foot of a probe or of a hole that ended in soil."""
-    for test, node in feet:
-        if not line[0].record.offset_m <= test.offset_m <= line[-1].record.offset_m:
-            continue
-        rock_m, foot_m = (
-            level_at(test.offset_m, line),
-            level_at(test.offset_m, ground) - test.depth_m,
-        )
+    covered = _within(feet, line)
+    rocks_m, grounds_m = levels_at(covered, line), levels_at(covered, ground)
+    for (test, node), rock_m, ground_m in zip(covered, rocks_m, grounds_m, strict=True):
+        foot_m = ground_m - test.depth_m
         if rock_m - foot_m > FOOT_ABOVE_M:
-            what = f"Rock drawn at {rock_m:.2f} m, but the test at {test.offset_m:g} m went down to {foot_m:.2f} m."
-            ledger.add(node.named("depth_m"), what, "Lower the line.", level="hold", rule="RK-03")
+            what = (
+                f"Rock drawn at {rock_m:.2f} m, but the test at {test.offset_m:g} m went down to "
+                f"{foot_m:.2f} m."
+            )
+            place = node.named("depth_m")
+            ledger.add(place, what, "Lower the line.", level="hold", rule="RK-03")
 
 
 def check_water_level(
@@ -172,7 +174,15 @@ def check_water_level(
         ledger.add(place, what, "Another bench mark?", level="hold", rule="LV-09")
 
 
-def level_at(offset_m: float, points: list[Placed]) -> float:
-    """Level between points, straight (handbook 1.6)."""
-    offsets = [point.offset_m for point, _ in points]
-    return float(np.interp(offset_m, offsets, [point.level_m for point, _ in points]))
+def levels_at(placed: list[Placed], points: list[Placed]) -> NDArray[np.float64]:
+    """Levels of a line at the offsets of records, straight between its points (handbook 1.6)."""
+    return np.interp(
+        [record.offset_m for record, _ in placed],
+        [point.offset_m for point, _ in points],
+        [point.level_m for point, _ in points],
+    )
+
+
+def _within(placed: list[Placed], line: list[Placed]) -> list[Placed]:
+    first_m, last_m = line[0].record.offset_m, line[-1].record.offset_m
+    return [each for each in placed if first_m <= each.record.offset_m <= last_m]

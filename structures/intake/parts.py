@@ -33,7 +33,7 @@ if TYPE_CHECKING:
     from structures.intake.fields import Field
     from structures.intake.tree import Ledger
 
-ROWS_MOST: Final = 20000  # rows of one list; a survey has some hundreds
+ROWS_MOST: Final = 5000  # rows of one list; a survey has some hundreds
 Record = TypeVar("Record")
 
 

@@ -5,16 +5,15 @@ The ids are those of the office's list of checks; figures marked C there are com
 
 from __future__ import annotations
 
-from collections import Counter
 from itertools import pairwise
 from typing import TYPE_CHECKING, Final
 
-from structures.intake.line_checks import level_at
+from structures.intake.line_checks import levels_at
 
 if TYPE_CHECKING:
     from structures.intake.pack import GroundPoint, Probe, RockTest, Toes
     from structures.intake.parts import Placed
-    from structures.intake.tree import Ledger
+    from structures.intake.tree import Ledger, Node
 
 BOULDER_M: Final = 1.0  # PR-05
 GAP_M: Final = 12.0  # PR-06 [C]
@@ -26,7 +25,7 @@ def check_lone_refusal(
 ) -> None:
     """Warn of a refusal more than 1 m above the feet of both neighbours."""
     ordered = sorted(probes, key=lambda placed: placed.record.offset_m)
-    feet = [level_at(p.record.offset_m, ground) - p.record.depth_m for p in ordered]
+    feet = levels_at(ordered, ground) - [probe.depth_m for probe, _ in ordered]
     for before_m, foot_m, after_m, (probe, node) in zip(
         feet, feet[1:], feet[2:], ordered[1:], strict=False
     ):
@@ -56,10 +55,12 @@ def check_gaps(
 
 def check_rod(probes: list[Placed[Probe]], ledger: Ledger) -> None:
     """Warn where more than three probes stopped at one depth: that is the rod, not the ground."""
-    stopped = [(probe.depth_m, node) for probe, node in probes if not probe.refused]
-    for depth_m, count in Counter(depth for depth, _ in stopped).items():
-        if count > ROD_TIMES:
-            node = next(node for depth, node in stopped if depth == depth_m)
-            what = f"{count} probes stop at {depth_m:g} m, the length of the rod."
+    stopped: dict[float, list[Node]] = {}
+    for probe, node in probes:
+        if not probe.refused:
+            stopped.setdefault(probe.depth_m, []).append(node)
+    for depth_m, nodes in stopped.items():
+        if len(nodes) > ROD_TIMES:
+            what = f"{len(nodes)} probes stop at {depth_m:g} m, the length of the rod."
             remedy = "Rock is deeper; a longer rod or a bore is needed here."
-            ledger.add(node.named("depth_m"), what, remedy, level="warn", rule="PR-07")
+            ledger.add(nodes[0].named("depth_m"), what, remedy, level="warn", rule="PR-07")

@@ -17,11 +17,13 @@ Picks = list["Placed[RefractionPick]"]
 
 def check_spread(picks: Picks, node: Node, ledger: Ledger) -> None:
     """Check that arrivals grow with distance, both directions were shot and times agree."""
-    for side in (-1.0, 1.0):
-        for shot_m in sorted({pick.shot_m for pick, _ in picks}):
-            branch = [p for p in picks if p.record.shot_m == shot_m and side * _reach(p) > 0]
-            _check_growth(sorted(branch, key=lambda p: abs(_reach(p))), ledger)
-    if not {-1, 1} <= {(_reach(p) > 0) - (_reach(p) < 0) for p in picks}:
+    branches: dict[tuple[float, bool], Picks] = {}
+    for placed in picks:
+        if _reach(placed) != 0:
+            branches.setdefault((placed.record.shot_m, _reach(placed) > 0), []).append(placed)
+    for _, branch in sorted(branches.items()):
+        _check_growth(sorted(branch, key=lambda placed: abs(_reach(placed))), ledger)
+    if len({forward for _, forward in branches}) == 1:
         what = "Only one direction was shot."
         remedy = "Dip of rock cannot be told; depth is doubtful."
         ledger.add(node, what, remedy, level="warn", rule="RF-02")

@@ -11,6 +11,7 @@ if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
 COLUMNS_MOST: Final = 200  # a survey's tables have some ten
+LINES_MOST: Final = 20_000  # and some hundred rows
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,10 +58,6 @@ def make_table(name: str, where: str, lines: list[Row], ledger: Ledger) -> Table
     top, *rows = filled
     headings = _headings(top)
     blocks = ledger.blocks
-    if len(headings) > COLUMNS_MOST:
-        what = f"{len(headings)} columns are more than {COLUMNS_MOST}."
-        ledger.add(Node(None, top.where), what, "Send one table of a survey.")
-        return None
     for heading in dict.fromkeys(headings):
         if headings.count(heading) > 1:
             remedy = "Name each column once."

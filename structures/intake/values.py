@@ -39,6 +39,8 @@ SLIPS: Final = tuple(
         ),
     )
 )
+MEMBERS_MOST: Final = 200  # fields of one object; a pack's have a dozen
+KEY_MOST: Final = 60  # characters of a key that are compared with known ones
 FORMULA_SIGNS: Final = ("=", "+", "-", "@")
 YES: Final = {"yes": True, "true": True, "1": True, "no": False, "false": False, "0": False}
 
@@ -87,10 +89,14 @@ def tell_unknown(
     node: Node, known: tuple[str, ...], ledger: Ledger, *, closed: bool = False
 ) -> None:
     """Keep members that nobody knows as notes and tell of each name once."""
+    if len(node.value) > MEMBERS_MOST:
+        what = f"{len(node.value)} fields are more than {MEMBERS_MOST}."
+        ledger.add(node, what, "Send one site's survey.")
+        return
     for key, member in node.members().items():
         if key in known or (member.tabular and member.blank):
             continue
-        near = difflib.get_close_matches(key[:TEXT_MOST], known, n=1)
+        near = difflib.get_close_matches(key[:KEY_MOST], known, n=1)
         hint = f"Was {near[0]} meant?" if near else ""
         if closed:
             remedy = hint or f"Known here: {', '.join(known)}."

@@ -16,7 +16,7 @@ from python_calamine import CalamineError, CalamineWorkbook, SheetTypeEnum
 
 from structures.intake.archive import FILE_MOST_BYTES, read_archive
 from structures.intake.table_form import is_part
-from structures.intake.tables import COLUMNS_MOST, Cell, Row, Table, make_table
+from structures.intake.tables import COLUMNS_MOST, LINES_MOST, Cell, Row, Table, make_table
 from structures.intake.tree import Node, shown
 
 if TYPE_CHECKING:
@@ -24,17 +24,15 @@ if TYPE_CHECKING:
 
 BOOK: Final = "xl/workbook.xml"
 LINKS: Final = "xl/_rels/workbook.xml.rels"
-LAST_ROW: Final = 50_000  # a survey's tables have some hundred rows
+CELLS_MOST: Final = 500_000  # cells of one sheet, empty ones between values included
 TEXT_MOST_BYTES: Final = 10 * FILE_MOST_BYTES  # longest text times cells, before it is spread out
-_VALUE: Final = re.compile(
-    rb"(?i)<(?:\w+:)?c\s[^>]*?\br=[\"']([A-Z]{1,3})([0-9]{1,9})[\"'][^>]*?[^/>]>"
-)
-_FORMULA: Final = re.compile(
-    rb"<(?:\w+:)?c\s[^>]*?\br=[\"']([A-Z]{1,3}[0-9]{1,9})[\"'][^>]*>\s*<(?:\w+:)?f[\s/>]"
-)
-_SHEET: Final = re.compile(rb"<(?:\w+:)?sheet\s[^>]*>")
-_LINK: Final = re.compile(rb"<(?:\w+:)?Relationship\s[^>]*>")
-_LONG_TEXT: Final = re.compile(rb"<(?:\w+:)?si[\s>].*?</(?:\w+:)?si>", re.DOTALL)
+# Tags end at the next bracket, so that each pattern passes over its bytes once.
+_CELL: Final = re.compile(rb"<(?:\w+:)?c(\s[^<>]*)>")
+_FORMULA: Final = re.compile(rb"<(?:\w+:)?c(\s[^<>]*)>\s*<(?:\w+:)?f[\s/>]")
+_ADDRESS: Final = re.compile(rb"\sr=[\"']([A-Za-z]{1,3})([0-9]{1,9})[\"']")
+_SHEET: Final = re.compile(rb"<(?:\w+:)?sheet\s[^<>]*>")
+_LINK: Final = re.compile(rb"<(?:\w+:)?Relationship\s[^<>]*>")
+_TEXT: Final = re.compile(rb"<(?:\w+:)?si[\s>]")
 
 
 def read_workbook(name: str, data: bytes, ledger: Ledger) -> list[Table]:
@@ -79,6 +77,10 @@ def _sheets(data: bytes) -> list[tuple[str, list[list[object]]]]:
 
 def _table(name: str, title: str, rows: list[list[object]], ledger: Ledger) -> Table | None:
     where = f"{name} {shown(title)[1:-1]}"
+    if len(rows) * len(rows[0] if rows else ()) > CELLS_MOST:
+        what = f"The sheet has more than {CELLS_MOST} cells."
+        ledger.add(Node(None, where), what, "Send one site's survey.", rule="FI-02")
+        return None
     lines = [
         Row(
             tuple(
@@ -96,26 +98,33 @@ def _table(name: str, title: str, rows: list[list[object]], ledger: Ledger) -> T
 
 
 def _check_size(name: str, entries: dict[str, bytes], ledger: Ledger) -> None:
+    """Refuse what would open far beyond its size, or is written so that it cannot be judged."""
     longest = cells = 0
     for inner, content in entries.items():
         if not inner.endswith(".xml"):
             continue
-        if b"\0" in content or b"<!DOCTYPE" in content:
+        filled = [tag for tag in _CELL.findall(content) if not tag.endswith(b"/")]
+        odd = any(tag.count(b'"') % 2 or tag.count(b"'") % 2 for tag in filled)
+        if b"\0" in content or b"<!DOCTYPE" in content or odd:
             ledger.add(
                 Node(None, name), f"{shown(inner)} is no plain XML.", "Save it again as XLSX."
             )
-        for letters, digits in _VALUE.findall(content):
-            cells += 1
-            column = column_index_from_string(letters.decode())
-            if int(digits) > LAST_ROW or column > COLUMNS_MOST:
-                place = f"{name} {inner.rsplit('/', 1)[-1]}!{letters.decode()}{digits.decode()}"
-                what = "A value stands far from the table."
-                ledger.add(Node(None, place), what, "Delete it and save again.", rule="FI-02")
-                return
-        longest = max([longest, *(len(text) for text in _LONG_TEXT.findall(content))])
+        _check_far(f"{name} {inner.rsplit('/', 1)[-1]}", filled, ledger)
+        cells += len(filled)
+        longest = max([longest, *(len(text) for text in _TEXT.split(content)[1:])])
     if longest * cells > TEXT_MOST_BYTES:
         what = "The texts of this workbook are too long."
         ledger.add(Node(None, name), what, "Save the tables alone.", rule="FI-02")
+
+
+def _check_far(where: str, filled: list[bytes], ledger: Ledger) -> None:
+    for address in filter(None, map(_ADDRESS.search, filled)):
+        letters, line = address[1].decode().upper(), int(address[2])
+        if line > LINES_MOST or column_index_from_string(letters) > COLUMNS_MOST:
+            what = "A value stands far from the table."
+            node = Node(None, f"{where}!{letters}{line}")
+            ledger.add(node, what, "Delete it and save again.", rule="FI-02")
+            return
 
 
 def _formulas(entries: dict[str, bytes]) -> dict[str, list[str]]:
@@ -126,10 +135,11 @@ def _formulas(entries: dict[str, bytes]) -> dict[str, list[str]]:
     }
     return {
         _attribute(sheet, b"name"): [
-            address.decode()
-            for address in _FORMULA.findall(
+            (address[1] + address[2]).decode().upper()
+            for tag in _FORMULA.findall(
                 entries.get("xl/" + parts.get(_attribute(sheet, rb"\w+:id"), ""), b"")
             )
+            if (address := _ADDRESS.search(tag))
         ]
         for sheet in _SHEET.findall(entries.get(BOOK, b""))
     }
