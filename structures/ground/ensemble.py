@@ -87,7 +87,7 @@ class Ensemble:
     @property
     def rock_share(self) -> float:
         """Share of the ensemble whose deepest layer is read as rock (handbook 2.10)."""
-        return float(self.weight @ self.rock)
+        return float(np.average(self.rock, weights=self.weight))
 
     @property
     def depth_sd_m(self) -> float:

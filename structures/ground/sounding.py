@@ -171,6 +171,9 @@ def interpret(
     if fit is None:
         return Interpretation(**known, refusal=_no_model(fits, chi_square_limit))
     known |= _shown(readings, fit)
+    refusal = _too_deep(float(fit.thickness_m.sum()), prior)
+    if refusal is not None:
+        return Interpretation(**known, refusal=refusal)
     ensemble = sample_ensemble(readings, prior, rng=rng)
     fitting = _fitting(ensemble, readings, chi_square_limit)
     known |= {
@@ -178,7 +181,7 @@ def interpret(
         "layer_weight": ensemble.layer_weight,
         "equivalent": _equivalent(ensemble, fitting),
     }
-    refusal = _doubt(fit, ensemble, fitting, prior)
+    refusal = _doubt(ensemble, fitting, prior)
     if refusal is not None:
         return Interpretation(**known, refusal=refusal)
     low, median, high = (ensemble.depth_quantile_m(share) for share in (LOW, MEDIAN, HIGH))
@@ -273,6 +276,18 @@ def _layers(resistivity_ohm_m: NDArray, thickness_m: NDArray) -> tuple[Layer, ..
     )
 
 
+def _too_deep(shown_m: float, prior: Prior) -> Refusal | None:
+    """Say that the curve points deeper than the prior: the range would be the prior's alone."""
+    if shown_m <= prior.greatest_depth_m:
+        return None
+    return Refusal(
+        "deeper-than-prior",
+        f"its deepest boundary may lie at {_metres(shown_m)} m, deeper than the "
+        f"{_metres(prior.greatest_depth_m)} m that the printed prior reaches. Bore, or have an "
+        "engineer state another prior.",
+    )
+
+
 def _fitting(ensemble: Ensemble, readings: Curve, limit: float) -> NDArray[np.bool_]:
     """Say of each member whether it fits within the noise, by the same limit as a fit."""
     return np.concatenate([_within_noise(cloud, readings, limit) for cloud in ensemble.clouds])
@@ -303,21 +318,13 @@ def _member(ensemble: Ensemble, place: int) -> tuple[Layer, ...]:
     raise ValueError("no such member")
 
 
-def _doubt(fit: Fit, ensemble: Ensemble, fitting: NDArray, prior: Prior) -> Refusal | None:
+def _doubt(ensemble: Ensemble, fitting: NDArray, prior: Prior) -> Refusal | None:
     """Say why the ensemble gives no depth, if so."""
     if not fitting.any():
         return Refusal(
             "outside-prior",
             "no model within the printed prior fits the readings: the ground has layers that the "
             "prior holds impossible. Bore, or have an engineer state another prior.",
-        )
-    shown_m = float(fit.thickness_m.sum())
-    if shown_m > prior.greatest_depth_m:
-        return Refusal(
-            "deeper-than-prior",
-            f"its deepest boundary may lie at {shown_m:.2g} m, deeper than the "
-            f"{prior.greatest_depth_m:.2g} m that the printed prior reaches. Bore, or have an "
-            "engineer state another prior.",
         )
     rock = prior.rock
     if ensemble.rock_share < rock.share:
@@ -332,8 +339,8 @@ def _doubt(fit: Fit, ensemble: Ensemble, fitting: NDArray, prior: Prior) -> Refu
     if high - low > WIDEST_RANGE * median:
         return Refusal(
             "not-resolved",
-            f"the layers are not resolved: rock may lie anywhere from {low:.2g} to {high:.2g} m. "
-            "Measure the saturated sand at an open well or pit, or bore.",
+            f"the layers are not resolved: rock may lie anywhere from {_metres(low)} to {_metres(high)} m. "
+            "Bore, or measure the resistivity of the sand at an open well or pit.",
         )
     return None
 
@@ -344,12 +351,17 @@ def _notes(fit: Fit, range_m: tuple[float, float], widest_ab2_m: float) -> tuple
     shown, (low, high) = float(fit.thickness_m.sum()), range_m
     if not low <= shown <= high:
         notes.append(
-            f"The model with the fewest layers has its deepest boundary at {shown:.2g} m, outside "
-            f"the range {low:.2g} to {high:.2g} m: a thin or weathered layer may be hidden."
+            f"The model with the fewest layers has its deepest boundary at {_metres(shown)} m, outside "
+            f"the range {_metres(low)} to {_metres(high)} m: a thin or weathered layer may be hidden."
         )
     if high > widest_ab2_m / SPREAD_TO_DEPTH:
         notes.append(
             f"AB/2 stopped at {widest_ab2_m:g} m. It says little about rock below "
-            f"{widest_ab2_m / SPREAD_TO_DEPTH:.2g} m."
+            f"{_metres(widest_ab2_m / SPREAD_TO_DEPTH)} m."
         )
     return tuple(notes)
+
+
+def _metres(depth_m: float) -> str:
+    """Print two figures: ranges of other seeds differ by a few parts in a hundred."""
+    return f"{depth_m:.1f}" if depth_m < 10 else f"{depth_m:.0f}"

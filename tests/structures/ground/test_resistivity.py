@@ -10,7 +10,7 @@ from pathlib import Path
 import mpmath
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.integrate import quad
 from scipy.special import j0, jn_zeros
@@ -197,6 +197,7 @@ def test_four_layers_equal_integration_in_30_digits():
     assert computed[0] == pytest.approx(float(expected), rel=1e-6)
 
 
+@settings(max_examples=40)
 @given(model=models, scale=st.floats(0.05, 20.0))
 def test_scaling_all_lengths_changes_nothing(model, scale):
     """Law: check 2.i."""
@@ -207,6 +208,7 @@ def test_scaling_all_lengths_changes_nothing(model, scale):
     np.testing.assert_allclose(scaled, plain, rtol=1e-6)
 
 
+@settings(max_examples=40)
 @given(model=models, part=st.floats(0.01, 0.99))
 def test_a_layer_cut_in_two_is_still_one_layer(model, part):
     """Law: a boundary between equal resistivities does not exist, however thin a part is."""
@@ -218,6 +220,7 @@ def test_a_layer_cut_in_two_is_still_one_layer(model, part):
     np.testing.assert_allclose(cut, apparent_resistivity(readings, rho, h), rtol=1e-6)
 
 
+@settings(max_examples=40)
 @given(model=models)
 def test_apparent_resistivity_lies_between_the_layers(model):
     """Law: no spread shows less than the least or more than the greatest resistivity."""
