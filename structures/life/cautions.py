@@ -41,6 +41,13 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
             "estimate, for no design: meet rock in a bore, pit or outcrop on the same line."
         ),
     ),
+    "rock-levels-far-apart": (
+        "hold",
+        (
+            "Between {from_m:.2f} and {to_m:.2f} m no test gives a level of rock; probes and holes "
+            "only say that it lies no higher. Bore there before the price is sent up."
+        ),
+    ),
     "rock-bounds-contradict": (
         "warn",
         "Tests contradict each other near {where}: {what} Look at the records, or bore there.",
@@ -148,6 +155,11 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     "side-supported": (
         "warn",
         "Sides of {slope:g} across to 1 up rest on the support design named: {design}.",
+    ),
+    "sides-drawn": (
+        "warn",
+        "The sides drawn are the least asked for by this program, not a proof of safety. Nobody "
+        "goes in where the day's look says stop. " + CLOSING_SENTENCE,
     ),
     "default-changed": (
         "warn",

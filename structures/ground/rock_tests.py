@@ -1,0 +1,141 @@
+"""What every test says of the rock: a level with its error, or only that rock lies no higher."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Final, Protocol
+
+import numpy as np
+
+from structures.ground.rock_line import Evidence
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Sequence
+
+    from structures.ground.sounding import Refusal
+    from structures.intake.pack import RockTest, SurveyPack
+
+SEEN_SD_M: Final = {"outcrop": 0.05, "pit": 0.05, "bore": 0.10}  # [A, E] handbook 4.3 and 4.4
+SOUNDING_SD: Final = (0.75, 0.15)  # [A, E] least m, share of depth; handbook 4.3
+UNTIED_SD: Final = (1.5, 0.25)  # [A, E] the same where no test ties it; handbook 2.11
+REFRACTION_SD: Final = (0.5, 0.10)  # [A, E] handbook 4.3
+THIN_WEATHERED_M: Final = 0.5  # [A] a thicker weathered layer unties soundings; handbook 2.11
+SAME_PLACE_M: Final = 0.5  # [A] a bore and a pit so near to each other are one place
+GIVES_LEVEL: Final = ("outcrop", "pit", "bore", "sounding", "refraction")
+GEOPHYSICS: Final = ("sounding", "refraction")
+
+
+class DepthReading(Protocol):
+    """A sounding or refraction line that was read; depths are None where it was refused."""
+
+    offset_m: float | None
+    label: str
+    rock_depth_m: float | None
+    rock_depth_low_m: float | None
+    rock_depth_high_m: float | None
+    rock_depth_sd_m: float | None
+    refusal: Refusal | None
+
+
+@dataclass(frozen=True, slots=True)
+class Gathered:
+    """All evidence of a line. `tied` says whether soundings may be trusted as sheet rock."""
+
+    evidence: tuple[Evidence, ...]
+    tied: bool
+
+    @property
+    def levels(self) -> tuple[Evidence, ...]:
+        """Evidence that gives a level."""
+        return tuple(one for one in self.evidence if one.sd_m is not None)
+
+    @property
+    def bounds(self) -> tuple[Evidence, ...]:
+        """Evidence that says only: rock at or below."""
+        return tuple(one for one in self.evidence if one.sd_m is None)
+
+    @property
+    def by_geophysics(self) -> tuple[Evidence, ...]:
+        """Levels read by geophysics."""
+        return tuple(one for one in self.levels if one.kind in GEOPHYSICS)
+
+
+def ground_level_m(pack: SurveyPack, offset_m: float) -> float:
+    """Level of the ground on the wall line, straight between its points."""
+    x = [point.offset_m for point in pack.ground]
+    return float(np.interp(offset_m, x, [point.level_m for point in pack.ground]))
+
+
+def gather(
+    pack: SurveyPack,
+    *,
+    soundings: Iterable[DepthReading],
+    refraction: Iterable[DepthReading],
+) -> Gathered:
+    """Put every test as a level with its error, or as an upper bound.
+
+    Source: handbook 4.3 (errors), 4.4 (inequalities), 2.11 (weathered rock).
+
+    Parameters
+    ----------
+    pack
+        The survey.
+    soundings, refraction
+        What was read from its soundings and refraction lines.
+    """
+    tied = _tied(pack.rock)
+    evidence = [_of_rock(pack, test) for test in pack.rock]
+    evidence += [
+        Evidence(
+            probe.offset_m,
+            ground_level_m(pack, probe.offset_m) - probe.depth_m,
+            "probe refused" if probe.refused else "probe stopped",
+        )
+        for probe in pack.probes
+    ]
+    sounding_sd = SOUNDING_SD if tied else UNTIED_SD
+    for kind, readings, limits in (
+        ("sounding", soundings, sounding_sd),
+        ("refraction", refraction, REFRACTION_SD),
+    ):
+        evidence += [
+            _of_depth(pack, reading, kind, limits)
+            for reading in readings
+            if reading.rock_depth_m is not None and reading.offset_m is not None
+        ]
+    return Gathered(tuple(sorted(evidence, key=lambda one: one.offset_m)), tied)
+
+
+def _of_rock(pack: SurveyPack, test: RockTest) -> Evidence:
+    level = ground_level_m(pack, test.offset_m) - test.depth_m
+    if not test.met_rock:
+        return Evidence(test.offset_m, level, "hole")
+    if test.what == "weathered":
+        return Evidence(test.offset_m, level, "weathered")
+    return Evidence(test.offset_m, level, test.method, SEEN_SD_M[test.method])
+
+
+def _of_depth(
+    pack: SurveyPack, reading: DepthReading, kind: str, limits: tuple[float, float]
+) -> Evidence:
+    least, share = limits
+    depth = reading.rock_depth_m
+    sd = max(least, share * depth, reading.rock_depth_sd_m or 0.0)
+    return Evidence(reading.offset_m, ground_level_m(pack, reading.offset_m) - depth, kind, sd)
+
+
+def _tied(rock: Sequence[RockTest]) -> bool:
+    """Did a direct observation meet sheet rock, and none a weathered layer over 0.5 m."""
+    sheet = [test for test in rock if test.met_rock and test.what == "sheet"]
+    weathered = [test for test in rock if test.met_rock and test.what == "weathered"]
+    return bool(sheet) and all(_thin(test, sheet) for test in weathered)
+
+
+def _thin(weathered: RockTest, sheet: Sequence[RockTest]) -> bool:
+    below = [
+        test.depth_m - weathered.depth_m
+        for test in sheet
+        if abs(test.offset_m - weathered.offset_m) <= SAME_PLACE_M
+        and test.depth_m >= weathered.depth_m
+    ]
+    return bool(below) and min(below) <= THIN_WEATHERED_M
