@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from decimal import Decimal
 
-from costing.price.money import percentage
+from costing.price.money import percentage, to_cents
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,4 +31,4 @@ class ContingencyStep:
         """
         if subtotal <= self.limit:
             return percentage(subtotal, percent)
-        return max(percentage(subtotal, self.percent_above), self.least)
+        return max(percentage(subtotal, self.percent_above), to_cents(self.least))
