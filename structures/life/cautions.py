@@ -229,6 +229,13 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
         ),
     ),
     "water-not-known": ("note", "{what} cannot be computed: {why}."),
+    "storage-none": (
+        "note",
+        (
+            "Water stands at {level_m:.2f} m already, at or above the crest at {crest_m:.2f} m: the "
+            "wall stores nothing more."
+        ),
+    ),
 }
 
 
