@@ -14,7 +14,7 @@ from structures.intake.tree import Node, shown
 
 DEPTH_MOST: Final = 32  # a pack nests five deep; deeper is no pack
 DIGITS_MOST: Final = 20  # digits of an integer read exactly; longer ones are read as floats
-_STRING: Final = re.compile(rb'"(?:[^"\\]|\\.)*+"', re.DOTALL)
+_STRING: Final = re.compile(rb'"(?:[^"\\]|\\.)*+"?', re.DOTALL)  # an unclosed one too: one pass
 _STEP: Final = np.zeros(256, dtype=np.int8)
 _STEP[list(b"[{")] = 1
 _STEP[list(b"]}")] = -1

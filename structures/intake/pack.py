@@ -88,7 +88,7 @@ class Sounding:
     array: Literal["schlumberger", "wenner"]
     readings: tuple[SoundingReading, ...]
     label: str
-    findings: tuple[Finding, ...] = field(default=(), compare=False)
+    findings: tuple[Finding, ...] = field(default=(), compare=False, repr=False)
 
 
 @dataclass(frozen=True, slots=True)
@@ -201,5 +201,5 @@ class SurveyPack:
     ground_water: GroundWater = GroundWater()
     wall: WallSettings = WallSettings()
     works: Works = Works()
-    findings: tuple[Finding, ...] = field(default=(), compare=False)
-    notes: tuple[Note, ...] = field(default=(), compare=False)
+    findings: tuple[Finding, ...] = field(default=(), compare=False, repr=False)
+    notes: tuple[Note, ...] = field(default=(), compare=False, repr=False)

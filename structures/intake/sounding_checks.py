@@ -71,12 +71,9 @@ def _check_order(segment: Readings, ledger: Ledger) -> None:
 def _check_overlap(before: Readings, after: Readings, ledger: Ledger) -> None:
     """Compare the readings taken twice where MN changed."""
     first = after[0]
-    twice = [
-        (one.record, later)
-        for later in after
-        for one in before
-        if math.isclose(one.record.ab2_m, later.record.ab2_m, rel_tol=SAME)
-    ]
+    earlier = {f"{one.record.ab2_m:.6g}": one.record for one in before}
+    repeats = [(earlier.get(f"{later.record.ab2_m:.6g}"), later) for later in after]
+    twice = [(one, later) for one, later in repeats if one]
     if not twice:
         what = f"MN changed at {first.record.ab2_m:g} m without a repeat reading."
         remedy = "The two branches cannot be tied: repeat one AB/2 with both."

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 from dataclasses import dataclass, field
+from itertools import islice
 from typing import TYPE_CHECKING, Final
 
 from structures.errors import Finding
@@ -119,5 +120,8 @@ class Ledger:
 
     def keep(self, node: Node) -> None:
         """Keep what a pack has no place for as a note."""
-        text = node.value if isinstance(node.value, str) else json.dumps(node.value, default=str)
+        text = node.value
+        if not isinstance(text, str):
+            chunks = json.JSONEncoder(default=str).iterencode(text)  # as much as is kept, no more
+            text = "".join(islice(chunks, TEXT_MOST))
         self.notes.append(Note(node.where, node.field, text[:TEXT_MOST]))
