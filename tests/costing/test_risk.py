@@ -76,7 +76,7 @@ def test_gate_of_arrays_takes_no_nonsense(value):
         hundredths([1.0, value])
 
 
-@settings(max_examples=30)
+@settings(max_examples=30, deadline=None)
 @given(schedules(), st.data())
 def test_every_draw_costs_what_its_estimate_prints(schedule, data):
     """Oracle: the estimate of each draw in decimals, with and without steps of contingency."""
@@ -94,7 +94,7 @@ def test_every_draw_costs_what_its_estimate_prints(schedule, data):
             assert total == make_abstract(lines, schedule, step=step).total * 100
 
 
-@settings(max_examples=30)
+@settings(max_examples=30, deadline=None)
 @given(cases())
 def test_draws_of_a_wall_cost_what_their_estimates_print(case):
     """Oracle: each draw measured, listed and priced alone."""

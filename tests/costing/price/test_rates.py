@@ -263,7 +263,7 @@ def schedule_or_refusal(name, data):
         return refused
 
 
-@settings(max_examples=150)
+@settings(max_examples=150, deadline=None)
 @given(
     st.sampled_from(["rates.csv", "rates.json", "rates", ""]), st.one_of(NOISE, TABLES, DOCUMENTS)
 )
