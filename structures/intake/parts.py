@@ -34,6 +34,7 @@ if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
 ROWS_MOST: Final = 5000  # rows of one list; a survey has some hundreds
+HEADINGS_SHOWN: Final = 12  # a pack's tables have no more
 Record = TypeVar("Record")
 
 
@@ -73,12 +74,27 @@ def read_list(
     closed: bool = False,
 ) -> list[Placed[Record]]:
     """Read a list of flat objects; those that are blocked are left out."""
+    elements = read_elements(node, least, ledger)
+    if elements and _columns_missing(node, elements[0], table, ledger):
+        return []
     placed = []
-    for element in read_elements(node, least, ledger):
+    for element in elements:
         values = read_fields(element, table, ledger, closed=closed)
         if values is not None:
             placed.append(Placed(make(**values), element))
     return placed
+
+
+def _columns_missing(node: Node, first: Node, table: tuple[Field, ...], ledger: Ledger) -> bool:
+    """Tell of a column that a table lacks once, not in each of its rows."""
+    if not first.tabular:
+        return False
+    missing = [field for field in table if field.required and field.key not in first.value]
+    for field in missing:
+        place = Node(None, node.where, first.named(field.key).field)
+        remedy = f"Headings here: {', '.join([*first.value][:HEADINGS_SHOWN])}."
+        ledger.add(place, f"There is no column {field.key}.", remedy)
+    return bool(missing)
 
 
 def read_site(node: Node, ledger: Ledger) -> Site | None:

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
 from structures.intake.builder import refusal
 from structures.intake.delimited import read_delimited
+from structures.intake.fields import ARRAYS
 from structures.intake.pack import Sounding
 from structures.intake.parts import read_readings
 from structures.intake.tree import Ledger, Node
@@ -40,7 +41,11 @@ def read_sounding(
     ------
     Refused
         If the file cannot be used; `findings` names each line and field.
+    ValueError
+        If the array is none that is known.
     """
+    if array not in ARRAYS:
+        raise ValueError(f"array is one of {', '.join(ARRAYS)}, not {array}")
     ledger = Ledger()
     if len(data) > FILE_MOST_BYTES:
         what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."

@@ -110,7 +110,7 @@ def _read_folder(folder: Path) -> SurveyPack:
             ledger.unread.add(path.stem.lower())
             continue
         files[path.name] = path.read_bytes()
-    return _build_files(folder.name, files, ledger)
+    return _build_files(folder.resolve().name, files, ledger)
 
 
 def _read_zip(name: str, data: bytes, ledger: Ledger) -> SurveyPack:

@@ -60,6 +60,21 @@ def test_two_entries_of_one_name_are_refused(tmp_path):
         read_pack(path)
 
 
+def test_entries_that_open_to_too_much_together_are_refused(tmp_path):
+    """Oracle: three entries of 18 MB, each under its own limit, against 50 MB in all."""
+    entries = {f"{name}.csv": b"0" * 18_000_000 for name in ("ground", "rock", "probes")}
+    with pytest.raises(Refused) as refused:
+        read_pack(write_zip(tmp_path / "p.zip", entries))
+    assert (
+        refused.value.findings[0].what == "The archive opens to 54 MB, limit 50. Nothing was read."
+    )
+
+
+def test_what_is_no_table_is_left_with_the_archive(tmp_path):
+    pack = read_pack(write_zip(tmp_path / "p.zip", GOOD_TABLES | {"photo.jpg": b"\xff\xd8\xff"}))
+    assert [(f.where, f.level) for f in pack.findings] == [("p.zip photo.jpg", "note")]
+
+
 def test_one_table_under_two_folders_is_refused(tmp_path):
     entries = GOOD_TABLES | {"old/site.csv": GOOD_TABLES["site.csv"]}
     with pytest.raises(Refused, match="second table site"):

@@ -49,6 +49,7 @@ def test_any_document_is_judged(document):
     judged(json.dumps(document).encode())
 
 
+@settings(max_examples=50)
 @given(st.dictionaries(st.sampled_from(list(GOOD)), DOCUMENTS, max_size=6))
 def test_any_parts_in_a_good_pack_are_judged(parts):
     judged(json.dumps(copy.deepcopy(GOOD) | parts).encode())

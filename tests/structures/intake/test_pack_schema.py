@@ -6,7 +6,7 @@ from pathlib import Path
 
 import jsonschema
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from structures.errors import Refused
@@ -74,7 +74,7 @@ ALONE = [(part, key) for part in ("wall", "works", "ground_water", "site") for k
 
 @pytest.mark.parametrize(("part", "key"), ALONE)
 def test_reader_and_schema_agree_both_ways_where_a_value_stands_alone(part, key):
-    for value in [*KINDS, None, 0, 0.0, 1, 0.5, 1.5, 2, 3, 3.01, 60]:
+    for value in ["4", True, [], "", None, 0, 0.5, 1, 1.5, 3, 3.01, 60]:
         document = good(rock_line=None, probes=None, rock=None)
         document[part][key] = value
         if key == "water_level_m" and isinstance(value, int | float):
@@ -82,6 +82,7 @@ def test_reader_and_schema_agree_both_ways_where_a_value_stands_alone(part, key)
         assert SCHEMA.is_valid(document) == reads(document), value
 
 
+@settings(max_examples=50)
 @given(st.sampled_from(sorted(WALL)), st.floats(-1, 150))
 def test_ranges_of_settings_agree(key, value):
     """Oracle: the table of defaults, its accepted ranges written out here."""

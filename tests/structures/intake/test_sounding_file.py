@@ -49,8 +49,8 @@ def test_doubts_come_with_the_sounding():
         (HEADING + "1.5,0.5,0\n", "schlumberger", "s.csv line 2", "apparent_resistivity_ohm_m"),
         (HEADING + "4,0.25,l76.1\n", "schlumberger", "s.csv line 2", "apparent_resistivity_ohm_m"),
         (HEADING + "1.5,2,100\n", "schlumberger", "s.csv line 2", "mn2_m"),
-        (HEADING + "1.5,0.5,100\n", "wenner", "s.csv line 2", "a_m"),
-        ("AB (m),MN (m),rho a\n3,0.5,339.8\n", "schlumberger", "s.csv line 2", "ab2_m"),
+        (HEADING + "1.5,0.5,100\n", "wenner", "s.csv", "a_m"),
+        ("AB (m),MN (m),rho a\n3,0.5,339.8\n", "schlumberger", "s.csv", "ab2_m"),
         (HEADING, "schlumberger", "s.csv", ""),
         ("", "schlumberger", "s.csv", ""),
         ("0" * 20_000_001, "schlumberger", "s.csv", ""),
@@ -58,6 +58,12 @@ def test_doubts_come_with_the_sounding():
 )
 def test_a_wrong_file_is_refused_at_its_line(data, array, where, field):
     assert (where, field) in refusal(data, array)
+
+
+def test_a_missing_column_is_told_once():
+    """Oracle: three columns are wanted, two of them are not there."""
+    data = "ab2_m,MN (m),rho a\n" + "3,0.5,339.8\n" * 12
+    assert refusal(data) == [("s.csv", "mn2_m"), ("s.csv", "apparent_resistivity_ohm_m")]
 
 
 def test_few_readings_are_held_not_refused():
@@ -71,6 +77,11 @@ def test_semicolons_and_decimal_commas_are_read_and_told():
     sounding = read_sounding("s.csv", data.encode())
     assert [reading.ab2_m for reading in sounding.readings] == [r["ab2_m"] for r in CURVE]
     assert [f.rule for f in sounding.findings] == ["FI-04"]
+
+
+def test_an_array_that_nobody_lays_out_is_a_wrong_call():
+    with pytest.raises(ValueError, match="schlumberger, wenner"):
+        read_sounding("s.csv", HEADING.encode(), "dipole")
 
 
 def test_a_sounding_file_is_no_pack():

@@ -193,10 +193,16 @@ def test_unknown_keys_are_kept_as_notes_and_told_once_each():
 def test_unknown_files_and_sheets_are_told(tmp_path):
     folder = write_folder(tmp_path / "s", grund="a\n1\n")
     (folder / "photo.jpg").write_bytes(b"\xff\xd8\xff")
+    (folder / ".hidden").write_bytes(b"")
     told = [(f.where, f.level, f.rule) for f in read_pack(folder).findings]
     assert told == [("photo.jpg", "note", "FI-03"), ("grund.csv", "warn", "FI-03")]
     book = write_workbook(tmp_path / "s.xlsx", Sheet1={})
     assert [(f.where, f.level) for f in read_pack(book).findings] == [("s.xlsx Sheet1", "note")]
+
+
+def test_an_object_of_very_many_fields_is_refused_as_one():
+    with pytest.raises(Refused, match=r"\$\.site, site: 201 fields are more than 200"):
+        from_json(good(site={"code": "KE-04"} | {f"k{n}": n for n in range(200)}), name="")
 
 
 SHORT = [{"ab2_m": n, "mn2_m": 0.3, "apparent_resistivity_ohm_m": 100} for n in (1, 2, 3)]
@@ -448,3 +454,11 @@ def test_the_worked_examples_are_packs(name):
     ]
     assert min(inside) == bed_level_m[name]
     assert pack.wall.changed == ("side_slope",)
+
+
+def test_the_folder_one_stands_in_is_named_too(tmp_path, monkeypatch):
+    folder = write_folder(tmp_path / "KE-04", toes=None)
+    monkeypatch.chdir(folder)
+    with pytest.raises(Refused) as refused:
+        read_pack(Path())
+    assert {f.where for f in refused.value.findings} == {"KE-04"}

@@ -84,3 +84,13 @@ def test_xml_that_is_not_plain_is_refused(head):
 def test_a_workbook_that_is_none_inside_is_refused():
     data = changed(workbook_bytes(), "xl/workbook.xml", rb"<sheets>", b"<sheets")
     assert refusal(data) == {("s.xlsx", "")}
+
+
+def test_a_sheet_of_a_pack_without_rows_is_refused():
+    assert refusal(workbook_bytes(side_slope={})) == {("s.xlsx side_slope", "")}
+
+
+def test_a_sheet_that_would_open_to_very_many_cells_is_refused():
+    """Oracle: a value at CA15000 spans 79 by 15000 cells, over half a million."""
+    data = workbook_bytes(ground={"CA15000": 1})
+    assert refusal(data) == {("s.xlsx ground", "")}

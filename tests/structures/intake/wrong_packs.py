@@ -308,6 +308,12 @@ WRONG_PACKS = [
         "unquoted decimal comma", {"toes": "left_m,right_m\n24,0,58,0\n"}, "toes.csv line 2", ""
     ),
     tables("heading missing", {"toes": "left,right_m\n24,58\n"}, "toes.csv line 2", "toes.left_m"),
+    tables(
+        "column missing",
+        {"probes": "offset_m,deep_m,refused\n36,4.0,yes\n44,4.4,no\n"},
+        "probes.csv",
+        "probes.depth_m",
+    ),
     tables("heading twice", {"toes": "left_m,left_m\n24,58\n"}, "toes.csv line 1", "left_m"),
     tables("headings only", {"probes": "offset_m,depth_m,refused\n"}, "probes.csv", ""),
     tables("empty table", {"ground": ""}, "ground.csv", ""),
