@@ -1,6 +1,166 @@
-"""Settings of every process."""
+"""Settings of every process: embedded in .data/ by default, servers by environment."""
 
-SECRET_KEY = "only for the first tests"  # noqa: S105 -- replaced with the start command
-INSTALLED_APPS: list[str] = []
-DATABASES = {"default": {"ENGINE": "django.db.backends.sqlite3", "NAME": ":memory:"}}
+from __future__ import annotations
+
+import os
+import sys
+from pathlib import Path
+
+import dj_database_url
+from csp.constants import NONE, SELF
+
+from config.env import WrongEnvironment, read_environment
+from config.secret import own_secret
+
+ROOT = Path(__file__).resolve().parent.parent
+DATA = ROOT / ".data"
+
+try:
+    ENVIRONMENT = read_environment(os.environ)
+except WrongEnvironment as wrong:
+    sys.exit(str(wrong))
+
+DEBUG = ENVIRONMENT.debug
+SECRET_KEY = ENVIRONMENT.secret_key or own_secret(DATA / "secret")
+ALLOWED_HOSTS = list(ENVIRONMENT.allowed_hosts)
+CURRENCY = ENVIRONMENT.currency
+DEMO_PASSWORD = ENVIRONMENT.demo_password
+
+INSTALLED_APPS = [
+    "django.contrib.contenttypes",
+    "django.contrib.auth",
+    "django.contrib.sessions",
+    "django.contrib.messages",
+    "django.contrib.staticfiles",
+    "config",
+    "structures",
+    "costing",
+]
+MIDDLEWARE = [
+    "django.middleware.security.SecurityMiddleware",
+    "whitenoise.middleware.WhiteNoiseMiddleware",
+    "csp.middleware.CSPMiddleware",
+    "django.contrib.sessions.middleware.SessionMiddleware",
+    "django.middleware.locale.LocaleMiddleware",
+    "django.middleware.common.CommonMiddleware",
+    "django.middleware.csrf.CsrfViewMiddleware",
+    "django.contrib.auth.middleware.AuthenticationMiddleware",
+    "django.contrib.messages.middleware.MessageMiddleware",
+    "django.middleware.clickjacking.XFrameOptionsMiddleware",
+]
+ROOT_URLCONF = "config.urls"
+WSGI_APPLICATION = "config.wsgi.application"
+TEMPLATES = [
+    {
+        "BACKEND": "django.template.backends.django.DjangoTemplates",
+        "DIRS": [ROOT / "templates"],
+        "APP_DIRS": True,
+        "OPTIONS": {
+            "context_processors": [
+                "django.template.context_processors.request",
+                "django.contrib.auth.context_processors.auth",
+                "django.contrib.messages.context_processors.messages",
+            ],
+        },
+    },
+]
+
+# --- Database ---------------------------------------------------------------------------------
+CONNECTION_LIFE_SECONDS = 600
+SQLITE_OPTIONS = {
+    # A transaction that reads and then writes takes its lock at once instead of failing half-way.
+    "transaction_mode": "IMMEDIATE",
+    "timeout": 20,
+}
+POSTGRES_OPTIONS = {"connect_timeout": 5}
+DATABASES = {
+    "default": dj_database_url.parse(
+        ENVIRONMENT.database_url or f"sqlite:///{DATA / 'underbund.sqlite3'}",
+        conn_max_age=CONNECTION_LIFE_SECONDS,
+        conn_health_checks=True,
+    )
+}
+DATABASES["default"].setdefault("OPTIONS", {}).update(
+    SQLITE_OPTIONS if DATABASES["default"]["ENGINE"].endswith("sqlite3") else POSTGRES_OPTIONS
+)
+DEFAULT_AUTO_FIELD = "django.db.models.BigAutoField"
+
+# --- Queue and runs ---------------------------------------------------------------------------
+QUEUE_URL = ENVIRONMENT.queue_url
+QUEUE_FOLDER = DATA / "queue"
+RUN_LEASE_SECONDS = 60  # a worker silent for longer has lost its run
+RUN_RESEND_SECONDS = 30  # a run that waits longer has lost its message
+RUN_SWEEP_SECONDS = 5
+RUN_ATTEMPTS = 5
+WORKER_SILENT_SECONDS = 30  # without a sign of life for longer, a worker does not count
+
+# --- People -----------------------------------------------------------------------------------
+AUTH_USER_MODEL = "structures.User"
+PASSWORD_HASHERS = [
+    "django.contrib.auth.hashers.Argon2PasswordHasher",
+    "django.contrib.auth.hashers.PBKDF2PasswordHasher",
+]
+_VALIDATION = "django.contrib.auth.password_validation"
+AUTH_PASSWORD_VALIDATORS = [
+    {"NAME": f"{_VALIDATION}.MinimumLengthValidator", "OPTIONS": {"min_length": 12}},
+    {"NAME": f"{_VALIDATION}.UserAttributeSimilarityValidator"},
+    {"NAME": f"{_VALIDATION}.CommonPasswordValidator"},
+]
+
+# --- Files ------------------------------------------------------------------------------------
+MEDIA_ROOT = ENVIRONMENT.media_root or DATA / "files"
+STATIC_URL = "/static/"
+STATIC_ROOT = DATA / "static"
+STORAGES = {
+    "default": {"BACKEND": "django.core.files.storage.FileSystemStorage"},
+    "staticfiles": {"BACKEND": "whitenoise.storage.CompressedManifestStaticFilesStorage"},
+}
+FILE_UPLOAD_PERMISSIONS = 0o640
+
+# --- Language and time ------------------------------------------------------------------------
+LANGUAGE_CODE = "en"
+LANGUAGES = [("en", "English")]
+LOCALE_PATHS = [ROOT / "locale"]
 USE_TZ = True
+TIME_ZONE = ENVIRONMENT.time_zone
+
+# --- Safety -----------------------------------------------------------------------------------
+CONTENT_SECURITY_POLICY = {
+    "DIRECTIVES": {
+        "default-src": [SELF],
+        "img-src": [SELF, "data:"],
+        "base-uri": [NONE],
+        "form-action": [SELF],
+        "frame-ancestors": [NONE],
+        "object-src": [NONE],
+    }
+}
+X_FRAME_OPTIONS = "DENY"
+SECURE_REFERRER_POLICY = "same-origin"
+SESSION_COOKIE_HTTPONLY = True
+SESSION_COOKIE_SAMESITE = "Lax"
+# A site with a name of its own stands behind a proxy that speaks TLS; this machine alone does not.
+SECURE_SSL_REDIRECT = ENVIRONMENT.public
+SECURE_REDIRECT_EXEMPT = [r"^healthz$", r"^readyz$"]
+SESSION_COOKIE_SECURE = ENVIRONMENT.public
+CSRF_COOKIE_SECURE = ENVIRONMENT.public
+if ENVIRONMENT.public:
+    SECURE_PROXY_SSL_HEADER = ("HTTP_X_FORWARDED_PROTO", "https")
+    SECURE_HSTS_SECONDS = 31_536_000  # one year of 365 days
+    SECURE_HSTS_INCLUDE_SUBDOMAINS = True
+# To be on the list built into browsers is the wish of a domain's owner, not of this program.
+SILENCED_SYSTEM_CHECKS = ["security.W021"]
+
+# --- What is written down ---------------------------------------------------------------------
+LOGGING = {
+    "version": 1,
+    "disable_existing_loggers": False,
+    "formatters": {"line": {"format": "%(asctime)s %(levelname)s %(name)s: %(message)s"}},
+    "handlers": {"stderr": {"class": "logging.StreamHandler", "formatter": "line"}},
+    "root": {"handlers": ["stderr"], "level": "WARNING"},
+    "loggers": {
+        "django": {"handlers": ["stderr"], "level": "WARNING", "propagate": False},
+        "structures": {"level": "INFO"},
+        "costing": {"level": "INFO"},
+    },
+}

@@ -1,0 +1,12 @@
+"""Every address: the two of health, then the pages of both apps."""
+
+from __future__ import annotations
+
+from django.urls import path
+
+from config import health
+
+urlpatterns = [
+    path("healthz", health.healthz, name="healthz"),
+    path("readyz", health.readyz, name="readyz"),
+]

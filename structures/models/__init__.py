@@ -1,0 +1,1 @@
+from structures.models.people import User

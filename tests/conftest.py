@@ -1,0 +1,42 @@
+"""What every test stands on: one hypothesis profile, and no file of the running site."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import pytest
+from django.conf import settings
+from django.test import override_settings
+from hypothesis import settings as hypothesis_settings
+
+from config.celery import app, folder_options
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator
+
+# The same examples every time: a law that fails must fail for everyone.
+hypothesis_settings.register_profile("underbund", deadline=None, derandomize=True)
+hypothesis_settings.load_profile("underbund")
+
+PLAIN_FILES = {"BACKEND": "django.contrib.staticfiles.storage.StaticFilesStorage"}
+
+
+def pytest_collection_modifyitems(items: list[pytest.Item]) -> None:
+    if settings.DATABASES["default"]["ENGINE"].endswith("postgresql"):
+        return
+    for item in items:
+        if item.get_closest_marker("postgres"):
+            item.add_marker(pytest.mark.skip(reason="DATABASE_URL does not name PostgreSQL"))
+
+
+@pytest.fixture(scope="session", autouse=True)
+def apart_from_the_running_site(tmp_path_factory: pytest.TempPathFactory) -> Iterator[None]:
+    """Uploads and the local queue of the tests lie in a folder of their own."""
+    folder = tmp_path_factory.mktemp("state")
+    queue = folder / "queue"
+    queue.mkdir()
+    if not settings.QUEUE_URL:
+        app.conf.broker_transport_options = folder_options(queue)
+    storages = {**settings.STORAGES, "staticfiles": PLAIN_FILES}
+    with override_settings(MEDIA_ROOT=folder / "files", QUEUE_FOLDER=queue, STORAGES=storages):
+        yield
