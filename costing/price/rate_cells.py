@@ -23,6 +23,7 @@ BY_LIFTS: Final = "excavation"  # the one item that is measured and priced by li
 PERCENT: Final = "percent"
 PERCENT_DECIMALS: Final = 4  # project choice; a percentage of more digits is a slip
 UNITS: Final = ITEMS | dict.fromkeys(MONEY, PERCENT)  # every item a schedule may hold -> its unit
+DOUBT: Final = "rates-read"  # rule of what is kept and only doubted
 RATE_MOST: Final = 1e8  # project choice; dearer by the unit is a slip of the decimal point
 RATE: Final = Field(
     "rate",
@@ -97,7 +98,7 @@ def _price(node: Node, exact: Decimal, ledger: Ledger) -> Decimal | None:
         return None
     if cents != exact:
         what = f"{shown(node.value)} has more than two decimals; {cents} is taken."
-        ledger.add(node, what, "Say so if that is wrong.", level="note")
+        ledger.add(node, what, "Say so if that is wrong.", level="note", rule=DOUBT)
     return cents
 
 

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Final
 from costing.price.money import gated, to_cents
 from costing.price.rate_cells import (
     BY_LIFTS,
+    DOUBT,
     PERCENT,
     check_unit,
     read_currency,
@@ -266,7 +267,8 @@ class _Sheet:
             near = difflib.get_close_matches(key, known, n=1)
             remedy = f"Was {near[0]} meant?" if near else "Nothing to do if it is only a remark."
             what = "A rate schedule has no such column; kept as a note."
-            self.ledger.add(member, what, remedy, level="warn" if near else "note")
+            level = "warn" if near else "note"
+            self.ledger.add(member, what, remedy, level=level, rule=DOUBT)
 
 
 def _rows(name: str, data: bytes, sheet: _Sheet) -> list[Node]:
