@@ -1,1 +1,2 @@
 from structures.models.people import User
+from structures.models.run import Run, WorkerPulse
