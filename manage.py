@@ -80,7 +80,8 @@ def run_django(arguments):
     try:
         execute_from_command_line(["manage.py", *arguments])
     except OperationalError as error:
-        return complain("The database does not answer: " + str(error).strip())
+        reason = str(error).strip().splitlines()[0]
+        return complain("The database cannot do this: " + reason + ". Look at DATABASE_URL.")
     except KeyboardInterrupt:
         return 130  # what a shell gives for a process ended by Ctrl-C
     return 0

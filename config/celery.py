@@ -23,9 +23,15 @@ def folder_options(folder: Path) -> dict[str, Any]:
     }
 
 
+def make_folder() -> None:
+    """Make the local queue's folder, readable by its owner alone; a server needs none."""
+    if not settings.QUEUE_URL:
+        (settings.QUEUE_FOLDER / "control").mkdir(mode=0o700, parents=True, exist_ok=True)
+
+
 app = Celery("underbund", set_as_current=True)
 app.conf.update(
-    broker_url=settings.QUEUE_URL or "filesystem://",
+    broker_url=settings.QUEUE_URL or "filesystem://localhost/",
     broker_transport_options=(
         {"socket_connect_timeout": 5}
         if settings.QUEUE_URL
