@@ -11,7 +11,6 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
-from scipy.optimize import brentq
 
 from structures.arrays import frozen
 from structures.ground.layer_prior import (
@@ -212,6 +211,9 @@ def _next_exponent(misfit: NDArray, exponent: float) -> float:
 
     if spare(1.0) >= 0:
         return 1.0
+    # Half a second to load, and a pack without a sounding never comes here.
+    from scipy.optimize import brentq  # noqa: PLC0415 -- see above
+
     return float(brentq(spare, exponent, 1.0, rtol=1e-6))
 
 

@@ -10,8 +10,6 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
-from scipy.linalg import cho_factor, cho_solve, cholesky
-from scipy.optimize import minimize
 from scipy.special import log_ndtr, ndtri_exp
 
 from structures.arrays import frozen
@@ -92,12 +90,12 @@ def predict(
     """
     at = np.asarray(at_m, dtype=np.float64)
     C = covariance.between(seen.offset_m, seen.offset_m) + np.diag(seen.sd_m**2)
-    factor = cho_factor(C + STEADY * covariance.sill_m2 * np.eye(len(C)))
+    C += STEADY * covariance.sill_m2 * np.eye(len(C))
     c = covariance.between(seen.offset_m, at)
-    Qc = cho_solve(factor, c)
+    Qc = np.linalg.solve(C, c)
     V = covariance.between(at, at) - c.T @ Qc
     if trend_m is None:
-        Q1 = cho_solve(factor, np.ones(len(C)))
+        Q1 = np.linalg.solve(C, np.ones(len(C)))
         trend_m = float(Q1 @ seen.level_m / Q1.sum())
         left_over = 1.0 - Q1 @ c
         V = V + np.outer(left_over, left_over) / Q1.sum()
@@ -119,17 +117,20 @@ def fit_covariance(
     sill_m2, range_m
         Least and greatest value that is accepted.
     """
+    # Half a second to load, and only a survey with very many bores comes here.
+    from scipy.optimize import minimize  # noqa: PLC0415 -- see above
+
     one = np.ones(seen.offset_m.size)
 
     def cost(logs: NDArray) -> float:
         covariance = Covariance(*np.exp(logs))
         C = covariance.between(seen.offset_m, seen.offset_m) + np.diag(seen.sd_m**2)
-        factor = cho_factor(C + STEADY * covariance.sill_m2 * np.eye(len(C)))
-        Q1, Qy = cho_solve(factor, one), cho_solve(factor, seen.level_m)
+        C += STEADY * covariance.sill_m2 * np.eye(len(C))
+        Q1, Qy = np.linalg.solve(C, np.column_stack([one, seen.level_m])).T
         trend = float(one @ Qy / (one @ Q1))
         rest = seen.level_m - trend
         return float(
-            np.log(np.diag(factor[0])).sum()
+            0.5 * np.linalg.slogdet(C).logabsdet
             + 0.5 * np.log(one @ Q1)
             + 0.5 * rest @ (Qy - trend * Q1)
         )
@@ -174,12 +175,14 @@ def draw_lines(
     k, m = bounds_m.size, prediction.mean_m.size
     mean, V = prediction.mean_m, prediction.covariance_m2 + steady_m2 * np.eye(m)
     if not k:
-        return mean + rng.standard_normal((draws, m)) @ cholesky(V)
+        return mean + rng.standard_normal((draws, m)) @ np.linalg.cholesky(V).T
     bounded = draw_bounded(mean[:k], V[:k, :k], bounds_m, draws=draws, rng=rng)
     weights = np.linalg.solve(V[:k, :k], V[:k, k:])
     rest = V[k:, k:] - V[k:, :k] @ weights + steady_m2 * np.eye(m - k)
     given = mean[k:] + (bounded - mean[:k]) @ weights
-    return np.hstack([bounded, given + rng.standard_normal((draws, m - k)) @ cholesky(rest)])
+    return np.hstack(
+        [bounded, given + rng.standard_normal((draws, m - k)) @ np.linalg.cholesky(rest).T]
+    )
 
 
 def draw_bounded(
@@ -203,7 +206,7 @@ def draw_bounded(
     ndarray
         Shape (draws, k).
     """
-    root = cholesky(V)
+    root = np.linalg.cholesky(V).T
     tried = mean_m + rng.standard_normal((TRIALS * draws, mean_m.size)) @ root
     kept = tried[(tried <= most_m).all(axis=1)]
     if len(kept) >= draws:

@@ -17,6 +17,7 @@ from structures.intake.tree import Node, shown
 if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
+BOOK: Final = "xl/workbook.xml"  # the entry that tells a workbook from a plain zip
 MEGABYTE: Final = 1_000_000  # SI
 FILE_MOST_BYTES: Final = 20 * MEGABYTE  # one file of a pack, opened (project choice)
 ARCHIVE_MOST_BYTES: Final = 50 * MEGABYTE  # all entries together, opened (project choice)

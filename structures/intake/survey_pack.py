@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Final
 
 from structures.errors import Finding, Refused
 from structures.intake.archive import (
+    BOOK,
     FILE_MOST_BYTES,
     MEGABYTE,
     check_nested,
@@ -22,7 +23,6 @@ from structures.intake.delimited import no_table, read_delimited
 from structures.intake.json_form import read_json
 from structures.intake.table_form import is_part, tree_of_tables
 from structures.intake.tree import Ledger, Node, shown
-from structures.intake.workbook import BOOK, read_workbook
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -75,6 +75,9 @@ def read_pack_bytes(name: str, data: bytes) -> SurveyPack:
     ledger = Ledger()
     if is_packed(data):
         if BOOK in entry_names(data):
+            # The workbook library takes a fifth of a second to load; other forms do without it.
+            from structures.intake.workbook import read_workbook  # noqa: PLC0415 -- see above
+
             tables = read_workbook(name, data, ledger)
             if ledger.blocks and not tables:
                 raise refusal(ledger)

@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING, Final
 from openpyxl.utils.cell import column_index_from_string, get_column_letter
 from python_calamine import CalamineError, CalamineWorkbook, SheetTypeEnum
 
-from structures.intake.archive import FILE_MOST_BYTES, read_archive
+from structures.intake.archive import BOOK, FILE_MOST_BYTES, read_archive
 from structures.intake.table_form import is_part
 from structures.intake.tables import COLUMNS_MOST, LINES_MOST, Cell, Row, Table, make_table
 from structures.intake.tree import Node, shown
@@ -22,7 +22,6 @@ from structures.intake.tree import Node, shown
 if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
-BOOK: Final = "xl/workbook.xml"
 LINKS: Final = "xl/_rels/workbook.xml.rels"
 CELLS_MOST: Final = 500_000  # cells of one sheet, empty ones between values included
 TEXT_MOST_BYTES: Final = 10 * FILE_MOST_BYTES  # longest text times cells, before it is spread out
