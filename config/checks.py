@@ -21,7 +21,7 @@ def check_secret(**_: object) -> list[Warning]:
 
 @register(Tags.security, deploy=True)
 def check_hosts(**_: object) -> list[Warning]:
-    if settings.ENVIRONMENT.public and "*" not in settings.ALLOWED_HOSTS:
+    if settings.ENVIRONMENT.public and "*" not in settings.ENVIRONMENT.allowed_hosts:
         return []
     return [
         Warning(
@@ -34,13 +34,10 @@ def check_hosts(**_: object) -> list[Warning]:
 
 @register(Tags.database, deploy=True)
 def check_servers(**_: object) -> list[Warning]:
+    said = settings.ENVIRONMENT
     local = [
-        name
-        for name, embedded in (
-            ("DATABASE_URL", settings.DATABASES["default"]["ENGINE"].endswith("sqlite3")),
-            ("QUEUE_URL", not settings.QUEUE_URL),
-        )
-        if embedded
+        *(["DATABASE_URL"] if not said.database_url.startswith("postgres") else []),
+        *(["QUEUE_URL"] if not said.queue_url else []),
     ]
     if not local:
         return []
