@@ -6,6 +6,7 @@ changed the computed line breaks. Below, on the same axis, the layers with the r
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
@@ -185,7 +186,7 @@ def _layers(sheet: Sheet, view: SoundingView, frame: LogFrame, top: float) -> fl
     ]
     sheet.path(trail, "p5")
     for place, (y, ohm_m) in enumerate(zip(heights, view.resistivity_ohm_m, strict=True)):
-        words = f"{ohm_m:.3g}"
+        words = three_figures(float(ohm_m))
         room = edges[place + 1] - edges[place] >= width_mm(words) + 1.6
         x = edges[place] + 0.8 if room else (edges[place] + edges[place + 1]) / 2
         sheet.text((x, y - 1.2), words, "halo" if room else "halo mid")
@@ -193,6 +194,12 @@ def _layers(sheet: Sheet, view: SoundingView, frame: LogFrame, top: float) -> fl
     sheet.line((LEFT_MM, foot), (frame.right, foot), "p2")
     sheet.text((0.4, top + 2.0), "layers ohm m", "small quiet")
     return foot
+
+
+def three_figures(value: float) -> str:
+    """Write a value with three figures that count, never with a power of ten."""
+    places = max(0, 2 - math.floor(math.log10(abs(value))))
+    return f"{float(f'{value:.3g}'):.{places}f}"
 
 
 def _rock_words(sheet: Sheet, view: SoundingView, y: float) -> float:
@@ -246,13 +253,13 @@ def _next_place(x: float, y: float, words: str) -> tuple[float, float]:
 def _describe(view: SoundingView) -> str:
     first, last = int(view.ab2_m.argmin()), int(view.ab2_m.argmax())
     ends = (
-        f"Apparent resistivity {view.observed_ohm_m[first]:.3g} ohm m at AB/2 "
-        f"{view.ab2_m[first]:g} m, {view.observed_ohm_m[last]:.3g} at {view.ab2_m[last]:g} m."
+        f"Apparent resistivity {three_figures(float(view.observed_ohm_m[first]))} ohm m at AB/2 "
+        f"{view.ab2_m[first]:g} m, {three_figures(float(view.observed_ohm_m[last]))} at {view.ab2_m[last]:g} m."
     )
     said = [ends]
     tops = [0.0, *view.bottom_m.tolist()]
     said += [
-        f"{ohm_m:.3g} ohm m from {top:.1f} m."
+        f"{three_figures(ohm_m)} ohm m from {top:.1f} m."
         for top, ohm_m in zip(tops, view.resistivity_ohm_m.tolist(), strict=False)
     ]
     if view.rock_depth_m is None:

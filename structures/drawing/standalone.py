@@ -2,15 +2,20 @@
 
 A page's drawing takes its pens from two style sheets, by custom properties. Viewers and printers of
 SVG files know neither, so the rules that a drawing uses are written into it with the colours of
-print, and letters of other scripts are given the font that has them.
+print, and letters of other scripts are given the font that has them. Some of them paint the white
+edge of letters over their neighbours; words with such an edge get a white ground instead.
 """
 
 from __future__ import annotations
 
 import re
-from functools import cache
+from functools import cache, partial
+from html import unescape
 from pathlib import Path
 from typing import Final
+
+from structures.drawing.letters import PHONE_SMALL_MM, PHONE_TEXT_MM, SMALL_MM, TEXT_MM
+from structures.drawing.places import Label
 
 STYLES: Final = Path(__file__).resolve().parents[1] / "static" / "underbund"
 LATIN_FONT: Final = "Noto Sans"
@@ -19,6 +24,9 @@ SCRIPTS: Final = (
     (re.compile("[\u0900-\u097f\u1cd0-\u1cff\ua8e0-\ua8ff\u200c\u200d]+"), "Noto Sans Devanagari"),
 )
 WORDS: Final = re.compile(r"(<text[^>]*>)([^<]*)(</text>)")
+ATTRIBUTE: Final = re.compile(r'([a-z]+)="([^"]*)"')
+SIZES: Final = ((TEXT_MM, SMALL_MM), (PHONE_TEXT_MM, PHONE_SMALL_MM))
+GROUND_OPACITY: Final = 0.85  # lets a line show through, so that it is seen to go on
 COMMENT: Final = re.compile(r"/\*.*?\*/", re.DOTALL)
 PROPERTY: Final = re.compile(r"(--[a-z0-9-]+)\s*:\s*([^;]+);")
 DECLARATION: Final = re.compile(r"([a-z-]+)\s*:\s*([^;]+?)\s*(?:;|$)")
@@ -48,18 +56,39 @@ def standalone(markup: str) -> str:
     style = f"<style>.dw text{{font-family:'{LATIN_FONT}',sans-serif}}{rules}</style>"
     paper = '<rect class="fill-paper" width="100%" height="100%"/>'
     head, rest = markup.split("</defs>", 1)
-    styled = f"{head}</defs>{style}{paper}{WORDS.sub(_scripts, rest)}"
+    body = WORDS.sub(partial(_words, narrow="dw-narrow" in used), rest)
+    styled = f"{head}</defs>{style}{paper}{body}"
     return f'<?xml version="1.0" encoding="UTF-8"?>\n{styled}\n'
 
 
-def _scripts(match: re.Match[str]) -> str:
-    """Mark letters that the Latin font does not have with the font that does."""
+def _words(match: re.Match[str], *, narrow: bool) -> str:
+    """Write one text: on a white ground where it had a white edge, each script in its font."""
     start, words, stop = match.groups()
+    ground = ""
+    given = dict(ATTRIBUTE.findall(start))
+    css = given.get("class", "").split()
+    if "halo" in css:
+        start = start.replace(given["class"], " ".join(name for name in css if name != "halo"))
+        ground = _white_ground(given, unescape(words), narrow=narrow)
     for letters, font in SCRIPTS:
         words = letters.sub(
             lambda run, font=font: f'<tspan font-family="{font}">{run[0]}</tspan>', words
         )
-    return f"{start}{words}{stop}"
+    return f"{ground}{start}{words}{stop}"
+
+
+def _white_ground(given: dict[str, str], words: str, *, narrow: bool) -> str:
+    css = given["class"].split()
+    size = SIZES[narrow]["small" in css]
+    anchor = next((name for name in ("mid", "end") if name in css), "start")
+    place = float(given["x"]), float(given["y"])
+    box = Label(*place, (words,), anchor, "strong" in css).box(size, size)
+    turn = f' transform="{given["transform"]}"' if "transform" in given else ""
+    return (
+        f'<rect class="fill-paper" fill-opacity="{GROUND_OPACITY:g}" x="{box.left:.2f}"'
+        f' y="{box.top:.2f}" width="{box.right - box.left:.2f}"'
+        f' height="{box.bottom - box.top:.2f}"{turn}/>'
+    )
 
 
 @cache
