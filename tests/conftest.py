@@ -31,12 +31,18 @@ def pytest_collection_modifyitems(items: list[pytest.Item]) -> None:
 
 @pytest.fixture(scope="session", autouse=True)
 def apart_from_the_running_site(tmp_path_factory: pytest.TempPathFactory) -> Iterator[None]:
-    """Uploads and the local queue of the tests lie in a folder of their own."""
+    """Uploads, static files and the local queue of the tests lie in a folder of their own."""
     folder = tmp_path_factory.mktemp("state")
-    queue = folder / "queue"
+    queue, static = folder / "queue", folder / "static"
     queue.mkdir()
+    static.mkdir()
     if not settings.QUEUE_URL:
         app.conf.broker_transport_options = folder_options(queue)
     storages = {**settings.STORAGES, "staticfiles": PLAIN_FILES}
-    with override_settings(MEDIA_ROOT=folder / "files", QUEUE_FOLDER=queue, STORAGES=storages):
+    with override_settings(
+        MEDIA_ROOT=folder / "files",
+        STATIC_ROOT=static,
+        QUEUE_FOLDER=queue,
+        STORAGES=storages,
+    ):
         yield
