@@ -20,3 +20,4 @@ class ConfigConfig(AppConfig):
         if WITHOUT_QUEUE.isdisjoint(sys.argv[1:2]):
             # A shared task without this would ask for a queue at Celery's own default address.
             import config.celery  # noqa: F401, PLC0415 -- the queue, in every process that sends
+            import costing.tasks  # noqa: F401, PLC0415 -- kinds of run, once models exist

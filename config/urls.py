@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from django.urls import path
+from django.urls import include, path
 
 from config import health
 
 urlpatterns = [
     path("healthz", health.healthz, name="healthz"),
     path("readyz", health.readyz, name="readyz"),
+    path("", include("costing.web.urls")),
 ]

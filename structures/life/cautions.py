@@ -12,6 +12,19 @@ from typing import TYPE_CHECKING, Final
 if TYPE_CHECKING:
     from structures.errors import Level
 
+# Cautions of the work itself, whatever the survey says; every other one is about this survey.
+ALWAYS: Final = frozenset(
+    {
+        "trench-collapse",
+        "edge",
+        "pumping",
+        "uplift",
+        "flood",
+        "geophysics",
+        "raw-water",
+        "downstream",
+    }
+)
 CLOSING_SENTENCE: Final = "Local codes and licensed practice decide; this sheet does not."
 
 

@@ -39,7 +39,7 @@ class Claim:
     kind: str
     params: dict[str, Any]
 
-    def rows(self) -> Any:  # noqa: ANN401 -- a queryset of at most one run
+    def rows(self) -> Any:
         return Run.objects.filter(pk=self.run_id, fence=self.fence, state=Run.State.RUNNING)
 
 
