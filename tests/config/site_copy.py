@@ -11,7 +11,10 @@ from pathlib import Path
 
 ROOT = Path(__file__).resolve().parents[2]
 SYSTEM_PYTHON = getattr(sys, "_base_executable", sys.executable)
-VARIABLES = ("DATABASE_URL", "QUEUE_URL", "ALLOWED_HOSTS", "DEBUG", "MEDIA_ROOT", "SECRET_KEY")
+VARIABLES = (
+    *("DATABASE_URL", "QUEUE_URL", "SECRET_KEY", "ALLOWED_HOSTS", "MEDIA_ROOT", "DEBUG"),
+    *("PYTHONWARNINGS", "DJANGO_SETTINGS_MODULE"),
+)
 
 
 def clean_environment(**more):

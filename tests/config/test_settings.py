@@ -13,7 +13,7 @@ from pathlib import Path
 import pytest
 
 from config import checks
-from config.env import read_environment
+from config.env import VARIABLES, read_environment
 
 ROOT = Path(__file__).resolve().parents[2]
 SERVERS = {
@@ -29,7 +29,7 @@ print(json.dumps({name: getattr(settings, name) for name in sys.argv[1:]}, defau
 
 
 def process(environ, *command):
-    ours = set(SERVERS) | {"SECRET_KEY", "DEBUG", "TIME_ZONE", "CURRENCY", "MEDIA_ROOT"}
+    ours = {one.name for one in VARIABLES} | {"PYTHONWARNINGS"}
     clean = {name: value for name, value in os.environ.items() if name not in ours}
     return subprocess.run(
         [sys.executable, *command],
