@@ -21,7 +21,6 @@ from structures.documents.press import press
 from structures.documents.sounding_result import depth_lines, sounding_json
 from structures.drawing.numbers import section_numbers
 from structures.drawing.section import describe, draw_section
-from structures.drawing.standalone import standalone
 from structures.life.cautions import CLOSING_SENTENCE
 
 if TYPE_CHECKING:
@@ -57,9 +56,9 @@ def report_pdf(found: Appraisal) -> bytes:
         A PDF on A4, its drawings as vectors; the same appraisal gives the same bytes.
     """
     view = appraised_section(found)
-    drawings = {"section.svg": standalone(draw_section(view))}
+    drawings = {"section.svg": draw_section(view)}
     for place, markup in enumerate(appraised_soundings(found), 1):
-        drawings[f"sounding-{place}.svg"] = standalone(markup)
+        drawings[f"sounding-{place}.svg"] = markup
     source = SOURCE.read_text(encoding="utf-8")
     return press(source, report_data(found, view), made_on=found.on, drawings=drawings)
 

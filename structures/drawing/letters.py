@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import unicodedata
 from typing import Final
 
@@ -30,6 +31,9 @@ BOLD: Final = (
     305, 982, 657, 619, 633, 633, 454, 497, 434, 657, 569, 856, 578, 569, 488, 394, 551, 394, 572,
 )
 # fmt: on
+# Letters of a script, marks and joiners between them included: their ranges in Unicode, the font.
+DEVANAGARI: Final = re.compile("[\u0900-\u097f\u1cd0-\u1cff\ua8e0-\ua8ff\u200c\u200d]+")
+SCRIPTS: Final = ((DEVANAGARI, "Noto Sans Devanagari"),)
 OTHER: Final = (
     1030  # any other letter: the widest single letter of Noto Sans Devanagari, rounded up
 )

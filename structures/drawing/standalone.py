@@ -14,18 +14,12 @@ from html import unescape
 from pathlib import Path
 from typing import Final
 
-from structures.drawing.letters import PHONE_SMALL_MM, PHONE_TEXT_MM, SMALL_MM, TEXT_MM
+from structures.drawing.letters import SCRIPTS
 from structures.drawing.places import Label
+from structures.drawing.written import ATTRIBUTE, WORDS, anchor_of, size_mm
 
 STYLES: Final = Path(__file__).resolve().parents[1] / "static" / "underbund"
 LATIN_FONT: Final = "Noto Sans"
-# Letters of a script, marks and joiners between them included: their ranges in Unicode, the font.
-SCRIPTS: Final = (
-    (re.compile("[\u0900-\u097f\u1cd0-\u1cff\ua8e0-\ua8ff\u200c\u200d]+"), "Noto Sans Devanagari"),
-)
-WORDS: Final = re.compile(r"(<text[^>]*>)([^<]*)(</text>)")
-ATTRIBUTE: Final = re.compile(r'([a-z]+)="([^"]*)"')
-SIZES: Final = ((TEXT_MM, SMALL_MM), (PHONE_TEXT_MM, PHONE_SMALL_MM))
 GROUND_OPACITY: Final = 0.85  # lets a line show through, so that it is seen to go on
 COMMENT: Final = re.compile(r"/\*.*?\*/", re.DOTALL)
 PROPERTY: Final = re.compile(r"(--[a-z0-9-]+)\s*:\s*([^;]+);")
@@ -79,10 +73,9 @@ def _words(match: re.Match[str], *, narrow: bool) -> str:
 
 def _white_ground(given: dict[str, str], words: str, *, narrow: bool) -> str:
     css = given["class"].split()
-    size = SIZES[narrow]["small" in css]
-    anchor = next((name for name in ("mid", "end") if name in css), "start")
+    size = size_mm(css, narrow=narrow)
     place = float(given["x"]), float(given["y"])
-    box = Label(*place, (words,), anchor, "strong" in css).box(size, size)
+    box = Label(*place, (words,), anchor_of(css), "strong" in css).box(size, size)
     turn = f' transform="{given["transform"]}"' if "transform" in given else ""
     return (
         f'<rect class="fill-paper" fill-opacity="{GROUND_OPACITY:g}" x="{box.left:.2f}"'

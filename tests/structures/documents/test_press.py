@@ -5,7 +5,6 @@ import typst
 
 from structures.documents.press import FONTS, press
 from structures.drawing.section import draw_section
-from structures.drawing.standalone import standalone
 from tests.structures.documents.pdf import read_pdf
 from tests.structures.drawing.views import VIEWS
 
@@ -31,7 +30,7 @@ SOURCE = """
 
 
 def leaf(**changes):
-    drawings = {"section.svg": standalone(draw_section(VIEWS["A"]()))}
+    drawings = {"section.svg": draw_section(VIEWS["A"]())}
     return press(SOURCE, WORDS | changes, made_on=ON, drawings=drawings)
 
 
