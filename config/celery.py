@@ -38,6 +38,7 @@ app.conf.update(
         else folder_options(settings.QUEUE_FOLDER)
     ),
     broker_connection_retry_on_startup=True,
+    broker_connection_max_retries=None,  # a queue that was away for a night is found again
     task_default_queue="underbund",
     task_serializer="json",
     accept_content=["json"],
