@@ -47,7 +47,7 @@ def figures_of(found: Appraisal) -> dict[str, Any]:
     return {
         "wide": draw_section(view),
         "narrow": draw_section(view, name="section-narrow", narrow=True),
-        "numbers": {"heads": list(COLUMNS), "rows": _numbers(view)},
+        "numbers": {"heads": [*COLUMNS, "what"], "rows": _numbers(view)},
         "soundings": [
             {
                 "label": said.label,
@@ -62,9 +62,10 @@ def figures_of(found: Appraisal) -> dict[str, Any]:
 def _numbers(view: SectionView) -> list[list[str]]:
     """Give every row as text; an empty cell is not known there, or no wall."""
     return [
-        [
-            "" if value is None else f"{value:.2f}"
-            for value in (getattr(row, name) for name in COLUMNS.values())
-        ]
+        [*(_cell(getattr(row, name)) for name in COLUMNS.values()), row.note]
         for row in section_numbers(view)
     ]
+
+
+def _cell(value: float | None) -> str:
+    return "" if value is None else f"{value:.2f}"
