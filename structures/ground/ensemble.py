@@ -8,6 +8,7 @@ layers has its own cloud of particles, led from the prior to the posterior in te
 from __future__ import annotations
 
 from dataclasses import dataclass
+from types import MappingProxyType
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
@@ -19,11 +20,11 @@ from structures.ground.layer_prior import (
     log_density,
     shows_rock,
 )
-from structures.ground.resistivity import SAMPLING_POINTS, apparent_resistivity, spread
+from structures.ground.resistivity import COARSE, apparent_resistivity, spread
 from structures.ground.sounding_curve import whitened_residual
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Sequence
+    from collections.abc import Callable, Mapping, Sequence
 
     from numpy.typing import NDArray
 
@@ -33,6 +34,7 @@ if TYPE_CHECKING:
 KEPT_SHARE: Final = 0.5  # each step keeps half of the effective sample size
 ACCEPTED_SHARE: Final = 0.25  # the length of a move is led to a quarter accepted
 LENGTH: Final = 2.38  # over the root of the unknowns: best length of a Gaussian random walk
+HOPELESS: Final = -20.0  # log weight, beside the best, under which a cloud is not sampled: 2e-9
 FULL_SHARE: Final = 0.1  # of the difference moves go at full length, to jump between modes
 
 
@@ -71,7 +73,10 @@ class Cloud:
 
 @dataclass(frozen=True, eq=False, slots=True)
 class Ensemble:
-    """The weighted union of the clouds; arrays of shape (members,), in the order of the clouds."""
+    """The weighted union of the clouds; arrays of shape (members,), in the order of the clouds.
+
+    `layer_weight` gives the weight of each number of layers, 0 where it could not count.
+    """
 
     clouds: tuple[Cloud, ...]
     layer_weight: tuple[tuple[int, float], ...]
@@ -102,7 +107,12 @@ class Ensemble:
 
 
 def sample_ensemble(
-    readings: Curve, prior: Prior, *, rng: np.random.Generator, effort: Effort = EFFORT
+    readings: Curve,
+    prior: Prior,
+    *,
+    rng: np.random.Generator,
+    effort: Effort = EFFORT,
+    floors: Mapping[int, float] = MappingProxyType({}),
 ) -> Ensemble:
     """Sample models of every number of layers of the prior and weigh them by evidence.
 
@@ -118,27 +128,27 @@ def sample_ensemble(
         The one source of chance; the same seed gives the same digits.
     effort
         Draws, particles and moves of each sampler.
+    floors
+        Least chi-square of a number of layers, where it is known from a fit. The evidence cannot
+        exceed exp(-chi-square/2), so a number of layers that cannot count is not sampled.
     """
-    clouds = tuple(
-        sample_cloud(readings, prior, layers, rng=rng, effort=effort)
-        for layers, _ in prior.layer_share
-    )
-    log_weight = np.array(
-        [
-            np.log(share) + cloud.log_evidence
-            for (_, share), cloud in zip(prior.layer_share, clouds, strict=True)
-        ]
-    )
-    weight = np.exp(log_weight - log_weight.max())
-    weight /= weight.sum()
+    clouds: list[Cloud] = []
+    log_weight = dict.fromkeys((layers for layers, _ in prior.layer_share), -np.inf)
+    for layers, share in sorted(prior.layer_share, reverse=True):
+        best = max(log_weight.values())
+        if np.log(share) - floors.get(layers, 0.0) / 2 < best + HOPELESS:
+            continue
+        cloud = sample_cloud(readings, prior, layers, rng=rng, effort=effort)
+        log_weight[layers] = np.log(share) + cloud.log_evidence
+        clouds.insert(0, cloud)
+    best = max(log_weight.values())
+    total = sum(np.exp(value - best) for value in log_weight.values())
+    weight = {layers: float(np.exp(log_weight[layers] - best) / total) for layers in log_weight}
     return Ensemble(
-        clouds,
-        tuple((cloud.layers, float(w)) for cloud, w in zip(clouds, weight, strict=True)),
+        tuple(clouds),
+        tuple(weight.items()),
         np.concatenate(
-            [
-                np.full(len(cloud.unknowns), w / len(cloud.unknowns))
-                for cloud, w in zip(clouds, weight, strict=True)
-            ]
+            [np.full(len(c.unknowns), weight[c.layers] / len(c.unknowns)) for c in clouds]
         ),
         np.concatenate([deepest_boundary_m(cloud.unknowns, cloud.layers) for cloud in clouds]),
         np.concatenate([shows_rock(prior, cloud.unknowns, cloud.layers) for cloud in clouds]),
@@ -186,7 +196,7 @@ def sample_cloud(
 
 def _misfit(readings: Curve, prior: Prior, layers: int) -> Callable[[NDArray], NDArray]:
     """Give the function from ln parameters to chi-square, a measured resistivity included."""
-    prepared = spread(readings.ab2_m, readings.mn2_m, points_per_octave=SAMPLING_POINTS)
+    prepared = spread(readings.ab2_m, readings.mn2_m, grid=COARSE)
     sand = prior.saturated_sand
 
     def chi_square(points: NDArray) -> NDArray[np.float64]:

@@ -28,11 +28,6 @@ class RockRule:
     least_ratio: float = GROUND["rock_least_ratio"].value
     share: float = GROUND["rock_share"].value
 
-    def passes(self, above_ohm_m: NDArray, deepest_ohm_m: NDArray) -> NDArray[np.bool_]:
-        """Say of each model whether its deepest layer is rock over the layer above."""
-        hard = deepest_ohm_m >= self.least_ohm_m
-        return hard & (deepest_ohm_m >= self.least_ratio * above_ohm_m)
-
 
 @dataclass(frozen=True, slots=True)
 class SaturatedSand:
@@ -129,8 +124,13 @@ def deepest_boundary_m(unknowns: NDArray, layers: int) -> NDArray[np.float64]:
 
 
 def shows_rock(prior: Prior, unknowns: NDArray, layers: int) -> NDArray[np.bool_]:
-    """Say of each model, given as ln parameters, whether it passes the rule of rock."""
-    return prior.rock.passes(np.exp(unknowns[:, layers - 2]), np.exp(unknowns[:, layers - 1]))
+    """Say of each model, given as ln parameters, whether its deepest layer is read as rock.
+
+    Source: handbook 2.10.
+    """
+    above, deepest = unknowns[:, layers - 2], unknowns[:, layers - 1]
+    hard = deepest >= np.log(prior.rock.least_ohm_m)
+    return hard & (deepest >= above + np.log(prior.rock.least_ratio))
 
 
 @lru_cache(maxsize=64)

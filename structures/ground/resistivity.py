@@ -21,28 +21,47 @@ from structures.arrays import frozen
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike, NDArray
 
-POINTS: Final = 6  # coarse points an octave of wave number; within 4e-7 over all usual models
-SAMPLING_POINTS: Final = 3  # the same for samplers: within 5e-4, a twentieth of the least noise
-LOW_END: Final = 3e-3  # least wave number times greatest distance; what is below adds under 1e-8
-WINDOW: Final = 50.0  # wave number times least distance where the window is down to a half
-WINDOW_WIDTH: Final = 10.0  # its width; the Fourier transform of erfc leaves exp(-width^2/4)
-HIGH_END: Final = WINDOW + 5 * WINDOW_WIDTH  # erfc(5) is 1.5e-12
 STENCIL: Final = 10  # points of the Lagrange interpolation from the coarse to the fine grid
 GAUSS_POINTS: Final = 8  # of each panel of half a wave; exact to 1e-12 for a cosine
 CHUNK: Final = 16_000  # numbers an array may hold: 125 KB stay in the cache and in reused memory
+
+
+@dataclass(frozen=True, slots=True)
+class Grid:
+    """How finely and how far a transform is tabulated.
+
+    `points` to each octave of the wave number. The grid begins at `low_end` over the greatest
+    distance, since the integrand falls with the cube of the wave number. The window is down to a
+    half at `window` over the least distance and is an error function `width` wide; the Fourier
+    transform of that leaves exp(-width^2/4) of what is cut off.
+    """
+
+    points: int
+    low_end: float
+    window: float
+    width: float
+
+    @property
+    def high_end(self) -> float:
+        """Wave number times least distance where the window is down to 1e-12."""
+        return self.window + 5 * self.width
+
+
+FINE: Final = Grid(6, 3e-3, 50.0, 10.0)  # within 4e-7 over all usual models
+COARSE: Final = Grid(3, 2e-2, 35.0, 8.0)  # for samplers: within 1e-3, a tenth of the least noise
 
 
 @dataclass(frozen=True, eq=False, slots=True)
 class Spread:
     """Readings (AB/2, MN/2) with the matrix that turns a transform into apparent resistivity.
 
-    `wave_number_per_m` has shape (k,), with `points_per_octave` to each doubling; `weight` has
+    `wave_number_per_m` has shape (k,), with `points` to each doubling; `weight` has
     shape (readings, k).
     """
 
     ab2_m: NDArray[np.float64]
     mn2_m: NDArray[np.float64]
-    points_per_octave: int
+    points: int
     wave_number_per_m: NDArray[np.float64]
     weight: NDArray[np.float64]
 
@@ -53,7 +72,7 @@ class Spread:
             raise ValueError(f"weight has shape {self.weight.shape}")
 
 
-def spread(ab2_m: ArrayLike, mn2_m: ArrayLike, *, points_per_octave: int = POINTS) -> Spread:
+def spread(ab2_m: ArrayLike, mn2_m: ArrayLike, *, grid: Grid = FINE) -> Spread:
     """Prepare the matrix for the readings of one sounding; the same readings are prepared once.
 
     Source: handbook 2.2, 2.3; Gauss-Legendre panels of half a wave, Lagrange interpolation.
@@ -63,8 +82,8 @@ def spread(ab2_m: ArrayLike, mn2_m: ArrayLike, *, points_per_octave: int = POINT
     ab2_m, mn2_m
         Half the current and half the potential electrode spacing, m, shape (readings,). An
         MN/2 of 0 asks for the limit MN -> 0 (2.4a), which is no recorded reading.
-    points_per_octave
-        Points of the coarse grid to each doubling of the wave number.
+    grid
+        How finely the transform is tabulated: FINE, or COARSE for samplers.
 
     Raises
     ------
@@ -76,51 +95,51 @@ def spread(ab2_m: ArrayLike, mn2_m: ArrayLike, *, points_per_octave: int = POINT
         raise ValueError(f"{ab2.size} values of AB/2 but {mn2.size} of MN/2")
     if not ((mn2 >= 0) & (mn2 < ab2)).all():
         raise ValueError("MN/2 must lie between 0 and AB/2")
-    if points_per_octave < 1:
-        raise ValueError("points an octave must be one or more")
-    return _prepared(tuple(ab2), tuple(mn2), points_per_octave)
+    return _prepared(tuple(ab2), tuple(mn2), grid)
 
 
 @lru_cache(maxsize=64)
-def _prepared(ab2_m: tuple[float, ...], mn2_m: tuple[float, ...], points: int) -> Spread:
+def _prepared(ab2_m: tuple[float, ...], mn2_m: tuple[float, ...], grid: Grid) -> Spread:
     ab2, mn2 = np.array(ab2_m), np.array(mn2_m)
-    low, high = LOW_END / (ab2 + mn2).max(), HIGH_END / (ab2 - mn2).min()
+    low, high = grid.low_end / (ab2 + mn2).max(), grid.high_end / (ab2 - mn2).min()
     before = STENCIL // 2 - 1
-    octaves = int(np.ceil(np.log2(high / low) + STENCIL / points))
-    grid = np.log(low) + np.log(2.0) / points * (np.arange(octaves * points) - before)
-    rows = [_row(s, b, low, grid) for s, b in zip(ab2_m, mn2_m, strict=True)]
-    return Spread(ab2, mn2, points, np.exp(grid), np.array(rows))
+    octaves = int(np.ceil(np.log2(high / low) + STENCIL / grid.points))
+    places = np.arange(octaves * grid.points) - before
+    log_wave = np.log(low) + np.log(2.0) / grid.points * places
+    rows = [_row(s, b, log_wave, grid) for s, b in zip(ab2_m, mn2_m, strict=True)]
+    return Spread(ab2, mn2, grid.points, np.exp(log_wave), np.array(rows))
 
 
-def _row(ab2_m: float, mn2_m: float, low_per_m: float, log_grid: NDArray) -> NDArray[np.float64]:
+def _row(ab2_m: float, mn2_m: float, log_wave: NDArray, grid: Grid) -> NDArray[np.float64]:
     """Integrate the kernel of one reading against each point of the coarse grid."""
-    edges = _edges_per_m(low_per_m, ab2_m - mn2_m, ab2_m + mn2_m)
+    low = float(np.exp(log_wave[STENCIL // 2 - 1]))
+    edges = _edges_per_m(low, grid.high_end / (ab2_m - mn2_m), ab2_m + mn2_m)
     node, node_weight = np.polynomial.legendre.leggauss(GAUSS_POINTS)
     half = np.diff(edges)[:, None] / 2
     wave = (edges[:-1, None] + half * (node + 1)).ravel()
     share = (half * node_weight).ravel() * _kernel(wave, ab2_m, mn2_m)
-    place = (np.log(wave) - log_grid[0]) / (log_grid[1] - log_grid[0])
+    share *= erfc((wave * (ab2_m - mn2_m) - grid.window) / grid.width) / 2
+    place = (np.log(wave) - log_wave[0]) / (log_wave[1] - log_wave[0])
     first = np.floor(place).astype(np.intp) - (STENCIL // 2 - 1)
-    row = np.zeros(log_grid.size)
+    row = np.zeros(log_wave.size)
     for k, weight in enumerate(_lagrange(place - first) * share):
         row += np.bincount(first + k, weights=weight, minlength=row.size)
     return row
 
 
 def _kernel(wave: NDArray, ab2_m: float, mn2_m: float) -> NDArray[np.float64]:
-    near, far = ab2_m - mn2_m, ab2_m + mn2_m
-    window = erfc((wave * near - WINDOW) / WINDOW_WIDTH) / 2
     if mn2_m == 0:
-        return window * ab2_m**2 * wave * j1(wave * ab2_m)
-    return window * (j0(wave * near) - j0(wave * far)) / (1 / near - 1 / far)
+        return ab2_m**2 * wave * j1(wave * ab2_m)
+    near, far = ab2_m - mn2_m, ab2_m + mn2_m
+    return (j0(wave * near) - j0(wave * far)) / (1 / near - 1 / far)
 
 
-def _edges_per_m(low_per_m: float, near_m: float, far_m: float) -> NDArray[np.float64]:
+def _edges_per_m(low_per_m: float, high_per_m: float, far_m: float) -> NDArray[np.float64]:
     """Give the edges of the panels: doubling from the low end, then half a wave each."""
-    width, high = np.pi / far_m, HIGH_END / near_m
+    width = np.pi / far_m
     doubling = low_per_m * 2.0 ** np.arange(1 + int(np.log2(max(1.0, width / low_per_m))))
-    count = int(np.ceil((high - doubling[-1]) / width))
-    return np.concatenate([doubling[:-1], np.linspace(doubling[-1], high, count + 1)])
+    count = int(np.ceil((high_per_m - doubling[-1]) / width))
+    return np.concatenate([doubling[:-1], np.linspace(doubling[-1], high_per_m, count + 1)])
 
 
 def _lagrange(place: NDArray) -> NDArray[np.float64]:
@@ -171,7 +190,7 @@ def transform_excess(
 
 def _decay(readings: Spread, thickness_m: NDArray) -> NDArray[np.float64]:
     """Give exp(-2 lambda h), shape (k, models): the square of the value an octave lower."""
-    points = readings.points_per_octave
+    points = readings.points
     wave = readings.wave_number_per_m
     decay = np.empty((wave.size // points, points, thickness_m.size))
     np.exp(-2.0 * wave[:points, None] * thickness_m, out=decay[0])

@@ -174,7 +174,8 @@ def interpret(
     refusal = _too_deep(float(fit.thickness_m.sum()), prior)
     if refusal is not None:
         return Interpretation(**known, refusal=refusal)
-    ensemble = sample_ensemble(readings, prior, rng=rng)
+    floors = {one.resistivity_ohm_m.size: one.chi_square for one in fits}
+    ensemble = sample_ensemble(readings, prior, rng=rng, floors=floors)
     fitting = _fitting(ensemble, readings, chi_square_limit)
     known |= {
         "rock_share": ensemble.rock_share,

@@ -83,8 +83,14 @@ def test_weights_follow_the_evidence(make_sounding):
     assert [number for number, _ in ensemble.layer_weight] == [2, 3, 4]
     assert ensemble.weight.size == 3000
     np.testing.assert_allclose(ensemble.weight[1000:2000], expected[1] / 1000)
-    # Two layers cannot make this curve fall and rise.
+    # Two layers cannot make this curve fall and rise: a fit says so before they are sampled.
     assert expected[0] < 1e-100
+    spared = sample_ensemble(
+        readings, prior, rng=np.random.default_rng(1), floors={2: 500.0, 3: 0.0}
+    )
+    assert [cloud.layers for cloud in spared.clouds] == [3, 4]
+    assert spared.layer_weight[0] == (2, 0.0)
+    assert spared.weight.sum() == pytest.approx(1.0)
 
 
 def test_quantile_share_and_sd_of_a_small_ensemble():
