@@ -3,13 +3,18 @@
 from __future__ import annotations
 
 from datetime import date
+from functools import partial
 
 from costing.actions.appraisals import APPRAISAL
+from costing.actions.estimate import PRICE, freeze_estimate
 from costing.appraisal import METHOD, appraise
 from costing.documents.bundle import documents_of, figures_of
 from costing.documents.result import as_json
 from costing.price.rates import read_rates
+from costing.queries.estimates import price_inputs
+from structures.errors import Refused
 from structures.intake.survey_pack import read_pack_bytes
+from structures.queries.runs import day_asked
 from structures.runs.files import keep_bytes, kept_bytes
 from structures.runs.queue import Outcome, Work, register
 
@@ -36,4 +41,26 @@ def appraise_pack(work: Work) -> Outcome:
             "figures": figures_of(found),
             "documents": documents,
         }
+    )
+
+
+@register(PRICE, version=METHOD)
+def price_estimate(work: Work) -> Outcome:
+    """Price a design of the office; the estimate is frozen in the transaction that ends the run."""
+    work.progress(0.05, "reading survey and rates")
+    inputs = price_inputs(work.params)
+    work.progress(0.15, "reading soundings, drawing the rock line, pricing")
+    found = appraise(
+        inputs.pack,
+        schedule=inputs.rates,
+        on=day_asked(work.held.run_id, inputs.design.survey.site.watershed.district),
+        draws=work.params["draws"],
+        seed=work.params["seed"],
+    )
+    if found.estimate is None:
+        silent = next(one for one in found.cautions if one.level == "block")
+        raise Refused(silent.text, where=inputs.pack.site.code)
+    return Outcome(
+        {"appraisal": as_json(found)},
+        partial(freeze_estimate, work.held.run_id, inputs, found),
     )

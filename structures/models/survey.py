@@ -185,7 +185,7 @@ class RefractionPick(Unchanging):
 class RockLine(Unchanging):
     """The line that an engineer settled on a survey: its points, why, and on which tests.
 
-    `points` is the `rock_line` of a pack; `rests_on` names tests as `test_names` gives them.
+    `points` is the `rock_line` of a pack; `rests_on` names tests as `names_of_tests` gives them.
     """
 
     survey = models.ForeignKey(Survey, on_delete=models.PROTECT, related_name="rock_lines")

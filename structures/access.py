@@ -1,0 +1,159 @@
+"""Who may see and do what: the one place that knows postings.
+
+A posting gives a role in a district, or in named watersheds of it, from a first to a last day. The
+day that counts is the district's own (`as_of`) where it has one. No posting, no data.
+"""
+
+from __future__ import annotations
+
+from enum import StrEnum
+from typing import TYPE_CHECKING, Any, Final, NamedTuple
+
+from django.db.models import DateField, Exists, F, OuterRef, Q, Value
+from django.db.models.functions import Coalesce
+from django.utils import timezone
+
+from structures.errors import Refused
+from structures.models import District, Posting, Role, Site, User, Watershed
+
+if TYPE_CHECKING:
+    from datetime import date
+
+    from django.contrib.auth.models import AnonymousUser
+    from django.db.models import QuerySet
+
+
+class Act(StrEnum):
+    SEE = "see"
+    ENTER_SITE = "enter a site"
+    EDIT_SITE = "edit a site"
+    ENTER_WATERSHED = "enter a watershed"
+    ENTER_PROFILE = "enter a long profile"
+    ACCEPT_SURVEY = "hand in a survey"
+    SETTLE_ROCK = "settle a rock line"
+    IMPORT_SCHEDULE = "bring in a rate schedule"
+    REQUEST_ESTIMATE = "ask for an estimate"
+    MANAGE_PEOPLE = "manage people"
+    MANAGE_DISTRICT = "manage a district"
+    SET_ENGINEERING = "change an engineering default"
+    SET_OFFICE = "change a default of the office"
+    SET_PROGRAMME = "change a default of the programme"
+
+
+# Source: the office's practice, "people": what each role may and may never do.
+MAY: Final[dict[Act, frozenset[Role]]] = {
+    Act.SEE: frozenset(Role),
+    Act.ENTER_SITE: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT}),
+    Act.EDIT_SITE: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT}),
+    Act.ENTER_WATERSHED: frozenset({Role.ENGINEER, Role.DISTRICT, Role.PROGRAMME}),
+    Act.ENTER_PROFILE: frozenset({Role.FIELD, Role.ENGINEER}),
+    Act.ACCEPT_SURVEY: frozenset({Role.FIELD, Role.ENGINEER}),
+    Act.SETTLE_ROCK: frozenset({Role.ENGINEER}),
+    Act.IMPORT_SCHEDULE: frozenset({Role.ENGINEER, Role.DISTRICT}),
+    Act.REQUEST_ESTIMATE: frozenset({Role.ENGINEER}),
+    Act.MANAGE_PEOPLE: frozenset({Role.ADMIN}),
+    Act.MANAGE_DISTRICT: frozenset({Role.ADMIN}),
+    Act.SET_ENGINEERING: frozenset({Role.ENGINEER, Role.ADMIN}),
+    Act.SET_OFFICE: frozenset({Role.DISTRICT, Role.ADMIN}),
+    Act.SET_PROGRAMME: frozenset({Role.PROGRAMME, Role.ADMIN}),
+}
+# What an administrator of the whole office does everywhere; none of it shows a site.
+OF_THE_OFFICE: Final = frozenset(act for act in MAY if Role.ADMIN in MAY[act]) - {Act.SEE}
+
+
+class Place(NamedTuple):
+    """Where a row belongs; without a watershed the district as such, without either the office."""
+
+    district_id: int | None
+    watershed_id: int | None = None
+
+
+def postings(user: User | AnonymousUser) -> QuerySet[Posting]:
+    """Postings in force, of an account in force."""
+    if not user.is_authenticated or not user.is_active or account_over(user):
+        return Posting.objects.none()
+    today = Coalesce("district__as_of", Value(timezone.localdate()), output_field=DateField())
+    held = Posting.objects.filter(user=user).annotate(day=today)
+    return held.filter(
+        Q(valid_to__isnull=True) | Q(valid_to__gte=F("day")), valid_from__lte=F("day")
+    )
+
+
+def account_over(user: User) -> bool:
+    ends: date | None = user.account_ends_on
+    return ends is not None and ends < timezone.localdate()
+
+
+def districts(user: User | AnonymousUser) -> QuerySet[District]:
+    """Districts in which the user serves."""
+    return District.objects.filter(Exists(postings(user).filter(district=OuterRef("pk"))))
+
+
+def watersheds(user: User | AnonymousUser) -> QuerySet[Watershed]:
+    """Watersheds in which the user serves: those named, or all of the district."""
+    held = postings(user)
+    whole = held.filter(district=OuterRef("district"), watersheds__isnull=True)
+    named = held.filter(district=OuterRef("district"), watersheds=OuterRef("pk"))
+    return Watershed.objects.filter(Exists(whole) | Exists(named))
+
+
+def sites(user: User | AnonymousUser) -> QuerySet[Site]:
+    return Site.objects.filter(watershed__in=watersheds(user))
+
+
+def administered(user: User | AnonymousUser) -> QuerySet[District]:
+    """Districts whose people and settings the user keeps."""
+    if keeps_office(user):
+        return District.objects.all()
+    held = postings(user).filter(role=Role.ADMIN)
+    return District.objects.filter(Exists(held.filter(district=OuterRef("pk"))))
+
+
+def place_of(thing: Any) -> Place:
+    """Where a row belongs, by what it points to: its watershed, its site, its district."""
+    if thing is None:
+        return Place(None)
+    if isinstance(thing, District):
+        return Place(thing.pk)
+    if isinstance(thing, Watershed):
+        return Place(thing.district_id, thing.pk)
+    for name in ("watershed", "site", "survey", "structure"):
+        owner = getattr(thing, name, None)
+        if owner is not None:
+            return place_of(owner)
+    return Place(thing.district_id)
+
+
+def roles(user: User | AnonymousUser, place: Place) -> frozenset[str]:
+    """Roles of the postings that cover a place."""
+    if place.district_id is None:
+        return frozenset()
+    here = Q(district_id=place.district_id)
+    if place.watershed_id is not None:
+        here &= Q(watersheds__isnull=True) | Q(watersheds=place.watershed_id)
+    return frozenset(postings(user).filter(here).values_list("role", flat=True))
+
+
+def keeps_office(user: User | AnonymousUser) -> bool:
+    """Whether the user is an administrator of the whole office."""
+    return postings(user).filter(role=Role.ADMIN, district__isnull=True).exists()
+
+
+def may(user: User | AnonymousUser, act: Act, thing: Any = None) -> bool:
+    """Whether the user may do that there; without a thing, in the office as such."""
+    if not roles(user, place_of(thing)).isdisjoint(MAY[act]):
+        return True
+    return act in OF_THE_OFFICE and keeps_office(user)
+
+
+def insist(user: User | AnonymousUser, act: Act, thing: Any = None) -> None:
+    """Refuse what the user may not do there.
+
+    Raises
+    ------
+    Refused
+        Without a word about the thing: who may not see it learns nothing of it.
+    """
+    if not may(user, act, thing):
+        words = " or ".join(sorted(Role(role).label for role in MAY[act]))
+        raise Refused(f"You may not {act} here.", remedy=f"Ask somebody posted here as {words}.")
