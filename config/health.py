@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from django.contrib.auth.decorators import login_not_required
 from django.http import JsonResponse
 from django.views.decorators.cache import never_cache
 from django.views.decorators.http import require_safe
@@ -14,12 +15,14 @@ if TYPE_CHECKING:
     from django.http import HttpRequest
 
 
+@login_not_required
 @require_safe
 @never_cache
 def healthz(request: HttpRequest) -> JsonResponse:  # noqa: ARG001 -- the framework's form
     return JsonResponse({"process": WELL})
 
 
+@login_not_required
 @require_safe
 @never_cache
 def readyz(request: HttpRequest) -> JsonResponse:  # noqa: ARG001 -- the framework's form

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 import sys
+from datetime import timedelta
 from pathlib import Path
 
 import dj_database_url
@@ -32,6 +33,7 @@ INSTALLED_APPS = [
     "django.contrib.sessions",
     "django.contrib.messages",
     "django.contrib.staticfiles",
+    "axes",
     "config",
     "structures",
     "costing",
@@ -46,7 +48,10 @@ MIDDLEWARE = [
     "django.middleware.csrf.CsrfViewMiddleware",
     "django.contrib.auth.middleware.AuthenticationMiddleware",
     "django.contrib.messages.middleware.MessageMiddleware",
+    "django.contrib.auth.middleware.LoginRequiredMiddleware",
     "django.middleware.clickjacking.XFrameOptionsMiddleware",
+    "structures.web.refusals.RefusalMiddleware",
+    "axes.middleware.AxesMiddleware",  # last, so that nothing rewrites its answer
 ]
 ROOT_URLCONF = "config.urls"
 WSGI_APPLICATION = "config.wsgi.application"
@@ -60,6 +65,7 @@ TEMPLATES = [
                 "django.template.context_processors.request",
                 "django.contrib.auth.context_processors.auth",
                 "django.contrib.messages.context_processors.messages",
+                "structures.web.frame.frame",
             ],
         },
     },
@@ -96,6 +102,23 @@ WORKER_SILENT_SECONDS = 30  # without a sign of life for longer, a worker does n
 
 # --- People -----------------------------------------------------------------------------------
 AUTH_USER_MODEL = "structures.User"
+LOGIN_URL = "structures:sign-in"
+LOGIN_REDIRECT_URL = "structures:password"
+AUTHENTICATION_BACKENDS = [
+    "axes.backends.AxesStandaloneBackend",
+    "structures.queries.accounts.AccountBackend",
+]
+# A name is locked for the address that guessed, so that a stranger cannot lock its owner out.
+AXES_LOCKOUT_PARAMETERS = [["username", "ip_address"]]
+AXES_FAILURE_LIMIT = 5
+AXES_COOLOFF_TIME = timedelta(minutes=15)
+AXES_RESET_COOL_OFF_ON_FAILURE_DURING_LOCKOUT = False  # the page says how long, and it is true
+AXES_RESET_ON_SUCCESS = True
+AXES_CLIENT_IP_CALLABLE = "config.visitor.address"
+AXES_LOCKOUT_CALLABLE = "structures.web.accounts.locked"
+AXES_DISABLE_ACCESS_LOG = True  # who came when is written down nowhere but in the attempts
+AXES_ENABLE_ADMIN = False
+AXES_VERBOSE = False
 PASSWORD_HASHERS = [
     "django.contrib.auth.hashers.Argon2PasswordHasher",
     "django.contrib.auth.hashers.PBKDF2PasswordHasher",

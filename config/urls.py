@@ -10,4 +10,5 @@ urlpatterns = [
     path("healthz", health.healthz, name="healthz"),
     path("readyz", health.readyz, name="readyz"),
     path("", include("costing.web.urls")),
+    path("", include("structures.web.urls")),
 ]

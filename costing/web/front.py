@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from django.contrib.auth.decorators import login_not_required
 from django.http import Http404, HttpResponse, JsonResponse
 from django.shortcuts import get_object_or_404, redirect, render
 from django.utils.translation import gettext as _
@@ -33,6 +34,7 @@ TYPES = {
 }
 
 
+@login_not_required
 @require_http_methods(["GET", "HEAD", "POST"])
 def front(request: HttpRequest) -> HttpResponse:
     sent = request.method == "POST"
@@ -61,6 +63,7 @@ def _content(file: UploadedFile | None) -> tuple[str, bytes] | None:
     return None if file is None else (file.name, file.read())
 
 
+@login_not_required
 @require_GET
 def appraisal(request: HttpRequest, run_id: UUID) -> HttpResponse:
     run = get_object_or_404(runs_of_kind(APPRAISAL), pk=run_id)
@@ -73,6 +76,7 @@ def appraisal(request: HttpRequest, run_id: UUID) -> HttpResponse:
     return render(request, "costing/appraisal.html", context)
 
 
+@login_not_required
 @require_POST
 def cancel(request: HttpRequest, run_id: UUID) -> HttpResponse:
     run = get_object_or_404(runs_of_kind(APPRAISAL), pk=run_id)
@@ -80,6 +84,7 @@ def cancel(request: HttpRequest, run_id: UUID) -> HttpResponse:
     return redirect("costing:appraisal", run.pk)
 
 
+@login_not_required
 @require_GET
 def document(request: HttpRequest, run_id: UUID, name: str) -> HttpResponse:
     run = get_object_or_404(runs_of_kind(APPRAISAL), pk=run_id)
@@ -91,6 +96,7 @@ def document(request: HttpRequest, run_id: UUID, name: str) -> HttpResponse:
     return answer
 
 
+@login_not_required
 @require_GET
 def pack_schema(request: HttpRequest) -> JsonResponse:
     return JsonResponse(schema_of_packs(), content_type="application/schema+json")
