@@ -7,14 +7,16 @@ from functools import partial
 
 from costing.actions.appraisals import APPRAISAL
 from costing.actions.estimate import PRICE, freeze_estimate
-from costing.appraisal import METHOD, appraise
+from costing.appraisal import METHOD, SEED, appraise
 from costing.documents.bundle import documents_of, figures_of
+from costing.documents.reading import reading_json
 from costing.documents.result import as_json
 from costing.price.rates import read_rates
 from costing.queries.estimates import price_inputs
 from structures.errors import Refused
 from structures.intake.survey_pack import read_pack_bytes
 from structures.queries.runs import day_asked
+from structures.queries.survey_reading import READ, read_inputs
 from structures.runs.files import keep_bytes, kept_bytes
 from structures.runs.queue import Outcome, Work, register
 
@@ -42,6 +44,18 @@ def appraise_pack(work: Work) -> Outcome:
             "documents": documents,
         }
     )
+
+
+@register(READ, version=METHOD)
+def read_survey(work: Work) -> Outcome:
+    """Read a survey of the office without a price: what its sheet shows."""
+    survey, pack = read_inputs(work.params)
+    work.progress(0.1, "reading soundings, drawing the rock line and the wall")
+    day = day_asked(work.held.run_id, survey.site.watershed.district)
+    draws = work.params["draws"]
+    found = appraise(pack, on=day, draws=draws)
+    work.progress(0.8, "drawing the section")
+    return Outcome(reading_json(found, draws=draws, seed=SEED))
 
 
 @register(PRICE, version=METHOD)

@@ -10,6 +10,7 @@ from django.db.models import Max
 
 from structures.access import Act, insist
 from structures.actions.refusals import as_documents, blocking, refusal
+from structures.actions.survey_reading import start_reading
 from structures.errors import Finding, Refused
 from structures.models import RockLine, Site, Survey
 from structures.queries.surveys import names_of_tests, pack_of
@@ -57,7 +58,7 @@ def settle_rock_line(
         )
     findings = _judge(survey, line, rests_on)
     newest = survey.rock_lines.aggregate(newest=Max("version"))["newest"] or 0
-    return RockLine.objects.create(
+    settled = RockLine.objects.create(
         survey=survey,
         version=newest + 1,
         points=line,
@@ -67,6 +68,8 @@ def settle_rock_line(
         findings=as_documents(findings),
         by=by,
     )
+    start_reading(survey=survey, by=by)
+    return settled
 
 
 def _check_newest(survey: Survey) -> None:

@@ -12,6 +12,7 @@ from django.db.models import Max
 from structures.access import Act, insist
 from structures.actions.inbox import mark_kept, receive_file, refuse_same_file, told_of
 from structures.actions.refusals import as_documents
+from structures.actions.survey_reading import start_reading
 from structures.errors import Finding, Refused
 from structures.intake.pack_writer import pack_document
 from structures.intake.survey_pack import read_pack_bytes
@@ -83,7 +84,9 @@ def accept_survey(*, site_id: int, name: str, data: bytes, by: User) -> Survey:
                 kind=upload.kind, name=upload.name, data=data, district=upload.district, by=by
             )
             mark_kept(upload, rows=read.rows, findings=read.findings)
-            return _keep(locked, upload, read, by)
+            survey = _keep(locked, upload, read, by)
+            start_reading(survey=survey, by=by)
+            return survey
 
 
 def _site(site_id: int, by: User) -> Site:
