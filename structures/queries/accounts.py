@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
-
 from django.contrib.auth.backends import ModelBackend
 
-from structures.access import account_over
+from django.contrib.auth.hashers import UNUSABLE_PASSWORD_PREFIX
 
-if TYPE_CHECKING:
-    from structures.models import User
+from structures.access import account_over
+from structures.models import User
 
 
 class AccountBackend(ModelBackend):
@@ -17,3 +15,8 @@ class AccountBackend(ModelBackend):
 
     def user_can_authenticate(self, user: User) -> bool:
         return super().user_can_authenticate(user) and not account_over(user)
+
+
+def anyone_has_a_password() -> bool:
+    """Whether any account can be signed in to without a one-time word."""
+    return User.objects.exclude(password__startswith=UNUSABLE_PASSWORD_PREFIX).exists()

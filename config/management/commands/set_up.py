@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 
 from django.conf import settings
 from django.core.management import call_command, get_commands
@@ -10,9 +10,14 @@ from django.core.management.base import BaseCommand, CommandError
 from django.db import connection
 
 from config.celery import make_folder
+from structures.actions.people import WORD_HOURS, invite
+from structures.queries.accounts import anyone_has_a_password
 
 if TYPE_CHECKING:
     from argparse import ArgumentParser
+
+FIRST_LOGIN: Final = "admin"
+FIRST_ROLE: Final = "admin"  # of the whole office, who lets everybody else in
 
 
 class Command(BaseCommand):
@@ -42,6 +47,18 @@ class Command(BaseCommand):
         call_command("collectstatic", interactive=False, verbosity=0)
         if not empty and "demo" in get_commands() and not has_people():
             call_command("demo")
+        if empty:
+            self.open_first_account()
+
+    def open_first_account(self) -> None:
+        """Make the first administrator; as long as nobody has a password, each start gives a word."""
+        if anyone_has_a_password():
+            return
+        word = invite(login=FIRST_LOGIN, role=FIRST_ROLE)
+        self.stdout.write(
+            f"Nobody has a password yet. Come in at /welcome/ as {FIRST_LOGIN} with the one-time word "
+            f"{word} within {WORD_HOURS} hours."
+        )
 
 
 def has_people() -> bool:
