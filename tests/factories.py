@@ -69,10 +69,11 @@ def a_site(watershed=None, code="EX-A", **changes):
 
 
 def pack_bytes(code="EX-A", letter="a", **changes):
-    """A worked example of the handbook as the survey of a site."""
+    """A worked example of the handbook as the survey of a site; a part set to None is left out."""
     document = json.loads((FIXTURES / "packs" / f"example-{letter}.json").read_text())
     document["site"]["code"] = code
-    return json.dumps({**document, **changes}).encode()
+    parts = {**document, **changes}
+    return json.dumps({key: part for key, part in parts.items() if part is not None}).encode()
 
 
 def a_survey(site, by, **changes):

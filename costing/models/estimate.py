@@ -88,7 +88,13 @@ class Estimate(Unchanging):
             ),
             models.CheckConstraint(
                 condition=Q(p10__isnull=True, p50__isnull=True, p90__isnull=True)
-                | Q(p10__lte=F("p50"), p50__lte=F("p90")),
+                | Q(
+                    p10__isnull=False,
+                    p50__isnull=False,
+                    p90__isnull=False,
+                    p10__lte=F("p50"),
+                    p50__lte=F("p90"),
+                ),
                 name="estimate_percentiles_in_order",
             ),
             models.CheckConstraint(
@@ -127,7 +133,7 @@ class EstimateLine(Unchanging):
                 condition=Q(rate__isnull=True) | Q(rate__gt=0), name="estimate_line_rate_positive"
             ),
             models.CheckConstraint(
-                condition=Q(from_m__isnull=True) | Q(to_m__gt=F("from_m")),
+                condition=Q(from_m__isnull=True) | Q(to_m__isnull=False, to_m__gt=F("from_m")),
                 name="estimate_line_goes_down",
             ),
         )

@@ -60,9 +60,6 @@ class RateSchedule(Unchanging):
                 condition=_accepted("contingency_percent") & _accepted("overhead_percent"),
                 name="schedule_percentages_accepted",
             ),
-            models.CheckConstraint(
-                condition=Q(currency__regex=r"^[A-Z]{3}$"), name="schedule_currency_has_letters"
-            ),
         )
 
     def __str__(self) -> str:

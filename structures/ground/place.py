@@ -11,10 +11,9 @@ from functools import lru_cache
 from typing import TYPE_CHECKING, Any, Final
 
 from pyproj import Geod, Transformer
-from shapely import is_valid_reason
+from shapely import is_valid_reason, transform
 from shapely.geometry import Point, Polygon, shape
 from shapely.geometry.polygon import orient
-from shapely.ops import transform
 
 from structures.errors import Refused
 from structures.ground.angle import HALVES, LATITUDE_MOST, LONGITUDE_MOST
@@ -64,7 +63,8 @@ def outside_m(position: tuple[float, float], outline: dict[str, Any]) -> float:
     Source: distance from the origin of the grid to the nearest point of the polygon.
     """
     grid = _grid(position)
-    return float(transform(grid.transform, shape(outline)).distance(Point(0.0, 0.0)))
+    local = transform(shape(outline), grid.transform, interleaved=False)
+    return float(local.distance(Point(0.0, 0.0)))
 
 
 def read_outline(geometry: object, where: str) -> Outline:
@@ -156,5 +156,5 @@ def _valid_words(polygon: Polygon) -> str:
 @lru_cache(maxsize=64)
 def _grid(origin: tuple[float, float]) -> Transformer:
     lon, lat = origin
-    local = f"+proj=aeqd +lon_0={lon!r} +lat_0={lat!r} +ellps=WGS84 +units=m"
+    local = f"+proj=aeqd +lon_0={lon!r} +lat_0={lat!r} +datum=WGS84 +units=m"
     return Transformer.from_crs("OGC:CRS84", local, always_xy=True)

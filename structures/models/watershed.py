@@ -42,9 +42,6 @@ class District(models.Model):
                 condition=Q(as_of__isnull=True) | Q(invented=True),
                 name="district_only_invented_stands_still",
             ),
-            models.CheckConstraint(
-                condition=Q(currency__regex=r"^[A-Z]{3}$"), name="district_currency_has_letters"
-            ),
         )
 
     def __str__(self) -> str:
