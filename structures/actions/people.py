@@ -50,16 +50,27 @@ def invite(
         user = _new_user(login)
     elif by is not None:
         insist_keeps(by, user)
-    user.set_unusable_password()
-    user.must_change = True
-    user.sessions_round += 1
-    user.save()
+    word = _reset(user, by)
     if not access.postings(user).filter(role=role, district=district).exists():
         first = timezone.localdate() if district is None else today_of(district)
         posting = Posting(user=user, role=role, district=district, valid_from=first)
         posting._history_user = by
         posting.save()
-    return _new_word(user, by)
+    return word
+
+
+@transaction.atomic
+def renew_word(*, user_id: int, by: User) -> str:
+    """Give a person another one-time word; password and sessions end, postings stay as they are.
+
+    Raises
+    ------
+    Refused
+        If the account is not the user's to reset.
+    """
+    user = User.objects.select_for_update().get(pk=user_id)
+    insist_keeps(by, user)
+    return _reset(user, by)
 
 
 @transaction.atomic
@@ -228,6 +239,14 @@ def _new_user(login: str) -> User:
         words = error.message_dict.get("username", error.messages)[0]
         raise Refused(words, where="login", remedy="Take another login.") from error
     return user
+
+
+def _reset(user: User, by: User | None) -> str:
+    user.set_unusable_password()
+    user.must_change = True
+    user.sessions_round += 1
+    user.save()
+    return _new_word(user, by)
 
 
 def _new_word(user: User, by: User | None) -> str:
