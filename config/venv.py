@@ -47,6 +47,10 @@ class Place:
         return self.folder / "bin" / "python"
 
     @property
+    def settings(self) -> Path:
+        return self.folder / "pyvenv.cfg"
+
+    @property
     def lock(self) -> Path:
         return self.root / ".data" / "environment.lock"
 
@@ -90,11 +94,13 @@ def is_fresh(place: Place, name: str) -> bool:
     """Whether the environment is whole and holds exactly what the list asks for."""
     if place.unfinished.exists():
         return False
+    if not (place.python.exists() and place.settings.exists()):
+        return False
     try:
         written = json.loads(place.stamp(name).read_text(encoding="utf-8"))
     except (OSError, ValueError):
         return False
-    return written == _stamp(place, name) and place.python.exists()
+    return written == _stamp(place, name)
 
 
 def _stamp(place: Place, name: str) -> dict[str, str]:
@@ -110,7 +116,7 @@ def _stamp(place: Place, name: str) -> dict[str, str]:
 def _written_version(place: Place) -> str:
     found = re.search(
         r"^version\s*=\s*(\S+)",
-        (place.folder / "pyvenv.cfg").read_text(encoding="utf-8"),
+        place.settings.read_text(encoding="utf-8"),
         re.MULTILINE,
     )
     return found.group(1) if found else ""
@@ -121,6 +127,8 @@ def _alone(place: Place) -> Iterator[None]:
     """Hold the lock of the environment; a second start waits here and finds it made."""
     place.lock.parent.mkdir(mode=0o700, parents=True, exist_ok=True)
     with place.lock.open("w") as lock:
+        # What this start runs holds the lock as well, and goes on when only this start is killed.
+        os.set_inheritable(lock.fileno(), True)  # noqa: FBT003 -- takes no keywords
         try:
             fcntl.flock(lock, fcntl.LOCK_EX | fcntl.LOCK_NB)
         except BlockingIOError:
@@ -149,7 +157,8 @@ def _install(place: Place, name: str) -> None:
 
 def _is_environment(place: Place) -> bool:
     """Whether a whole environment stands there, of this list or of an older one."""
-    if not place.stamp("program").exists() or not place.python.exists():
+    parts = (place.stamp("program"), place.python, place.settings)
+    if not all(part.exists() for part in parts):
         return False
     try:
         written = json.loads(place.stamp("program").read_text(encoding="utf-8"))
@@ -183,6 +192,7 @@ def _run(command: list[str], place: Place) -> subprocess.CompletedProcess[str]:
         command,
         cwd=place.root,
         check=False,
+        close_fds=False,  # the lock goes along
         stdin=subprocess.DEVNULL,
         stdout=subprocess.PIPE,
         stderr=subprocess.STDOUT,

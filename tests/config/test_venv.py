@@ -222,6 +222,33 @@ def test_packages_half_written_by_a_killed_start_are_written_again(tmp_path):
 
 
 @pytest.mark.fault
+def test_what_a_killed_start_left_running_is_waited_for(tmp_path):
+    folder = bare_copy(tmp_path)
+    (folder / "requirements.txt").write_text(wheel(folder))
+    first = subprocess.Popen(
+        [SYSTEM_PYTHON, "manage.py", *HELP],
+        cwd=folder,
+        env=clean_environment(),
+        stderr=subprocess.DEVNULL,
+    )
+    wait_until(lambda: len(processes_in(folder)) > 1)
+    first.kill()
+    first.wait()
+    done = command(folder, *HELP)
+    assert (done.returncode, module_works(folder)) == (0, True)
+    assert "waiting for it" in done.stderr
+
+
+@pytest.mark.fault
+def test_an_environment_without_its_settings_file_is_made_again(tmp_path):
+    folder = bare_copy(tmp_path)
+    (folder / "requirements.txt").write_text(wheel(folder))
+    assert command(folder, *HELP).returncode == 0
+    (folder / ".venv" / "pyvenv.cfg").unlink()
+    assert (command(folder, *HELP).returncode, module_works(folder)) == (0, True)
+
+
+@pytest.mark.fault
 def test_two_starts_at_once_make_it_once(tmp_path):
     folder = bare_copy(tmp_path)
     (folder / "requirements.txt").write_text(wheel(folder))
