@@ -14,7 +14,6 @@ import signal
 import socket
 import subprocess
 import sys
-import threading
 import time
 from contextlib import contextmanager, suppress
 from dataclasses import dataclass, field
@@ -38,6 +37,22 @@ OPEN_TO_OTHERS: Final = (
 
 class CannotStart(Exception):  # noqa: N818 -- its text is the sentence that the user reads
     """The site cannot be started; the text says why and what to do."""
+
+
+@dataclass(slots=True)
+class Stop:
+    """Whether somebody asked for the end."""
+
+    # No Event: a signal that lands while its lock is held would wait for itself for ever.
+    asked: bool = False
+
+    def ask(self, *_: object) -> None:
+        self.asked = True
+
+    def wait(self) -> bool:
+        if not self.asked:
+            time.sleep(LOOK_EVERY_S)
+        return self.asked
 
 
 @dataclass(slots=True)
@@ -74,14 +89,14 @@ class Child:
 
 def main(arguments: list[str], root: Path) -> int:
     options = _options(arguments)
-    stop = threading.Event()
+    stop = Stop()
     for number in (signal.SIGINT, signal.SIGTERM, signal.SIGHUP):
-        signal.signal(number, lambda *_: stop.set())
+        signal.signal(number, stop.ask)
     try:
         with _only_one(root):
             _check_free(options.bind, options.port)
             _set_up(root, stop, empty=options.empty)
-            if not stop.is_set():
+            if not stop.asked:
                 _serve(_children(options.bind, options.port), root, stop, _address(options))
     except CannotStart as reason:
         _say(str(reason))
@@ -160,15 +175,15 @@ def _check_free(bind: str, port: int) -> None:
             raise CannotStart(why) from error
 
 
-def _set_up(root: Path, stop: threading.Event, *, empty: bool) -> None:
+def _set_up(root: Path, stop: Stop, *, empty: bool) -> None:
     command = [sys.executable, "manage.py", "set_up", *(["--empty"] if empty else [])]
     process = _spawn(command, root)
     try:
-        while process.poll() is None and not stop.wait(LOOK_EVERY_S):
+        while process.poll() is None and not stop.wait():
             pass
     finally:
         end_all([process])
-    if process.returncode and not stop.is_set():
+    if process.returncode and not stop.asked:
         raise CannotStart("The set-up did not come to its end; the lines above say why.")
 
 
@@ -187,10 +202,10 @@ def _children(bind: str, port: int) -> list[Child]:
     ]
 
 
-def _serve(children: list[Child], root: Path, stop: threading.Event, address: str) -> None:
+def _serve(children: list[Child], root: Path, stop: Stop, address: str) -> None:
     told = False
     try:
-        while not stop.wait(LOOK_EVERY_S):
+        while not stop.wait():
             for child in children:
                 child.keep(time.monotonic(), root)
             if not told and _answers(address):

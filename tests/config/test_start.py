@@ -7,7 +7,6 @@ import signal
 import socket
 import subprocess
 import sys
-import threading
 import time
 from pathlib import Path
 
@@ -144,7 +143,7 @@ def test_a_state_folder_that_is_a_file_is_refused_with_a_sentence(tmp_path, capf
 def test_a_set_up_that_fails_is_told(tmp_path, capfd):
     (tmp_path / "manage.py").write_text("raise SystemExit('The set-up says why.')")
     with pytest.raises(start.CannotStart, match="did not come to its end"):
-        start._set_up(tmp_path, threading.Event(), empty=True)
+        start._set_up(tmp_path, start.Stop(), empty=True)
     assert capfd.readouterr().err == "The set-up says why.\n"
 
 
