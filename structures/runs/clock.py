@@ -6,7 +6,8 @@ import logging
 import os
 import socket
 import threading
-from typing import TYPE_CHECKING
+from datetime import timedelta
+from typing import TYPE_CHECKING, Final
 
 from celery.signals import worker_ready, worker_shutdown
 from django.conf import settings
@@ -20,6 +21,7 @@ if TYPE_CHECKING:
     from datetime import datetime
 
 log = logging.getLogger(__name__)
+PULSES_KEPT: Final = timedelta(days=1)  # every start of a worker has a name of its own
 _over = threading.Event()
 
 
@@ -31,7 +33,9 @@ def last_pulse() -> datetime | None:
 
 def tick(name: str) -> None:
     """Show life and sweep once."""
-    WorkerPulse.objects.update_or_create(name=name, defaults={"seen_at": timezone.now()})
+    now = timezone.now()
+    WorkerPulse.objects.update_or_create(name=name, defaults={"seen_at": now})
+    WorkerPulse.objects.filter(seen_at__lt=now - PULSES_KEPT).delete()
     sweep()
 
 

@@ -12,7 +12,7 @@ from uuid import UUID
 
 from celery import shared_task
 from django.conf import settings
-from django.db import close_old_connections, connection, transaction
+from django.db import DatabaseError, close_old_connections, connection, transaction
 from django.utils import timezone
 from kombu.exceptions import OperationalError
 
@@ -133,8 +133,11 @@ def _lease_kept(held: book.Claim) -> Iterator[None]:
         try:
             while not over.wait(settings.RUN_LEASE_SECONDS / 3):
                 close_old_connections()
-                if not book.renew(held):
-                    return
+                try:
+                    if not book.renew(held):
+                        return
+                except DatabaseError:
+                    log.exception("The lease of run %s was not renewed; tried again.", held.run_id)
         finally:
             connection.close()
 

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+import threading
 from datetime import timedelta
 
 import pytest
-from django.db import IntegrityError, transaction
+from django.db import IntegrityError, OperationalError, transaction
 from django.utils import timezone
 
 from structures.errors import Refused
@@ -201,3 +202,28 @@ def test_a_tick_shows_life():
     clock.tick("here:1")
     assert WorkerPulse.objects.count() == 1
     assert timezone.now() - clock.last_pulse() < timedelta(seconds=5)
+
+
+def test_a_tick_forgets_workers_not_seen_for_a_day():
+    long_ago = timezone.now() - timedelta(days=1, seconds=1)
+    WorkerPulse.objects.create(name="gone:1", seen_at=long_ago)
+    clock.tick("here:1")
+    assert list(WorkerPulse.objects.values_list("name", flat=True)) == ["here:1"]
+
+
+def test_a_lease_is_renewed_again_after_the_database_failed_once(settings, monkeypatch):
+    """The first renewal fails as on a locked database; the one after it must come all the same."""
+    settings.RUN_LEASE_SECONDS = 0.03
+    renewed = threading.Event()
+    answers = iter([OperationalError("database is locked")])
+
+    def renew(_held):
+        for error in answers:
+            raise error
+        renewed.set()
+        return True
+
+    monkeypatch.setattr(book, "renew", renew)
+    held = book.claim(opened().pk)
+    with queue._lease_kept(held):
+        assert renewed.wait(5.0)
