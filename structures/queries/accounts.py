@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from django.contrib.auth.backends import ModelBackend
-
 from django.contrib.auth.hashers import UNUSABLE_PASSWORD_PREFIX
 
 from structures.access import account_over

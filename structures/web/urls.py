@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from django.urls import path
 
-from structures.web import accounts
+from structures.web import accounts, people
 
 app_name = "structures"
 
@@ -14,4 +14,11 @@ urlpatterns = [
     path("sign-out-everywhere/", accounts.sign_out_everywhere, name="sign-out-everywhere"),
     path("password/", accounts.password, name="password"),
     path("welcome/", accounts.welcome, name="welcome"),
+    path("people/", people.people, name="people"),
+    path("people/new/", people.new_person, name="new-person"),
+    path("people/<int:user_id>/", people.person, name="person"),
+    path("people/<int:user_id>/word/", people.another_word, name="another-word"),
+    path("people/<int:user_id>/end-sessions/", people.end_sessions, name="end-sessions"),
+    path("people/<int:user_id>/postings/new/", people.posting, name="new-posting"),
+    path("people/<int:user_id>/postings/<int:posting_id>/", people.posting, name="posting"),
 ]

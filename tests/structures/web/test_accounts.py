@@ -16,13 +16,6 @@ pytestmark = pytest.mark.django_db
 OTHER = "sluice-and-spindle"
 
 
-@pytest.fixture(autouse=True)
-def _hashed_quickly(request, settings):
-    """Argon2 takes its time on purpose; one test below waits for it."""
-    if "argon2" not in request.node.name:
-        settings.PASSWORD_HASHERS = ["django.contrib.auth.hashers.MD5PasswordHasher"]
-
-
 @pytest.fixture
 def keeper():
     """An engineer with a password."""
