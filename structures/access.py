@@ -25,6 +25,7 @@ if TYPE_CHECKING:
 
 class Act(StrEnum):
     SEE = "see"
+    SEE_MONEY = "see money"
     ENTER_SITE = "enter a site"
     EDIT_SITE = "edit a site"
     ENTER_WATERSHED = "enter a watershed"
@@ -43,6 +44,7 @@ class Act(StrEnum):
 # Source: the office's practice, "people": what each role may and may never do.
 MAY: Final[dict[Act, frozenset[Role]]] = {
     Act.SEE: frozenset(Role),
+    Act.SEE_MONEY: frozenset(Role) - {Role.FIELD, Role.ADMIN},
     Act.ENTER_SITE: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT}),
     Act.EDIT_SITE: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT}),
     Act.ENTER_WATERSHED: frozenset({Role.ENGINEER, Role.DISTRICT, Role.PROGRAMME}),
@@ -84,29 +86,29 @@ def account_over(user: User) -> bool:
     return ends is not None and ends < timezone.localdate()
 
 
-def districts(user: User | AnonymousUser) -> QuerySet[District]:
-    """Districts in which the user serves."""
-    return District.objects.filter(Exists(postings(user).filter(district=OuterRef("pk"))))
+def districts(user: User | AnonymousUser, act: Act = Act.SEE) -> QuerySet[District]:
+    """Districts in which the user serves, and may do that."""
+    held = postings(user).filter(role__in=MAY[act])
+    return District.objects.filter(Exists(held.filter(district=OuterRef("pk"))))
 
 
-def watersheds(user: User | AnonymousUser) -> QuerySet[Watershed]:
-    """Watersheds in which the user serves: those named, or all of the district."""
-    held = postings(user)
+def watersheds(user: User | AnonymousUser, act: Act = Act.SEE) -> QuerySet[Watershed]:
+    """Watersheds in which the user serves and may do that: those named, or all of the district."""
+    held = postings(user).filter(role__in=MAY[act])
     whole = held.filter(district=OuterRef("district"), watersheds__isnull=True)
     named = held.filter(district=OuterRef("district"), watersheds=OuterRef("pk"))
     return Watershed.objects.filter(Exists(whole) | Exists(named))
 
 
-def sites(user: User | AnonymousUser) -> QuerySet[Site]:
-    return Site.objects.filter(watershed__in=watersheds(user))
+def sites(user: User | AnonymousUser, act: Act = Act.SEE) -> QuerySet[Site]:
+    return Site.objects.filter(watershed__in=watersheds(user, act))
 
 
 def administered(user: User | AnonymousUser) -> QuerySet[District]:
     """Districts whose people and settings the user keeps."""
-    if keeps_office(user):
-        return District.objects.all()
     held = postings(user).filter(role=Role.ADMIN)
-    return District.objects.filter(Exists(held.filter(district=OuterRef("pk"))))
+    here = held.filter(Q(district=OuterRef("pk")) | Q(district__isnull=True))
+    return District.objects.filter(Exists(here))
 
 
 def place_of(thing: Any) -> Place:
@@ -134,9 +136,14 @@ def roles(user: User | AnonymousUser, place: Place) -> frozenset[str]:
     return frozenset(postings(user).filter(here).values_list("role", flat=True))
 
 
+def of_the_office(user: User | AnonymousUser) -> QuerySet[Posting]:
+    """Postings as an administrator of the whole office."""
+    return postings(user).filter(role=Role.ADMIN, district__isnull=True)
+
+
 def keeps_office(user: User | AnonymousUser) -> bool:
     """Whether the user is an administrator of the whole office."""
-    return postings(user).filter(role=Role.ADMIN, district__isnull=True).exists()
+    return of_the_office(user).exists()
 
 
 def may(user: User | AnonymousUser, act: Act, thing: Any = None) -> bool:

@@ -15,9 +15,8 @@ if TYPE_CHECKING:
 
 def administered_postings(user: User) -> QuerySet[Posting]:
     """Postings in the districts that the user keeps; those of the office for its administrator."""
-    found = Q(district__in=access.administered(user))
-    if access.keeps_office(user):
-        found |= Q(district__isnull=True)
+    office = Exists(access.of_the_office(user))
+    found = Q(district__in=access.administered(user)) | Q(office, district__isnull=True)
     return (
         Posting.objects.filter(found)
         .select_related("user", "district")
@@ -29,9 +28,8 @@ def administered_people(user: User) -> QuerySet[User]:
     """People with a posting, past or present, among those; with these postings only."""
     kept = administered_postings(user)
     shown = Prefetch("postings", queryset=kept, to_attr="kept_postings")
-    found = User.objects.filter(Exists(kept.filter(user=OuterRef("pk"))))
-    if access.keeps_office(user):
-        found = User.objects.all()
+    mine = Exists(kept.filter(user=OuterRef("pk")))
+    found = User.objects.filter(mine | Exists(access.of_the_office(user)))
     return found.prefetch_related(shown).order_by("username")
 
 
