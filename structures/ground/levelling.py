@@ -9,15 +9,17 @@ from __future__ import annotations
 from dataclasses import dataclass
 from decimal import Decimal
 from fractions import Fraction
+from itertools import pairwise
 from typing import TYPE_CHECKING, Final
 
-from structures.errors import Refused
+from structures.errors import Finding, Refused
 from structures.intake.defaults import GROUND
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
 MM_PER_M: Final = 1000  # exact
+STAFF_M: Final = 5  # [A] a longer reading is doubted; handbook 1.7
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +41,8 @@ class BookLine:
 class LevelRun:
     """A level run that closed within its limit.
 
-    `levels_m` are as reduced, `adjusted_m` exact after the misclosure was shared out by distance.
+    `levels_m` are as reduced, `adjusted_m` exact after the misclosure was shared out by distance;
+    `findings` holds sights that are doubted but kept.
     """
 
     points: tuple[str, ...]
@@ -49,6 +52,7 @@ class LevelRun:
     sum_fore_m: Decimal
     misclosure_m: Decimal
     allowable_mm: float
+    findings: tuple[Finding, ...] = ()
 
 
 def reduce_by_instrument_height(book: Sequence[BookLine], start_m: Decimal) -> tuple[Decimal, ...]:
@@ -112,10 +116,11 @@ def reduce_run(
     Raises
     ------
     Refused
-        If a line lacks its sight, the two methods or the arithmetic check differ, or the run does
-        not close within its limit: it is run again, never adjusted.
+        If a line lacks its sight, distances do not grow, the two methods or the arithmetic check
+        differ, or the run does not close within its limit: it is run again, never adjusted.
     """
     _check_sights(book)
+    _check_distances(book)
     levels = reduce_by_instrument_height(book, start_m)
     sum_back = sum((line.back for line in book if line.back is not None), start=Decimal(0))
     sum_fore = sum((line.fore for line in book if line.fore is not None), start=Decimal(0))
@@ -148,6 +153,7 @@ def reduce_run(
         sum_fore_m=sum_fore,
         misclosure_m=misclosure,
         allowable_mm=allowable,
+        findings=_long_sights(book),
     )
 
 
@@ -164,3 +170,35 @@ def _check_sights(book: Sequence[BookLine]) -> None:
                 where=f"level book line {number + 1}",
                 remedy="First a back sight, last a fore sight, both at a change point.",
             )
+
+
+def _check_distances(book: Sequence[BookLine]) -> None:
+    distances = [line.distance_km for line in book]
+    if not any(distances):
+        raise Refused(
+            "The run has no length.",
+            where="level book",
+            remedy="Book the distance run since the start; the limit depends on it.",
+        )
+    if distances[0] or any(after < before for before, after in pairwise(distances)):
+        raise Refused(
+            "Distances do not grow from 0 at the first line.",
+            where="level book",
+            remedy="Book the distance run since the start, in km.",
+        )
+
+
+def _long_sights(book: Sequence[BookLine]) -> tuple[Finding, ...]:
+    """Doubt readings longer than a staff."""
+    return tuple(
+        Finding(
+            f"level book line {number}",
+            name,
+            f"A reading of {sight} m is longer than a staff of {STAFF_M} m.",
+            "Look at the book.",
+            level="warn",
+        )
+        for number, line in enumerate(book, 1)
+        for name in ("back", "between", "fore")
+        if (sight := getattr(line, name)) is not None and sight > STAFF_M
+    )

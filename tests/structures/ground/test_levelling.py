@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from decimal import Decimal
 from fractions import Fraction
 
@@ -84,6 +85,44 @@ def test_a_sight_out_of_its_place_is_named(number, line):
     book = (*BOOK[:number], line, *BOOK[number + 1 :])
     with pytest.raises(Refused, match=f"level book line {number + 1}"):
         reduce_run(book, start_m=START, close_m=START)
+
+
+@pytest.mark.parametrize(
+    ("kilometres", "said"),
+    [
+        (("0", "0.1", "0.05"), "do not grow"),
+        (("0.1", "0.2", "0.3"), "do not grow from 0"),
+        (("0", "0", "0"), "no length"),
+    ],
+)
+def test_distances_that_share_nothing_out_are_refused(kilometres, said):
+    sights = ((D("1.5"), None), (D("1.2"), D("1.1")), (None, D("1.6")))
+    book = [
+        BookLine(str(i), D(km), back=back, fore=fore)
+        for i, (km, (back, fore)) in enumerate(zip(kilometres, sights, strict=True))
+    ]
+    with pytest.raises(Refused, match=said):
+        reduce_run(book, start_m=START, close_m=START)
+
+
+def test_an_empty_book_is_refused():
+    with pytest.raises(Refused, match="no length"):
+        reduce_run([], start_m=START, close_m=START)
+
+
+def test_a_sight_in_the_wrong_column_breaks_the_arithmetic_check():
+    """A fore sight where an intermediate belongs: no new height, yet it is summed up."""
+    wrong = BookLine("1", D("0.02"), fore=D("1.980"))
+    with pytest.raises(Refused, match="wrong column"):
+        reduce_run((BOOK[0], wrong, *BOOK[2:]), start_m=START, close_m=START)
+
+
+def test_a_reading_longer_than_a_staff_is_doubted():
+    """Oracle: handbook 1.7, 5 m."""
+    long = (BOOK[0], replace(BOOK[1], between=D("5.001")), *BOOK[2:])
+    (finding,) = reduce_run(long, start_m=START, close_m=START).findings
+    assert (finding.where, finding.field, finding.level) == ("level book line 2", "between", "warn")
+    assert reduce_run(BOOK, start_m=START, close_m=START).findings == ()
 
 
 sights = st.integers(0, 4999).map(lambda mm: D(mm) / 1000)

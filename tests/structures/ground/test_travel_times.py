@@ -101,3 +101,8 @@ def test_a_level_plane_dips_nowhere():
     plane = dipping_plane(500.0, 2000.0, 2000.0)
     assert (plane.delta, plane.velocity(500.0)) == pytest.approx((0.0, 2000.0))
     assert tan(plane.delta) == 0.0
+
+
+def test_a_plane_slower_than_its_cover_is_refused():
+    with pytest.raises(ValueError, match="not above"):
+        dipping_plane(500.0, 450.0, 2000.0)
