@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
-from scipy.special import log_ndtr, ndtri_exp
+from scipy.special import log_ndtr, ndtr, ndtri, ndtri_exp
 
 from structures.arrays import frozen
 
@@ -19,6 +19,7 @@ if TYPE_CHECKING:
 
 SWEEPS: Final = 30  # [A] Gibbs equals brute rejection within its own noise from 10 on (measured)
 TRIALS: Final = 4  # [A] rejection is given up when fewer than one trial in four survives
+TAIL: Final = -30.0  # standard bound below which the shares themselves fall out of floats
 STEADY: Final = 1e-9  # share of the sill added to diagonals, so that equal places stay solvable
 
 
@@ -213,12 +214,22 @@ def draw_bounded(
         return kept[:draws]
     P = np.linalg.inv(V)
     sd = 1.0 / np.sqrt(np.diag(P))
-    z = np.tile(np.minimum(mean_m, most_m), (draws, 1))
+    # One row a place, so that each step reads memory in one piece.
+    mean, most = mean_m[:, None], most_m[:, None]
+    z = np.repeat(np.minimum(mean, most) - mean, draws, axis=1)
     for _ in range(SWEEPS):
         for i in range(mean_m.size):
-            off = (z - mean_m) @ P[:, i] - (z[:, i] - mean_m[i]) * P[i, i]
-            centre = mean_m[i] - off / P[i, i]
-            # In logarithms, so that a bound far out in the tail still gives a number.
-            log_share = log_ndtr((most_m[i] - centre) / sd[i]) + np.log1p(-rng.random(draws))
-            z[:, i] = np.minimum(centre + sd[i] * ndtri_exp(log_share), most_m[i])
+            centre = z[i] - P[i] @ z / P[i, i]
+            cut = (most_m[i] - mean_m[i] - centre) / sd[i]
+            z[i] = centre + sd[i] * _cut_normals(cut, rng)
+    return np.minimum(z + mean, most).T
+
+
+def _cut_normals(most: NDArray, rng: np.random.Generator) -> NDArray[np.float64]:
+    """Draw one standard normal number below each bound, by the inverse distribution function."""
+    share = 1.0 - rng.random(most.size)
+    z = np.minimum(ndtri(ndtr(most) * share), most)
+    far = most < TAIL
+    if far.any():
+        z[far] = np.minimum(ndtri_exp(log_ndtr(most[far]) + np.log(share[far])), most[far])
     return z

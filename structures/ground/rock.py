@@ -6,6 +6,7 @@ from itertools import pairwise
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
+from scipy.special import ndtr
 
 from structures.ground.gaussian import (
     STEADY,
@@ -38,9 +39,15 @@ LEAST_LEVELS: Final = 2  # tests that give a level, handbook 4.7
 ABOVE_TEST_M: Final = 0.05  # [A] a settled line may stand so far above the foot of a probe
 BOUNDS_AT_MOST: Final = 30  # [A] more are thinned, one in each stretch
 THINNED_TO_M: Final = 2.0  # [A] the length of such a stretch
-APART_M: Final = 1e-6  # offsets nearer than this are one place
+BITES_SD: Final = 7.0  # [A] a bound higher above the line cuts off less than 1e-11 of its draws
 CONTRADICTS_SD: Final = 3.0  # [A] a bound so many sd below a level found close by
 NEAR_SHARE: Final = 0.25  # [A] of the range: what "close by" means
+FOOT_OF: Final = {
+    "hole": "the hole",
+    "probe refused": "the probe",
+    "probe stopped": "the probe",
+    "weathered": "the hole in weathered rock",
+}
 
 
 def estimate_rock(
@@ -70,8 +77,10 @@ def estimate_rock(
     unread = _unread(soundings, "sounding") + _unread(refraction, "refraction")
     if pack.rock_line is not None:
         return _given(pack, gathered, unread, soundings)
-    if len({one.offset_m for one in gathered.levels}) < LEAST_LEVELS:
-        why = f"{len(gathered.levels)} test gives a level of rock, two are needed."
+    places = len({one.offset_m for one in gathered.levels})
+    if places < LEAST_LEVELS:
+        found = f"at {places} place" if places else "nowhere"
+        why = f"tests give a level of rock {found}, two places are needed."
         return RockLine(
             "none",
             [],
@@ -95,7 +104,7 @@ def _given(
             "rock-line-above-test",
             line_m=float(np.interp(bound.offset_m, x, z)),
             offset_m=bound.offset_m,
-            test=f"the {bound.kind}",
+            test=FOOT_OF[bound.kind],
             test_m=bound.level_m,
         )
         for bound in gathered.bounds
@@ -142,7 +151,8 @@ def _estimated(
     )
     covariance, spread = _covariance(pack, seen)
     reach = float(seen.offset_m.min()), float(seen.offset_m.max())
-    bounds, thinned = _bounds(gathered.bounds, reach)
+    inside = [one for one in gathered.bounds if reach[0] <= one.offset_m <= reach[1]]
+    bounds, thinned = _thinned(_biting(inside, seen, covariance))
     x = _offsets(pack, gathered, reach)
     ground = np.array([ground_level_m(pack, at) for at in x])
 
@@ -162,12 +172,15 @@ def _estimated(
     back = np.argsort(order)
     lines = np.minimum(lines[:, back], ground)
     mean, sd = prediction.mean_m[back], prediction.sd_m[back]
-    low, half, high = _points(lines, mean, sd, ground, exact=not bounds)
+    if not bounds:
+        sd, (low, half, high) = _cut_sd(mean, sd, ground), _cut_points(mean, sd, ground)
+    else:
+        sd, (low, half, high) = lines.std(axis=0), np.quantile(lines, (LOW, HALF, HIGH), axis=0)
     return RockLine(
         "estimated",
         x,
         half,
-        sd_m=lines.std(axis=0),
+        sd_m=sd,
         low_m=low,
         high_m=high,
         draws_m=lines,
@@ -189,29 +202,35 @@ def _covariance(pack: SurveyPack, seen: Observations) -> tuple[Covariance, tuple
     sill, reach = GROUND["rock_least_sill_m2"], GROUND["rock_range_m"]
     count = seen.offset_m.size
     if count >= FIT_FROM:
-        return fit_covariance(
+        code = "rock-spread-fitted"
+        covariance = fit_covariance(
             seen, sill_m2=(sill.low, sill.high), range_m=(reach.low, reach.high)
-        ), ()
-    ground = np.array([ground_level_m(pack, at) for at in seen.offset_m])
-    depth = float(np.mean(ground - seen.level_m))
-    default = Covariance(max((DEPTH_SHARE * depth) ** 2, sill.value), reach.value)
-    said = caution(
-        "rock-default-spread", range_m=default.range_m, sill_m2=default.sill_m2, count=count
-    )
-    return default, (said,)
+        )
+    else:
+        code = "rock-default-spread"
+        ground = np.array([ground_level_m(pack, at) for at in seen.offset_m])
+        depth = float(np.mean(ground - seen.level_m))
+        covariance = Covariance(max((DEPTH_SHARE * depth) ** 2, sill.value), reach.value)
+    said = caution(code, range_m=covariance.range_m, sill_m2=covariance.sill_m2, count=count)
+    return covariance, (said,)
 
 
-def _bounds(
-    bounds: Sequence[Evidence], reach: tuple[float, float]
-) -> tuple[list[Evidence], tuple[Caution, ...]]:
-    """Keep the lowest bound of each place inside the reach; of very many one in each 2 m."""
-    inside = [one for one in bounds if reach[0] <= one.offset_m <= reach[1]]
-    lowest = _lowest_by(inside, lambda one: one.offset_m)
-    if len(lowest) <= BOUNDS_AT_MOST:
-        return lowest, ()
-    kept = _lowest_by(lowest, lambda one: one.offset_m // THINNED_TO_M)
-    said = caution("rock-bounds-thinned", count=len(inside) - len(kept), total=len(inside))
-    return kept, (said,)
+def _biting(
+    bounds: Sequence[Evidence], seen: Observations, covariance: Covariance
+) -> list[Evidence]:
+    """Keep the lowest bound of each place, and of these what reaches down to the line at all."""
+    lowest = _lowest_by(bounds, lambda one: one.offset_m)
+    found = predict(seen, covariance, [one.offset_m for one in lowest])
+    highest = found.mean_m + BITES_SD * found.sd_m
+    return [one for one, most in zip(lowest, highest, strict=True) if one.level_m < most]
+
+
+def _thinned(bounds: list[Evidence]) -> tuple[list[Evidence], tuple[Caution, ...]]:
+    """Of very many bounds keep the lowest in each 2 m."""
+    if len(bounds) <= BOUNDS_AT_MOST:
+        return bounds, ()
+    kept = _lowest_by(bounds, lambda one: one.offset_m // THINNED_TO_M)
+    return kept, (caution("rock-bounds-thinned", count=len(bounds) - len(kept), total=len(bounds)),)
 
 
 def _lowest_by(bounds: Sequence[Evidence], place: Callable[[Evidence], float]) -> list[Evidence]:
@@ -236,15 +255,23 @@ def _offsets(
     return x[(x >= first) & (x <= last)]
 
 
-def _points(
-    lines: NDArray, mean: NDArray, sd: NDArray, ground: NDArray, *, exact: bool
-) -> tuple[NDArray, NDArray, NDArray]:
-    """Give 10, 50 and 90 % points; without a bound the normal law gives them exactly."""
-    if exact:
-        half_width = NORMAL_90 * sd
-        points = (mean - half_width, mean, mean + half_width)
-        return tuple(np.minimum(point, ground) for point in points)
-    return tuple(np.quantile(lines, (LOW, HALF, HIGH), axis=0))
+def _cut_points(mean: NDArray, sd: NDArray, ground: NDArray) -> list[NDArray]:
+    """Give 10, 50 and 90 % points of the normal law, no higher than the ground."""
+    return [np.minimum(mean + z * sd, ground) for z in (-NORMAL_90, 0.0, NORMAL_90)]
+
+
+def _cut_sd(mean: NDArray, sd: NDArray, ground: NDArray) -> NDArray[np.float64]:
+    """Give the standard deviation of min(z, ground) for a normal z.
+
+    Source: moments of the censored normal law, e.g. the Tobit model, written from the mean.
+    """
+    room = (ground - mean) / sd
+    density = np.exp(-0.5 * room**2) / np.sqrt(2.0 * np.pi)
+    beyond = ndtr(-room)
+    first = room * beyond - density
+    second = 1.0 - beyond - room * density + room**2 * beyond
+    # Where the mean stands far above the ground the two are equal but for rounding.
+    return sd * np.sqrt(np.maximum(second - first**2, 0.0))
 
 
 def _contradictions(
@@ -260,7 +287,7 @@ def _contradictions(
             fall = 2.0 * covariance.sill_m2 * (1.0 - np.exp(-apart / covariance.range_m))
             if level.level_m - bound.level_m > CONTRADICTS_SD * np.hypot(level.sd_m, fall**0.5):
                 what = (
-                    f"the {bound.kind} went down to {bound.level_m:.2f} m, the {level.kind} at "
+                    f"{FOOT_OF[bound.kind]} went down to {bound.level_m:.2f} m, the {level.kind} at "
                     f"{level.offset_m:.2f} m found rock at {level.level_m:.2f} m."
                 )
                 where = f"{bound.offset_m:.2f} m"

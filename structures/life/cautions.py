@@ -79,6 +79,13 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
             "observations, 15 are needed to fit them."
         ),
     ),
+    "rock-spread-fitted": (
+        "note",
+        (
+            "Range {range_m:.1f} m and sill {sill_m2:.2f} m2 of the rock line were fitted to {count} "
+            "observations."
+        ),
+    ),
     "rock-line-above-test": (
         "block",
         (

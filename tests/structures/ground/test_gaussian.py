@@ -132,6 +132,23 @@ def test_a_bound_far_out_in_the_tail_still_gives_numbers():
     assert (drawn <= most).all()
 
 
+@pytest.mark.parametrize("bound", [-2.0, -8.0, -29.0, -35.0])
+def test_far_tails_keep_their_mean(bound):
+    """Oracle: mean of a cut normal law, -phi(a)/Phi(a), on both sides of the change of formula."""
+    drawn = draw_bounded(
+        np.zeros(1), np.eye(1), np.array([bound]), draws=20_000, rng=np.random.default_rng(5)
+    )
+    closed = -np.exp(norm.logpdf(bound) - norm.logcdf(bound))
+    assert drawn.mean() == pytest.approx(closed, abs=5 * drawn.std() / 20_000**0.5)
+
+
+def test_wrong_calls_fail_at_once():
+    with pytest.raises(ValueError, match="positive"):
+        Covariance(0.0, 20.0)
+    with pytest.raises(ValueError, match="one length"):
+        Observations([0.0, 1.0], [5.0], [0.1])
+
+
 @given(st.lists(st.integers(0, 59), min_size=2, max_size=6, unique=True), st.integers(0, 59))
 def test_one_more_observation_never_widens_the_doubt(offsets, more):
     """Law: with a known mean, variance given more data is never larger."""

@@ -8,7 +8,9 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from scipy.stats import norm
 
+from structures.ground.gaussian import Covariance, Observations, predict
 from structures.ground.refraction import RefractionReading
 from structures.ground.rock import estimate_rock
 from structures.ground.sounding import Refusal
@@ -82,6 +84,13 @@ def test_fewer_than_two_levels_give_no_line(kept):
     assert len(line.evidence) == 2 + len(kept)
 
 
+@pytest.mark.parametrize(("kept", "said"), [((), "nowhere"), (PACK.rock[1:2] * 2, "at 1 place,")])
+def test_what_lacks_is_counted_in_places(kept, said):
+    """Two tests of one place give no line between places."""
+    (found,) = line_of(replace(PACK, rock=kept)).cautions
+    assert said in found.text
+
+
 def test_printed_points_without_bounds_are_those_of_the_normal_law():
     """Oracle: 1.281552 sd to each side (handbook 8.9), the draws within their own error."""
     line = line_of(PACK)
@@ -91,6 +100,29 @@ def test_printed_points_without_bounds_are_those_of_the_normal_law():
     assert line.level_m[at] == pytest.approx(
         line.draws_m[:, at].mean(), abs=4 * line.sd_m[at] / DRAWS**0.5
     )
+
+
+def test_doubt_under_shallow_ground_is_that_of_the_cut_normal_law():
+    """Oracle: numerical integration of min(z, ground) over the normal law of the prediction."""
+    shallow = replace(PACK, rock=tuple(replace(test, depth_m=0.4) for test in PACK.rock))
+    line = line_of(shallow)
+    i = int(np.flatnonzero(line.offset_m == 33.0)[0])
+    ground = 100.0
+    seen = Observations([0.0, 25.0, 60.0], [102.6, 99.6, 102.6], [0.05, 0.10, 0.10])
+    found = predict(seen, Covariance(1.0, 20.0), [33.0])
+    z = norm(found.mean_m[0], found.sd_m[0]).ppf((np.arange(2_000_000) + 0.5) / 2_000_000)
+    assert found.mean_m[0] + 3 * found.sd_m[0] > ground
+    assert line.sd_m[i] == pytest.approx(np.minimum(z, ground).std(), rel=1e-4)
+    assert line.level_m[i] == pytest.approx(min(found.mean_m[0], ground), rel=1e-9)
+    assert line.draws_m[:, i].std() == pytest.approx(line.sd_m[i], rel=0.08)
+
+
+def test_a_probe_that_stops_far_above_the_line_changes_nothing():
+    """Oracle: check value 4.h, 1e-6, on the whole line."""
+    without, probed = line_of(PACK), line_of(replace(PACK, probes=(Probe(25.0, 0.2, True),)))
+    assert probed.level_m == pytest.approx(without.level_m, abs=1e-6)
+    assert probed.low_m == pytest.approx(without.low_m, abs=1e-6)
+    assert probed.sd_m == pytest.approx(without.sd_m, abs=1e-6)
 
 
 def test_a_bore_is_met_within_its_error():
@@ -150,7 +182,9 @@ def test_defaults_are_said_and_follow_the_mean_depth():
 
 def test_fifteen_observations_are_fitted():
     many = tuple(RockTest(4.0 * i, 2.0 + (i % 5), "bore", True) for i in range(16))
-    assert "rock-default-spread" not in codes(line_of(replace(PACK, rock=many)))
+    said = codes(line_of(replace(PACK, rock=many)))
+    assert "rock-spread-fitted" in said
+    assert "rock-default-spread" not in said
 
 
 def test_a_sounding_counts_with_the_error_of_the_handbook():
@@ -192,6 +226,12 @@ def test_a_settled_line_is_used_as_given():
     assert (line.sd_m, line.low_m, line.draws_m) == (None, None, None)
     # At 30 m the probe went down to 93 m, one metre under the line; at 15 m it stopped above it.
     assert codes(line) == ["rock-line-above-test", "sounding-differs"]
+
+
+def test_a_sounding_that_holds_the_settled_line_or_stands_beside_it_says_nothing():
+    settled = (RockLinePoint(10.0, 98.0), RockLinePoint(50.0, 98.0))
+    read = [sounding(30.0, 2.4), sounding(5.0, 9.0)]
+    assert codes(line_of(replace(PACK, rock_line=settled), soundings=read)) == []
 
 
 def test_a_probe_far_below_a_bore_beside_it_is_told():
