@@ -10,7 +10,7 @@ from django.utils.http import url_has_allowed_host_and_scheme
 from structures.errors import Refused
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Mapping
 
     from django.forms import Form
     from django.http import HttpRequest, HttpResponse
@@ -18,16 +18,16 @@ if TYPE_CHECKING:
 STATUS = 422  # the request was understood and cannot be carried out (RFC 9110, 15.5.21)
 
 
-def refuse(form: Form, refused: Refused) -> None:
-    """Put a refusal at the fields it names; what names none of this form stands above it."""
-    if not refused.findings:
-        named = refused.where if refused.where in form.fields else None
-        words = f"{refused.what} {refused.remedy}".strip() if named else refused.sentence()
-        form.add_error(named, words)
-        return
-    for finding in refused.findings:
-        named = next((one for one in (finding.field, finding.where) if one in form.fields), None)
-        words = f"{finding.what} {finding.remedy}".strip() if named else finding.sentence()
+def refuse(form: Form, refused: Refused, *, fields: Mapping[str, str] | None = None) -> None:
+    """Put a refusal at the fields it names; what names none of this form stands above it.
+
+    `fields` gives the form's field for a name that the refusal has for it.
+    """
+    known = {**(fields or {}), **{name: name for name in form.fields}}
+    for one in refused.findings or (refused,):
+        names = (getattr(one, "field", ""), one.where)
+        named = next((known[name] for name in names if name in known), None)
+        words = f"{one.what} {one.remedy}".strip() if named else one.sentence()
         form.add_error(named, words)
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from django.urls import path
 
-from structures.web import accounts, people
+from structures.web import accounts, guide, people, settings
 
 app_name = "structures"
 
@@ -21,4 +21,9 @@ urlpatterns = [
     path("people/<int:user_id>/end-sessions/", people.end_sessions, name="end-sessions"),
     path("people/<int:user_id>/postings/new/", people.posting, name="new-posting"),
     path("people/<int:user_id>/postings/<int:posting_id>/", people.posting, name="posting"),
+    path("settings/", settings.settings, name="settings"),
+    path("settings/<str:key>/", settings.setting, name="setting"),
+    path("districts/new/", settings.new_district, name="new-district"),
+    path("districts/<str:code>/", settings.district, name="district"),
+    path("help/", guide.guide, name="help"),
 ]

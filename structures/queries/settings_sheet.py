@@ -1,0 +1,46 @@
+"""Whose settings a reader may see, what became of one, and the defaults that nobody changes here."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Final
+
+from django.db.models import Q
+
+from structures import access
+from structures.intake.defaults import GROUND, MONEY, WATER
+from structures.models import District, Setting
+from structures.validators import CHANGEABLE
+
+if TYPE_CHECKING:
+    from django.db.models import QuerySet
+
+    from structures.intake.defaults import Default
+    from structures.models import User
+
+FIXED: Final[tuple[Default, ...]] = tuple(
+    default
+    for table in (GROUND, WATER, MONEY)
+    for key, default in table.items()
+    if key not in CHANGEABLE
+)
+
+
+def settings_districts(user: User) -> QuerySet[District]:
+    """Districts whose settings the user may read: served in, or kept."""
+    serves, keeps = access.districts(user), access.administered(user)
+    return District.objects.filter(Q(pk__in=serves) | Q(pk__in=keeps)).order_by("code")
+
+
+def changeable_default(key: str) -> Default | None:
+    return CHANGEABLE.get(key)
+
+
+def setting_history(key: str, district: District | None) -> QuerySet[Setting]:
+    """What a setting was, newest first, with who changed it."""
+    kept = Setting.history.filter(key=key, district=district)
+    return kept.select_related("history_user").order_by("-history_date", "-history_id")
+
+
+def setting_of(key: str, district: District | None) -> Setting | None:
+    """The setting that stands exactly there, not one that counts from elsewhere."""
+    return Setting.objects.filter(key=key, district=district).first()
