@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from structures.access import MAY, Act
 from structures.models import Role
 from structures.queries.people import own_postings
 
@@ -19,7 +20,7 @@ class Frame:
     """Places beyond those of everyone, and the districts that are invented."""
 
     keeps_people: bool
-    more_than_field: bool
+    sees_money: bool
     invented: tuple[District, ...]
 
 
@@ -30,7 +31,7 @@ def frame_of(user: User | AnonymousUser) -> Frame:
     districts = {posting.district for posting in held if posting.district is not None}
     return Frame(
         keeps_people=Role.ADMIN in roles,
-        more_than_field=bool(roles - {Role.FIELD}),
+        sees_money=bool(roles & MAY[Act.SEE_MONEY]),
         invented=tuple(
             sorted((one for one in districts if one.invented), key=lambda one: one.code)
         ),

@@ -79,7 +79,7 @@ def setting(request, key):
     context = {
         "default": default,
         "district": district,
-        "kept": setting_of(key, district),
+        "value": _in_force(default, district),
         "history": setting_history(key, district),
         "allowed": allowed,
         "keeps_office": keeps_office(request.user),
@@ -125,7 +125,15 @@ def district(request, code):
 
 def _allowed(user, district):
     """Owners whose defaults the user may change there."""
-    return {owner for owner, act in acts.ACT.items() if may(user, act, district)}
+    return [owner for owner, act in acts.ACT.items() if may(user, act, district)]
+
+
+def _in_force(default, district):
+    """What counts in a district, its own word before the office's; or in the office."""
+    if district is not None:
+        return settings_in_force(district)[default.key].value
+    kept = setting_of(default.key, None)
+    return default.value if kept is None else kept.value
 
 
 def _answer(request, template, context, form):

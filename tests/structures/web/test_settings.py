@@ -46,7 +46,7 @@ def test_the_sheet_shows_value_unit_range_source_and_owner(as_role):
     for said in ("0.15", "0.1 \u2013 0.6", "decided for this program", "licensed engineer"):
         assert said in text
     assert "common practice, no source" in text
-    assert "you may change it" not in text
+    assert "You may change here" not in text
 
 
 @pytest.mark.parametrize(
