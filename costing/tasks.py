@@ -74,7 +74,9 @@ def price_estimate(work: Work) -> Outcome:
     if found.estimate is None:
         silent = next(one for one in found.cautions if one.level == "block")
         raise Refused(silent.text, where=inputs.pack.site.code)
+    work.progress(0.75, "writing drawing, workbook and report")
+    documents = {name: keep_bytes(data) for name, data in documents_of(found).items()}
     return Outcome(
-        {"appraisal": as_json(found)},
+        {"appraisal": as_json(found), "figures": figures_of(found), "documents": documents},
         partial(freeze_estimate, work.held.run_id, inputs, found),
     )

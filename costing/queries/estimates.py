@@ -30,7 +30,9 @@ if TYPE_CHECKING:
 
 def visible_estimates(user: User) -> QuerySet[Estimate]:
     """Estimates of all sites the user may see, newest first, with what they are judged stale by."""
-    found = Estimate.objects.filter(site__in=access.sites(user)).defer("result")
+    found = Estimate.objects.filter(site__in=access.sites(user, access.Act.SEE_MONEY)).defer(
+        "result"
+    )
     return _judged(found).order_by("-frozen_at", "-pk")
 
 

@@ -25,7 +25,7 @@ Place = tuple[str, float | None]  # item, and the depth at which its lift begins
 
 
 def visible_schedules(user: User) -> QuerySet[RateSchedule]:
-    found = RateSchedule.objects.filter(district__in=access.districts(user))
+    found = RateSchedule.objects.filter(district__in=access.districts(user, access.Act.SEE_MONEY))
     return (
         found.select_related("district", "by", "upload")
         .annotate(rate_count=Count("rates"))

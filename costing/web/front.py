@@ -12,12 +12,12 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 
 from costing.actions.appraisals import APPRAISAL, start_appraisal
 from costing.web.forms import AppraisalForm
+from costing.web.handing import answer_with_file
 from structures.errors import Refused
 from structures.intake.pack_schema import pack_schema as schema_of_packs
 from structures.life.cautions import ALWAYS, CLOSING_SENTENCE, caution
 from structures.queries.runs import runs_of_kind
 from structures.runs.book import ask_cancel
-from structures.runs.files import kept_bytes
 from structures.runs.health import readiness
 
 if TYPE_CHECKING:
@@ -25,13 +25,6 @@ if TYPE_CHECKING:
 
     from django.core.files.uploadedfile import UploadedFile
     from django.http import HttpRequest
-
-TYPES = {
-    ".svg": "image/svg+xml",
-    ".pdf": "application/pdf",
-    ".xlsx": "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet",
-    ".json": "application/json",
-}
 
 
 @login_not_required
@@ -91,9 +84,7 @@ def document(request: HttpRequest, run_id: UUID, name: str) -> HttpResponse:
     digest = ((run.result or {}).get("documents") or {}).get(name)
     if digest is None:
         raise Http404(_("This appraisal has no such document."))
-    answer = HttpResponse(kept_bytes(digest), content_type=TYPES[name[name.rindex(".") :]])
-    answer["Content-Disposition"] = f'attachment; filename="{name}"'
-    return answer
+    return answer_with_file(name, digest)
 
 
 @login_not_required

@@ -1,6 +1,6 @@
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 from zoneinfo import ZoneInfo
 
 from django.db.models import Q, Value
@@ -18,6 +18,8 @@ if TYPE_CHECKING:
 
     from structures.models import District, User
 
+SITE: Final = "site "  # before the code, in the subject of a run on a site
+
 
 def runs_of_kind(kind: str) -> QuerySet[Run]:
     return Run.objects.filter(kind=kind)
@@ -25,7 +27,7 @@ def runs_of_kind(kind: str) -> QuerySet[Run]:
 
 def visible_runs(user: User) -> QuerySet[Run]:
     """Runs the user asked for, and those on sites that the user may see."""
-    subjects = access.sites(user).annotate(run_subject=Concat(Value("site "), "code"))
+    subjects = access.sites(user).annotate(run_subject=Concat(Value(SITE), "code"))
     # A run without an account carries the name of a file as its subject, which may be any text.
     on_sites = Q(asked_by__isnull=False, subject__in=subjects.values("run_subject"))
     mine = Q(asked_by=user) | on_sites
@@ -39,7 +41,13 @@ def runs_of_site(user: User, code: str) -> QuerySet[Run]:
 
 def site_subject(code: str) -> str:
     """What a run on a site carries as its subject."""
-    return f"site {code}"
+    return f"{SITE}{code}"
+
+
+def site_of_run(run: Run) -> str | None:
+    """Code of the site a run is about; None where it is about none."""
+    on_site = run.asked_by_id is not None and run.subject.startswith(SITE)
+    return run.subject.removeprefix(SITE) if on_site else None
 
 
 def day_asked(run_id: UUID, district: District) -> date:

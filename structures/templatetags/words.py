@@ -38,3 +38,32 @@ def item_word(item):
 @register.filter
 def unit_word(unit):
     return {"m2": "m²", "m3": "m³", "hour": _("hour"), "each": _("each")}[unit]
+
+
+@register.filter
+def sum_word(name):
+    return {
+        "subtotal": _("Subtotal"),
+        "contingency": _("Contingency"),
+        "overhead": _("Overhead"),
+        "total": _("Total"),
+        "sanction": _("For sanction, rounded up to the next 100"),
+        "p10": "P10",
+        "p50": "P50",
+        "p90": "P90",
+    }[name]
+
+
+@register.filter
+def change_word(kind):
+    return {"added": _("added"), "changed": _("changed"), "removed": _("no longer there")}[kind]
+
+
+@register.filter
+def kind_word(kind):
+    words = {
+        "appraisal": _("Appraisal of a pack"),
+        "survey.read": _("Reading of a survey"),
+        "estimate.price": _("Estimate"),
+    }
+    return words.get(kind, kind)

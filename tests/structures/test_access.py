@@ -137,12 +137,16 @@ def test_a_role_may_what_the_table_says_at_home_and_nothing_elsewhere(two_distri
 
 def test_the_auditor_writes_nothing():
     """Source: the office's practice, people: read-only."""
-    assert [act for act in Act if Role.AUDITOR in MAY[act]] == [Act.SEE]
+    assert [act for act in Act if Role.AUDITOR in MAY[act]] == [
+        Act.SEE,
+        Act.SEE_MONEY,
+    ]
 
 
 def test_field_staff_never_price_and_administrators_never_decide():
     """Source: the office's practice, what each role may never do."""
-    assert Role.FIELD not in MAY[Act.REQUEST_ESTIMATE] | MAY[Act.IMPORT_SCHEDULE]
+    priced = MAY[Act.REQUEST_ESTIMATE] | MAY[Act.IMPORT_SCHEDULE] | MAY[Act.SEE_MONEY]
+    assert Role.FIELD not in priced
     for act in (Act.SETTLE_ROCK, Act.REQUEST_ESTIMATE, Act.ACCEPT_SURVEY, Act.IMPORT_SCHEDULE):
         assert Role.ADMIN not in MAY[act]
 

@@ -1,0 +1,27 @@
+"""Money on a page of metres: the panel is drawn here, so `structures` needs no word of it."""
+
+from __future__ import annotations
+
+from django import template
+
+from costing.queries.estimates import estimates_of, stale_reasons
+from structures.access import Act, may
+
+register = template.Library()
+
+
+@register.inclusion_tag("costing/_estimate_panel.html", takes_context=True)
+def estimate_panel(context, site):
+    """The newest estimate of a site, and why it is stale; nothing for who may not see money."""
+    user = context["user"]
+    if not may(user, Act.SEE_MONEY, site):
+        return {"seen": False}
+    newest = estimates_of(user, site.code).first()
+    return {
+        "seen": True,
+        "site": site,
+        "estimate": newest,
+        "stale": () if newest is None else stale_reasons(newest),
+        "may_ask": may(user, Act.REQUEST_ESTIMATE, site),
+        "csrf_token": context.get("csrf_token"),
+    }
