@@ -1,0 +1,238 @@
+"""Watersheds and sites from above: outlines as kept, each site by shape and code, north upwards."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Final
+
+from structures.drawing.letters import PHONE_SMALL_MM, PHONE_TEXT_MM, SMALL_MM, TEXT_MM, width_mm
+from structures.drawing.places import Box, Label, Places
+from structures.drawing.scales import round_step
+from structures.drawing.svg import Sheet
+from structures.ground.place import on_grid
+from structures.life.stages import BESIDE_IT, ON_THE_LINE
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from structures.drawing.svg import Point
+
+Position = tuple[float, float]  # longitude, latitude in degrees, WGS 84
+
+EDGE_MM: Final = 6.0  # paper around what is drawn
+LEAST_SPAN_M: Final = 500.0  # [A] a lone site is shown with some land around it
+BAR_SHARE: Final = 0.2  # of the width, that the scale bar takes at least
+MARK_MM: Final = 1.5  # half the size of a site's mark
+KM_M: Final = 1000.0  # exact
+FIRST_BUILT: Final = "digging"
+FIRST_STANDING: Final = "handed-over"
+FIRST_ON_PAPER: Final = "drawn"
+WORDS: Final = {
+    "open circle": "no wall drawn yet",
+    "open square": "wall on paper",
+    "full square": "being built",
+    "full circle": "handed over",
+    "cross": "halted or closed off",
+}
+
+
+@dataclass(frozen=True, slots=True)
+class Outline:
+    """A watershed as the map shows it; its rings as GeoJSON gives them."""
+
+    code: str
+    name: str
+    rings: tuple[tuple[Position, ...], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Spot:
+    """A site on the map."""
+
+    code: str
+    name: str
+    position: Position
+    stage: str
+
+
+@dataclass(frozen=True, slots=True)
+class Form:
+    """One of the two sheets: sizes in millimetres."""
+
+    width_mm: float
+    most_mm: float
+    text_mm: float
+    small_mm: float
+    step_mm: float
+    css: str
+
+
+WIDE: Final = Form(180.0, 110.0, TEXT_MM, SMALL_MM, 3.4, "dw-wide")
+NARROW: Final = Form(97.0, 97.0, PHONE_TEXT_MM, PHONE_SMALL_MM, 4.2, "dw-narrow")
+
+
+def mark_of(stage: str) -> str:
+    """Give the shape of a stage: one of the keys of WORDS."""
+    if stage in BESIDE_IT:
+        return "cross"
+    order = list(ON_THE_LINE)
+    place = order.index(stage)
+    if place >= order.index(FIRST_STANDING):
+        return "full circle"
+    if place >= order.index(FIRST_BUILT):
+        return "full square"
+    return "open square" if place >= order.index(FIRST_ON_PAPER) else "open circle"
+
+
+def draw_map(
+    outlines: Sequence[Outline], spots: Sequence[Spot], *, name: str = "map", narrow: bool = False
+) -> str:
+    """Draw outlines and sites as SVG markup for a page.
+
+    Source: azimuthal equidistant projection about the middle of what is shown (Snyder 1987, 25).
+
+    Parameters
+    ----------
+    outlines, spots
+        What to show, at least one of either.
+    name
+        Keeps ids apart on one page.
+    narrow
+        The telephone's sheet.
+
+    Raises
+    ------
+    ValueError
+        If there is nothing to show.
+    """
+    positions = [spot.position for spot in spots]
+    positions += [place for one in outlines for ring in one.rings for place in ring]
+    if not positions:
+        raise ValueError("a map shows an outline or a site")
+    form = NARROW if narrow else WIDE
+    lons, lats = zip(*positions, strict=True)
+    origin = ((min(lons) + max(lons)) / 2.0, (min(lats) + max(lats)) / 2.0)
+    on_paper = _Paper(form, on_grid(positions, origin), origin)
+    sheet = Sheet(name, form.width_mm, "Map of sites", _describe(outlines, spots), form.css)
+    places = Places(Box(0.0, 0.0, form.width_mm, on_paper.foot_mm), form.text_mm, form.step_mm)
+    for outline in outlines:
+        for ring in outline.rings:
+            sheet.area(on_paper.points(ring), "gap-wash p3")
+    _spots(sheet, places, on_paper.points([spot.position for spot in spots]), spots)
+    for outline in outlines:
+        _name_outline(sheet, places, on_paper, outline)
+    sheet.height_mm = _foot(sheet, on_paper, spots)
+    return sheet.markup()
+
+
+class _Paper:
+    """Where a position lies on the sheet."""
+
+    def __init__(self, form: Form, grid: list[tuple[float, float]], origin: Position) -> None:
+        east, north = zip(*grid, strict=True)
+        self.form, self.origin = form, origin
+        self.middle = ((min(east) + max(east)) / 2.0, (min(north) + max(north)) / 2.0)
+        span = (
+            max(max(east) - min(east), LEAST_SPAN_M),
+            max(max(north) - min(north), LEAST_SPAN_M),
+        )
+        inner = (form.width_mm - 2.0 * EDGE_MM, form.most_mm - 2.0 * EDGE_MM)
+        self.mm_per_m = min(inner[0] / span[0], inner[1] / span[1])
+        self.foot_mm = span[1] * self.mm_per_m + 2.0 * EDGE_MM
+
+    def points(self, positions: Sequence[Position]) -> list[Point]:
+        """Places of positions, in millimetres."""
+        return (
+            [
+                (
+                    self.form.width_mm / 2.0 + (east - self.middle[0]) * self.mm_per_m,
+                    self.foot_mm / 2.0 - (north - self.middle[1]) * self.mm_per_m,
+                )
+                for east, north in on_grid(positions, self.origin)
+            ]
+            if positions
+            else []
+        )
+
+
+def _spots(sheet: Sheet, places: Places, at: list[Point], spots: Sequence[Spot]) -> None:
+    for (x, y), spot in zip(at, spots, strict=True):
+        _mark(sheet, (x, y), mark_of(spot.stage))
+        places.take(Box(x - MARK_MM, y - MARK_MM, x + MARK_MM, y + MARK_MM))
+    for (x, y), spot in zip(at, spots, strict=True):
+        label = places.put(
+            Label(x + dx, y + dy, (spot.code,), anchor, strong=True)
+            for dx, dy, anchor in (
+                (2.6, 0.9, "start"),
+                (-2.6, 0.9, "end"),
+                (0.0, -2.6, "mid"),
+                (0.0, 4.6, "mid"),
+                (2.6, -2.2, "start"),
+                (2.6, 4.2, "start"),
+                (-2.6, -2.2, "end"),
+                (-2.6, 4.2, "end"),
+            )
+        )
+        if label is not None:
+            ends = {"start": "", "mid": " mid", "end": " end"}[label.anchor]
+            sheet.text((label.x, label.y), spot.code, f"halo strong{ends}")
+
+
+def _name_outline(sheet: Sheet, places: Places, paper: _Paper, outline: Outline) -> None:
+    """Write the name where there is room inside the outline's box, from its middle outwards."""
+    xs, ys = zip(*paper.points(outline.rings[0]), strict=True)
+    left, right, top, bottom = min(xs), max(xs), min(ys), max(ys)
+    shares = (0.5, 0.35, 0.65, 0.2, 0.8)
+    label = places.put(
+        Label(left + u * (right - left), top + v * (bottom - top), (words,), "mid")
+        for words in (f"{outline.name} {outline.code}".strip(), outline.code)
+        for v in shares
+        for u in shares
+    )
+    if label is not None:
+        sheet.text((label.x, label.y), label.lines[0], "halo quiet mid")
+
+
+def _mark(sheet: Sheet, centre: Point, kind: str) -> None:
+    x, y = centre
+    if kind == "cross":
+        sheet.line((x - MARK_MM, y - MARK_MM), (x + MARK_MM, y + MARK_MM), "p5")
+        sheet.line((x - MARK_MM, y + MARK_MM), (x + MARK_MM, y - MARK_MM), "p5")
+        return
+    css = "p3 fill-ink" if kind.startswith("full") else "p3 fill-paper"
+    if kind.endswith("circle"):
+        sheet.circle(centre, MARK_MM, css)
+    else:
+        sheet.rect((x - MARK_MM, y - MARK_MM), 2.0 * MARK_MM, 2.0 * MARK_MM, css)
+
+
+def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot]) -> float:
+    """Draw scale bar, north and the key below the map; gives the height of the sheet."""
+    form, y = paper.form, paper.foot_mm + 3.0
+    bar_m = round_step(BAR_SHARE * form.width_mm / paper.mm_per_m)
+    stop = EDGE_MM + bar_m * paper.mm_per_m
+    sheet.rect((EDGE_MM, y), stop - EDGE_MM, 1.4, "staff staff-on")
+    words = f"{bar_m / KM_M:g} km" if bar_m >= KM_M else f"{bar_m:g} m"
+    sheet.text((stop + 1.5, y + 1.6), words, "small")
+    x = stop + 6.0 + width_mm(words, form.small_mm)
+    sheet.area(
+        [(x, y + 2.2), (x + 1.1, y - 2.2), (x + 2.2, y + 2.2), (x + 1.1, y + 1.2)], "fill-ink"
+    )
+    sheet.text((x + 3.4, y + 1.6), "north", "small")
+    shown = [kind for kind in WORDS if any(mark_of(spot.stage) == kind for spot in spots)]
+    x, y = EDGE_MM + MARK_MM, y + 6.5
+    for kind in shown:
+        wide = 2.0 * MARK_MM + 6.0 + width_mm(WORDS[kind], form.small_mm)
+        if x + wide > form.width_mm and x > EDGE_MM + MARK_MM:
+            x, y = EDGE_MM + MARK_MM, y + form.step_mm + 1.0
+        _mark(sheet, (x, y), kind)
+        sheet.text((x + 2.8, y + 0.9), WORDS[kind], "small")
+        x += wide
+    return y + 3.0
+
+
+def _describe(outlines: Sequence[Outline], spots: Sequence[Spot]) -> str:
+    names = ", ".join(f"{spot.code} ({WORDS[mark_of(spot.stage)]})" for spot in spots)
+    sheds = ", ".join(f"{one.name} {one.code}".strip() for one in outlines)
+    parts = [f"Outlines: {sheds}." if sheds else "", f"Sites: {names}." if names else "No site."]
+    return " ".join(part for part in parts if part)

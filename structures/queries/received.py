@@ -1,0 +1,23 @@
+"""Files received, as far as their reader may know what stands in them."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from django.db.models import Q
+
+from structures import access
+from structures.access import Act
+from structures.models import Upload
+from structures.queries.uploads import visible_uploads
+
+if TYPE_CHECKING:
+    from django.db.models import QuerySet
+
+    from structures.models import User
+
+
+def received_files(user: User) -> QuerySet[Upload]:
+    """Files the user may see; those of rates only where they may see money."""
+    priced = Q(district__in=access.districts(user, Act.SEE_MONEY))
+    return visible_uploads(user).filter(~Q(kind=Upload.Kind.RATES) | priced)

@@ -1,0 +1,43 @@
+"""Numbers as they are typed on a page: by the rules of files, and with a decimal comma."""
+
+from __future__ import annotations
+
+import re
+from typing import Final
+
+from django import forms
+
+from structures.intake.fields import Field
+from structures.intake.tree import Ledger, Node
+from structures.intake.values import read_value
+
+# Three digits behind one comma may be thousands: such a number stays as it is and is asked about.
+DECIMAL_COMMA: Final = re.compile(r"\s*([+-]?\d+),(\d{1,2}|\d{4,})\s*")
+
+
+def with_point(text: str) -> str:
+    """Give a number with a plain decimal comma its point; any other text stays."""
+    matched = DECIMAL_COMMA.fullmatch(text)
+    return f"{matched[1]}.{matched[2]}" if matched else text
+
+
+class NumberField(forms.CharField):
+    """A number that may be left blank, with the range that is accepted."""
+
+    def __init__(self, *, low=None, high=None, **kwargs):
+        widget = forms.TextInput(attrs={"class": "figure", "inputmode": "decimal"})
+        super().__init__(required=False, widget=widget, **kwargs)
+        self.low, self.high = low, high
+
+    def clean(self, value):
+        text = with_point(super().clean(value))
+        if not text.strip():
+            return None
+        ledger = Ledger()
+        field = Field("number", str(self.label), low=self.low, high=self.high)
+        read = read_value(Node(text, "", "number", tabular=True), field, ledger)
+        # That digits of another script were read is told in files; here the number is shown back.
+        wrong = [one for one in ledger.findings if one.level == "block"]
+        if wrong:
+            raise forms.ValidationError(f"{wrong[0].what} {wrong[0].remedy}".strip())
+        return read

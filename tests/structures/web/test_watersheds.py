@@ -1,0 +1,134 @@
+"""Watersheds, files and entry from a file in the browser."""
+
+from __future__ import annotations
+
+import json
+
+import pytest
+from django.core.files.uploadedfile import SimpleUploadedFile
+
+from structures.models import LongProfilePoint, Role, Site, Upload, Watershed
+from tests import factories as make
+
+pytestmark = pytest.mark.django_db
+SITES = b"code,watershed,lat,lon,downstream_users\nOD-1,OD,15.75,77.45,none\nOD-2,OD,15.76,77.46,\n"
+PROFILE = b"code,distance_upstream_m,bed_level_m\nEX-A,-120,99.1\nEX-A,0,99.5\nEX-A,130,100.2\n"
+
+
+@pytest.fixture(autouse=True)
+def _own_files(settings, tmp_path):
+    settings.MEDIA_ROOT = tmp_path
+
+
+@pytest.fixture
+def site():
+    return make.a_site()
+
+
+@pytest.fixture
+def office(client, site):
+    client.force_login(make.an_engineer(site.watershed.district))
+    return client
+
+
+def words(answer):
+    return " ".join(answer.content.decode().split())
+
+
+def hand_in(client, kind, data, name="list.csv", district="QU"):
+    file = SimpleUploadedFile(name, data)
+    return client.post("/entry/", {"kind": kind, "district": district, "file": file})
+
+
+def keep(client, page):
+    return client.post("/entry/", {"looked_at": page.context["looked_at"]})
+
+
+def test_a_list_of_sites_is_shown_back_before_it_is_kept(office):
+    page = hand_in(office, "sites", SITES)
+    assert page.status_code == 200
+    assert "2 rows." in words(page)
+    assert "Who uses water below OD-2 is blank." in words(page)
+    assert (Site.objects.count(), Upload.objects.count()) == (1, 0)
+    assert keep(office, page).url == "/sites/"
+    assert set(Site.objects.values_list("code", flat=True)) == {"EX-A", "OD-1", "OD-2"}
+    assert Upload.objects.get().outcome == "kept"
+
+
+def test_a_wrong_list_is_refused_whole_with_every_line(office):
+    page = hand_in(office, "sites", SITES + b"OD-3,OD,95,77.4,\nEX-A,OD,15.7,77.4,\n")
+    assert page.status_code == 422
+    for said in ("line 4", "line 5", "EX-A is the ford already"):
+        assert said in words(page)
+    assert Site.objects.count() == 1
+
+
+def test_outlines_and_bed_points_come_in_by_the_same_door(office, site):
+    ring = [[x + 0.2, y] for x, y in make.SQUARE]
+    feature = {
+        "type": "Feature",
+        "properties": {"code": "TA", "name": "Tavrikond", "stream": "Tavri"},
+        "geometry": {"type": "Polygon", "coordinates": [ring]},
+    }
+    page = hand_in(office, "watersheds", json.dumps(feature).encode(), "outlines.geojson")
+    assert keep(office, page).url == "/watersheds/"
+    assert Watershed.objects.get(code="TA").area_km2 > 0
+    keep(office, hand_in(office, "profiles", PROFILE))
+    assert LongProfilePoint.objects.count() == 3
+    page = words(office.get("/watersheds/OD/"))
+    for said in ("Bed along Odremma", ">EX-A</text>", "100.20"):
+        assert said in page
+
+
+def test_a_kind_that_a_role_may_not_enter_is_not_offered(client, site):
+    client.force_login(make.a_user(Role.FIELD, site.watershed.district))
+    page = words(client.get("/entry/"))
+    assert 'value="sites"' in page
+    assert 'value="watersheds"' not in page
+    assert hand_in(client, "watersheds", b"{}", "x.geojson").status_code == 422
+    client.force_login(make.a_user(Role.AUDITOR, site.watershed.district))
+    assert '<form method="post" enctype' not in words(client.get("/entry/"))
+
+
+def test_a_look_at_a_list_serves_its_own_hand_only(client, office, site):
+    page = hand_in(office, "sites", SITES)
+    client.force_login(make.an_engineer(site.watershed.district))
+    assert keep(client, page).status_code == 404
+    assert Site.objects.count() == 1
+
+
+def test_watersheds_are_listed_with_their_sites(office):
+    page = words(office.get("/watersheds/"))
+    assert "/watersheds/OD/" in page
+    page = words(office.get("/watersheds/OD/"))
+    assert "No bed was levelled along a stream." in page
+    assert page.count('class="dw dw-wide"') == 1
+
+
+def test_another_district_sees_neither_watershed_nor_file(client, office, site):
+    keep(office, hand_in(office, "sites", SITES))
+    upload = Upload.objects.get()
+    assert words(office.get("/files/")).count("list.csv") == 1
+    client.force_login(make.an_engineer(make.a_district("ZZ", name="elsewhere")))
+    for path in ("/watersheds/OD/", f"/files/{upload.pk}/"):
+        answer = client.get(path)
+        assert answer.status_code == 404
+        assert "Odremma" not in words(answer)
+    assert "list.csv" not in words(client.get("/files/"))
+
+
+def test_a_file_says_what_became_of_it(office):
+    keep(office, hand_in(office, "sites", SITES))
+    page = words(office.get(f"/files/{Upload.objects.get().pk}/"))
+    for said in ("list of sites", "Who uses water below OD-2", Upload.objects.get().sha256):
+        assert said in page
+
+
+def test_field_people_see_no_file_of_rates(client, site):
+    district = site.watershed.district
+    make.a_schedule(district, make.an_engineer(district))
+    upload = Upload.objects.get(kind="rates")
+    client.force_login(make.a_user(Role.FIELD, district))
+    assert client.get(f"/files/{upload.pk}/").status_code == 404
+    client.force_login(make.a_user(Role.AUDITOR, district))
+    assert client.get(f"/files/{upload.pk}/").status_code == 200
