@@ -4,7 +4,18 @@ from __future__ import annotations
 
 from django.urls import path
 
-from structures.web import accounts, guide, people, settings
+from structures.web import (
+    accounts,
+    entry,
+    files,
+    guide,
+    people,
+    runs,
+    settings,
+    sites,
+    surveys,
+    watersheds,
+)
 
 app_name = "structures"
 
@@ -26,4 +37,29 @@ urlpatterns = [
     path("districts/new/", settings.new_district, name="new-district"),
     path("districts/<str:code>/", settings.district, name="district"),
     path("help/", guide.guide, name="help"),
+    path("sites/", sites.sites, name="sites"),
+    path("sites/<str:code>/", sites.site, name="site"),
+    path("sites/<str:code>/edit/", sites.edit, name="site-edit"),
+    path("sites/<str:code>/rock/", sites.rock, name="rock"),
+    path("sites/<str:code>/try/", sites.try_other_wall, name="try"),
+    path("sites/<str:code>/surveys/new/", surveys.new_survey, name="new-survey"),
+    path("sites/<str:code>/surveys/<int:version>/", surveys.survey, name="survey"),
+    path(
+        "sites/<str:code>/surveys/<int:version>/against/<int:other>/",
+        surveys.against,
+        name="survey-against",
+    ),
+    path(
+        "sites/<str:code>/surveys/<int:version>/soundings/<int:order>/",
+        surveys.sounding,
+        name="sounding",
+    ),
+    path("watersheds/", watersheds.watersheds, name="watersheds"),
+    path("watersheds/<str:code>/", watersheds.watershed, name="watershed"),
+    path("entry/", entry.entry, name="entry"),
+    path("files/", files.files, name="files"),
+    path("files/<int:file_id>/", files.file, name="file"),
+    path("runs/", runs.runs, name="runs"),
+    path("runs/<uuid:run_id>/", runs.run, name="run"),
+    path("runs/<uuid:run_id>/cancel/", runs.cancel, name="cancel-run"),
 ]

@@ -1,0 +1,60 @@
+"""The map: true places, shapes by stage, labels that never touch."""
+
+from __future__ import annotations
+
+import re
+
+import pytest
+
+from structures.drawing.map import WORDS, Outline, Spot, draw_map, mark_of
+from structures.ground.place import distance_m
+from structures.life.stages import STAGES
+
+SQUARE = ((77.4, 15.7), (77.5, 15.7), (77.5, 15.8), (77.4, 15.8), (77.4, 15.7))
+SHED = Outline("OD", "Odremma", (SQUARE,))
+WEST, EAST = (77.41, 15.75), (77.49, 15.75)
+
+
+def circles(markup):
+    found = re.findall(r'<circle class="p3 fill-paper" cx="([\d.]+)" cy="([\d.]+)"', markup)
+    return [(float(x), float(y)) for x, y in found]
+
+
+def test_distances_on_the_map_are_those_of_the_scale_bar():
+    """Oracle: geodesic on the ellipsoid (general library); 1 in 1000 for two decimals of a mm."""
+    markup = draw_map([SHED], [Spot("A", "", WEST, "noted"), Spot("B", "", EAST, "noted")])
+    (x1, y1), (x2, y2), *_ = circles(markup)
+    bar_mm = float(re.search(r'class="staff staff-on".*? width="([\d.]+)"', markup)[1])
+    bar_km = float(re.search(r">([\d.]+) km<", markup)[1])
+    drawn_km = ((x2 - x1) ** 2 + (y2 - y1) ** 2) ** 0.5 / bar_mm * bar_km
+    assert drawn_km == pytest.approx(distance_m(WEST, EAST) / 1000.0, rel=1e-3)
+    assert x1 < x2
+
+
+def test_north_is_up():
+    markup = draw_map(
+        [], [Spot("A", "", (77.4, 15.7), "noted"), Spot("B", "", (77.4, 15.8), "noted")]
+    )
+    (_, south), (_, north), *_ = circles(markup)
+    assert north < south
+
+
+def test_every_stage_has_a_shape_that_the_key_explains():
+    assert {mark_of(stage) for stage in STAGES} == set(WORDS)
+    assert mark_of("noted") == "open circle"
+    assert mark_of("drawn") == "open square"
+    assert mark_of("digging") == "full square"
+    assert mark_of("judged") == "full circle"
+    assert mark_of("closed-off") == "cross"
+
+
+@pytest.mark.parametrize("narrow", [False, True])
+def test_words_are_escaped_and_a_lone_site_is_drawn(narrow):
+    markup = draw_map([], [Spot("A<B", "x", WEST, "noted")], narrow=narrow)
+    assert "A&lt;B" in markup
+    assert "A<B" not in markup
+
+
+def test_a_map_of_nothing_is_a_wrong_call():
+    with pytest.raises(ValueError, match="outline or a site"):
+        draw_map([], [])
