@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Final
 
 from django.contrib.auth.password_validation import validate_password
 from django.core.exceptions import ValidationError
-from django.db import transaction
+from django.db import IntegrityError, transaction
 from django.db.models import F, Q
 from django.utils import timezone
 from django.utils.crypto import constant_time_compare, salted_hmac
@@ -236,6 +236,15 @@ def _new_user(login: str) -> User:
     except ValidationError as error:
         words = error.message_dict.get("username", error.messages)[0]
         raise Refused(words, where="login", remedy="Take another login.") from error
+    try:
+        with transaction.atomic():
+            user.save()
+    except IntegrityError as error:
+        raise Refused(
+            f"{login} was invited at this very moment by somebody else.",
+            where="login",
+            remedy="Invite again if another word is needed.",
+        ) from error
     return user
 
 
