@@ -11,7 +11,8 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Final
 
 from costing.price.abstract import make_abstract
-from costing.risk import price_draws
+from costing.price.rates import BY_LIFTS
+from costing.risk import price_draws, unpriced
 from structures.errors import LEVELS
 from structures.ground.refraction import interpret_refraction
 from structures.ground.rock import estimate_rock
@@ -69,7 +70,7 @@ class Appraisal:
     """All that follows from one survey and one rate schedule; None is "not known", never zero.
 
     `design` is None where no rock line is known, `estimate` where none or no schedule is there,
-    `spread` where nothing varies or the estimate is incomplete (`spread_note` says which).
+    `spread` where nothing varies or nothing is priced (`spread_note` says why).
     """
 
     pack: SurveyPack
@@ -102,12 +103,19 @@ class Appraisal:
             return ""
         if self.spread is not None:
             return self.spread.why
-        return NO_SPREAD if self.rock.source == "given" else NO_PRICE
+        return NO_SPREAD
 
     @property
     def digest(self) -> str:
-        """SHA-256 of inputs and method: the same digest means the same figures."""
-        inputs = (self.method, repr(self.pack), repr(self.schedule), self.on.isoformat())
+        """SHA-256 of inputs, chance and method: the same digest means the same figures."""
+        lines = self.rock.draws_m
+        inputs = (
+            self.method,
+            repr(self.pack),
+            repr(self.schedule),
+            self.on.isoformat(),
+            f"{0 if lines is None else len(lines)} draws, seed {self.rock.seed}",
+        )
         return hashlib.sha256("\n".join(inputs).encode()).hexdigest()
 
 
@@ -146,8 +154,8 @@ def appraise(
     estimate = spread = None
     if design is not None and schedule is not None:
         estimate = make_abstract(design.quantities, schedule)
-        if estimate.complete and rock.draws_m is not None:
-            spread = _spread(pack, rock, schedule, seed=seed)
+        if rock.draws_m is not None:
+            spread = _spread(pack, rock, schedule if estimate.complete else None, seed=seed)
     water = judge_water(pack, rock, None if design is None else design.cutoff)
     silent = Appraisal(
         pack, schedule, on, soundings, refraction, rock, design, estimate, spread, water, ()
@@ -169,9 +177,16 @@ def _design(pack: SurveyPack, rock: RockLine) -> Design:
     )
 
 
-def _spread(pack: SurveyPack, rock: RockLine, schedule: RateSchedule, *, seed: int) -> Spread:
-    """Price every whole-line draw of the rock at the same rates (handbook 8.9 and 8.10)."""
+def _spread(
+    pack: SurveyPack, rock: RockLine, schedule: RateSchedule | None, *, seed: int
+) -> Spread:
+    """Price every whole-line draw of the rock at the same rates (handbook 8.9 and 8.10).
+
+    Without a schedule that prices all of it only the share of open flanks is told.
+    """
     cutoff = cut(make_section(pack.ground, pack.toes, rock.offset_m, rock.draws_m, pack.wall))
+    if schedule is None:
+        return unpriced(cutoff.ends, seed=seed, why=NO_PRICE)
     pumping = plan_pumping(cutoff, pack.ground_water, pack.works)
     return price_draws(measure(cutoff, pack.wall), pumping, cutoff.ends, schedule, seed=seed)
 
@@ -179,10 +194,16 @@ def _spread(pack: SurveyPack, rock: RockLine, schedule: RateSchedule, *, seed: i
 def _cautions(found: Appraisal) -> Iterable[Caution]:
     """Collect what every room has to say, and what the works ask for."""
     yield from found.rock.cautions
+    if found.rock.source == "given":
+        yield caution("rock-line-settled")
     if found.design is not None:
         yield from wall_cautions(found.design.wall, found.pack.wall, found.pack.works)
+        if found.design.pumping.hours is None:
+            yield caution("dewatering-not-known", why=found.design.pumping.why)
     if found.estimate is not None:
         yield from _estimate_cautions(found)
+    elif found.design is not None:
+        yield caution("rates-not-given")
     yield from found.water.cautions
     doubts = found.pack.findings + (() if found.schedule is None else found.schedule.findings)
     for finding in doubts:
@@ -190,7 +211,7 @@ def _cautions(found: Appraisal) -> Iterable[Caution]:
     if found.soundings or found.refraction:
         yield caution("geophysics")
     if found.design is not None and found.design.wall.length_m > 0.0:
-        yield from _works_cautions(found.pack, found.design.wall)
+        yield from _works_cautions(found.pack, found.design)
     yield caution("downstream")
     yield caution("raw-water")
 
@@ -204,6 +225,7 @@ def _estimate_cautions(found: Appraisal) -> Iterable[Caution]:
     ]
     if lacking:
         yield caution("estimate-incomplete", lines=", ".join(lacking))
+    yield from _unused_lifts(found)
     schedule = found.schedule
     if schedule.ended(found.on):
         yield caution(
@@ -211,11 +233,28 @@ def _estimate_cautions(found: Appraisal) -> Iterable[Caution]:
         )
 
 
-def _works_cautions(pack: SurveyPack, wall: Wall) -> Iterable[Caution]:
+def _unused_lifts(found: Appraisal) -> Iterable[Caution]:
+    """Doubt a schedule whose lifts are not those of the trench: some rates would fall away."""
+    limits = found.design.takings.limits_m.tolist()
+    begins = limits[:-1]
+    lifts = [one.from_m for one in found.schedule.rates_of(BY_LIFTS) if one.from_m is not None]
+    unused = sorted(from_m for from_m in lifts if from_m < limits[-1] and from_m not in begins)
+    if unused:
+        yield caution(
+            "rates-lift-unused",
+            lifts=", ".join(f"{from_m:g}" for from_m in unused),
+            begins=", ".join(f"{from_m:g}" for from_m in begins),
+        )
+
+
+def _works_cautions(pack: SurveyPack, design: Design) -> Iterable[Caution]:
     yield caution("trench-collapse")
-    yield caution("edge", distance_m=spoil_distance_m(wall.greatest_depth_to_key_m))
+    yield caution("edge", distance_m=spoil_distance_m(design.wall.greatest_depth_to_key_m))
     if pack.works.pump_hours != 0:
         yield caution("pumping")
+        reach_m = 0.0 if design.pumping.inflow is None else float(design.pumping.inflow.reach_m[0])
+        if reach_m > 0.0:
+            yield caution("neighbours", reach_m=reach_m)
         yield caution("uplift")
     yield caution("flood")
 

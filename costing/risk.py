@@ -88,13 +88,10 @@ def price_draws(
     """
     if pumping.hours is None:
         raise ValueError("without pump hours no draw has a total")
-    closed = ends.closed_left & ends.closed_right
-    open_share = float(np.count_nonzero(~closed)) / takings.draws
     begins_m = takings.limits_m[:-1]
     why = _lifts_without_rate(begins_m, takings.excavation_m3, schedule)
     if why:
-        nothing = (None,) * 6
-        return Spread(*nothing, takings.draws, seed, open_share, why)
+        return unpriced(ends, seed=seed, why=why)
     by_item = {**takings.by_item, "dewatering": pumping.hours}
     totals = total_cents(by_item, takings.excavation_m3, begins_m, schedule, step=step)
     percents = (10, 50, 90)
@@ -103,8 +100,18 @@ def price_draws(
         *(_money(standard_error(totals, percent)) for percent in percents),
         takings.draws,
         seed,
-        open_share,
+        open_flank_share(ends),
     )
+
+
+def unpriced(ends: Ends, *, seed: int, why: str) -> Spread:
+    """Spread of draws that cannot be priced: the share of open flanks alone, and why."""
+    return Spread(*(None,) * 6, ends.left_m.size, seed, open_flank_share(ends), why)
+
+
+def open_flank_share(ends: Ends) -> float:
+    """Share of draws in which a flank opens, 0 to 1. Source: handbook 8.10."""
+    return float(np.mean(~(ends.closed_left & ends.closed_right)))
 
 
 def total_cents(

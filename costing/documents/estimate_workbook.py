@@ -13,12 +13,13 @@ from typing import TYPE_CHECKING, Final
 
 from openpyxl.utils import get_column_letter
 
-from costing.documents.screen import NOT_KNOWN, WATER_ROWS, WORDS
+from costing.documents.screen import NOT_KNOWN, WATER_ROWS
 from costing.documents.wording import answer, day_words, item_words, rests_on, unit_words
+from costing.price.abstract import NOT_INCLUDED
 from costing.price.money import HUNDRED, measured
 from structures.documents.workbook import Book, Formula
 from structures.intake.defaults import MONEY
-from structures.life.cautions import CLOSING_SENTENCE
+from structures.life.cautions import CLOSING_SENTENCE, WORDS
 
 if TYPE_CHECKING:
     from costing.appraisal import Appraisal
@@ -108,6 +109,7 @@ def _abstract(leaf: Leaf, found: Appraisal, name: str) -> None:
     if state:
         leaf.say(state, bold=True)
     _spread(leaf, found)
+    leaf.say(NOT_INCLUDED)
     leaf.say(rests_on(found))
 
 

@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
 from costing.documents.drawings import appraised_section, appraised_soundings
-from costing.documents.screen import NOT_KNOWN, SOURCES, WALL_ROWS, WATER_ROWS, WORDS
+from costing.documents.screen import NOT_KNOWN, SOURCES, WALL_ROWS, WATER_ROWS
 from costing.documents.wording import (
     amount_words,
     answer,
@@ -16,12 +16,13 @@ from costing.documents.wording import (
     rests_on,
     unit_words,
 )
+from costing.price.abstract import NOT_INCLUDED
 from costing.price.money import measured, money_text
 from structures.documents.press import press
 from structures.documents.sounding_result import depth_lines, sounding_json
 from structures.drawing.numbers import section_numbers
 from structures.drawing.section import describe, draw_section
-from structures.life.cautions import CLOSING_SENTENCE
+from structures.life.cautions import CLOSING_SENTENCE, WORDS
 
 if TYPE_CHECKING:
     from decimal import Decimal
@@ -187,7 +188,9 @@ def _estimate(found: Appraisal) -> dict[str, Any]:
         "head": ("item", "quantity", "unit", "rate", f"amount {estimate.currency}"),
         "lines": lines,
         "bold": [first_sum, first_sum + 3, first_sum + 4],
-        "note": " ".join(part for part in (_spread_words(found), _open_words(found)) if part),
+        "note": " ".join(
+            part for part in (_spread_words(found), _open_words(found), NOT_INCLUDED) if part
+        ),
     }
 
 
@@ -229,6 +232,7 @@ def _soundings(found: Appraisal) -> list[dict[str, str]]:
             "name": f"sounding-{place}.svg",
             "words": f"Sounding {one.label}",
             "text": " ".join(depth_lines(sounding_json(one))),
+            "prior": " ".join(() if one.prior is None else one.prior.sentences()),
         }
         for place, one in enumerate(found.soundings, 1)
     ]

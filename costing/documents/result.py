@@ -9,8 +9,9 @@ from __future__ import annotations
 from dataclasses import asdict
 from typing import TYPE_CHECKING, Any, Final
 
+from costing.price.abstract import NOT_INCLUDED
 from costing.price.money import money_text
-from structures.documents.sounding_result import sounding_json
+from structures.documents.sounding_result import refusal_json, sounding_json
 
 if TYPE_CHECKING:
     from decimal import Decimal
@@ -87,7 +88,7 @@ def _line(rock: RockLine) -> list[dict[str, float | None]]:
 
 
 def _refraction(read: RefractionReading) -> dict[str, Any]:
-    return asdict(read)
+    return asdict(read) | {"refusal": refusal_json(read.refusal)}
 
 
 def _wall(wall: Wall) -> dict[str, Any]:
@@ -125,6 +126,7 @@ def _estimate(estimate: Abstract, appraisal: Appraisal) -> dict[str, Any]:
         **{key: _money(getattr(estimate, key)) for key in SUMS},
         **_spread(appraisal.spread),
         "spread_note": appraisal.spread_note,
+        "not_included": NOT_INCLUDED,
     }
 
 

@@ -6,11 +6,10 @@ from textwrap import wrap
 from typing import Any, Final
 
 from structures.documents.sounding_result import depth_lines
-from structures.life.cautions import CLOSING_SENTENCE
+from structures.life.cautions import CLOSING_SENTENCE, WORDS
 
 WIDTH: Final = 88  # characters a line; fits a terminal of 90 and a page of 10 pt letters
 NOT_KNOWN: Final = "not known"
-WORDS: Final = {"block": "BLOCK", "hold": "HOLD", "warn": "CARE", "note": "NOTE"}
 SOURCES: Final = {
     "given": "settled by an engineer, used as given; it carries no range here",
     "estimated": "estimated from the tests; 10 % and 90 % points beside it",
@@ -57,7 +56,7 @@ def screen_text(
         _rock(result["rock"]),
         _wall(result["wall"]),
         _quantities(result["quantities"], result["estimate"]),
-        _money(result["estimate"]),
+        _money(result["estimate"], known=result["wall"] is not None),
         _water(result["water"]),
         [CLOSING_SENTENCE],
     ]
@@ -81,11 +80,12 @@ def _rock(rock: dict[str, Any]) -> list[str]:
         f" {_number(point['low_m'], 2, '-'):>9} {_number(point['high_m'], 2, '-'):>9}"
         for point in rock["line"]
     ]
-    for sounding in rock["soundings"]:
-        first, *rest = depth_lines(sounding)
-        lines += [
-            f"  sounding {sounding['label']} at {_number(sounding['offset_m'], 1)} m: {first}"
-        ]
+    for kind, read in (
+        *(("sounding", one) for one in rock["soundings"]),
+        *(("refraction", one) for one in rock["refraction"]),
+    ):
+        first, *rest = depth_lines(read)
+        lines.append(f"  {kind} {read['label']} at {_number(read['offset_m'], 1)} m: {first}")
         lines += [f"    {line}" for line in rest]
     return lines
 
@@ -114,9 +114,9 @@ def _quantities(quantities: list[dict] | None, estimate: dict | None) -> list[st
     return ["QUANTITIES", *rows]
 
 
-def _money(estimate: dict[str, Any] | None) -> list[str]:
+def _money(estimate: dict[str, Any] | None, *, known: bool) -> list[str]:
     if estimate is None:
-        return ["ESTIMATE: no rate schedule was given" if estimate is None else ""]
+        return ["ESTIMATE: no rate schedule was given" if known else f"ESTIMATE: {NOT_KNOWN}"]
     state = "" if estimate["complete"] else ", INCOMPLETE"
     lines = [
         f"QUANTITIES AND ESTIMATE in {estimate['currency']}{state}",
@@ -135,22 +135,21 @@ def _money(estimate: dict[str, Any] | None) -> list[str]:
         ("for sanction, rounded up", "sanction"),
     )
     lines += [f"  {words:<60}{_known(estimate[key]):>16}" for words, key in sums]
-    return lines + _spread(estimate)
+    notes = [*_spread(estimate), estimate["not_included"]]
+    return lines + [f"  {line}" for note in notes for line in wrap(note, WIDTH - 2)]
 
 
 def _spread(estimate: dict[str, Any]) -> list[str]:
-    if estimate["total_p50"] is None:
-        return [
-            f"  {line}" for line in wrap(f"P10, P50, P90: {estimate['spread_note']}", WIDTH - 2)
-        ]
-    share = 100 * estimate["open_flank_share"]
-    return [
-        (
-            f"  total at P10 {estimate['total_p10']}, P50 {estimate['total_p50']},"
-            f" P90 {estimate['total_p90']}"
-        ),
-        f"  a flank opens in {share:.0f} of 100 draws of the rock line; their cost is a lower bound",
-    ]
+    low, middle, high = (estimate[f"total_p{percent}"] for percent in (10, 50, 90))
+    said = [f"P10, P50, P90: {estimate['spread_note']}"]
+    if middle is not None:
+        said = [f"total at P10 {low}, P50 {middle}, P90 {high}"]
+    if estimate["open_flank_share"] is None:
+        return said
+    share = (
+        f"a flank opens in {100 * estimate['open_flank_share']:.0f} of 100 draws of the rock line"
+    )
+    return [*said, share if middle is None else f"{share}; their cost is a lower bound"]
 
 
 def _water(water: dict[str, Any]) -> list[str]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from decimal import Decimal
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 
 from costing.price.money import line_amount, measured, percentage, sanction_figure
 from costing.price.rates import BY_LIFTS
@@ -16,6 +16,12 @@ if TYPE_CHECKING:
     from costing.price.contingency import ContingencyStep
     from costing.price.rates import RateSchedule
     from structures.takeoff.quantity import Quantity
+
+
+# What no line measures; it is stated on every estimate. Source: handbook 5.10.
+NOT_INCLUDED: Final = (
+    "Not in it: the end batters of the trench along the line, ramps, the step faces at the toes."
+)
 
 
 @dataclass(frozen=True, slots=True)

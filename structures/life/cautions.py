@@ -25,6 +25,12 @@ ALWAYS: Final = frozenset(
         "downstream",
     }
 )
+WORDS: Final[dict[Level, str]] = {  # of the levels, as they are printed
+    "block": "BLOCK",
+    "hold": "HOLD",
+    "warn": "CARE",
+    "note": "NOTE",
+}
 CLOSING_SENTENCE: Final = "Local codes and licensed practice decide; this sheet does not."
 
 
@@ -84,6 +90,13 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
         (
             "Range {range_m:.1f} m and sill {sill_m2:.2f} m2 of the rock line were fitted to {count} "
             "observations."
+        ),
+    ),
+    "rock-line-settled": (
+        "note",
+        (
+            "The rock line was settled by an engineer and is used as given: it carries no range, and "
+            "nothing varies in the price."
         ),
     ),
     "rock-line-above-test": (
@@ -184,7 +197,7 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     "default-changed": (
         "warn",
         (
-            "{words}: {value:g} {unit} instead of {default:g} (accepted {low:g} to {high:g}). A licensed "
+            "{words}: {value:g}{unit} instead of {default:g} (accepted {low:g} to {high:g}). A licensed "
             "engineer's name, licence number, date and reason are asked for."
         ),
     ),
@@ -192,8 +205,17 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
         "note",
         "{words} was not measured: {value:g} {unit} is taken ({source}).",
     ),
+    "dewatering-not-known": ("warn", "The quantity of dewatering is not known, {why}."),
     # money
     "estimate-incomplete": ("block", "The estimate is incomplete: {lines}."),
+    "rates-not-given": ("note", "No rate schedule was given: quantities stand alone, unpriced."),
+    "rates-lift-unused": (
+        "warn",
+        (
+            "The rates of excavation from {lifts} m serve no lift of this trench; its lifts begin at "
+            "{begins} m. Set wall.lift_m as the schedule has it, or give rates for these lifts."
+        ),
+    ),
     "rates-out-of-date": (
         "warn",
         "The rate schedule {schedule} ended on {ended}. Price again with this year's rates.",
@@ -215,6 +237,12 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
         "warn",
         "Pumping from inside the trench pulls sand from the sides: sump off the wall line. If the "
         "pump stops, people leave. Nearby wells and footings can suffer: tell their owners first. "
+        + CLOSING_SENTENCE,
+    ),
+    "neighbours": (
+        "warn",
+        "Pumping can draw the water down as far as {reach_m:.0f} m from the trench: it lowers wells "
+        "and can settle footings. List wells and buildings within it and tell the owners first. "
         + CLOSING_SENTENCE,
     ),
     "uplift": (

@@ -183,7 +183,7 @@ def _default_cautions(settings: WallSettings) -> list[Caution]:
             "default-changed",
             words=default.words.capitalize(),
             value=_value(settings, default.key),
-            unit=default.unit,
+            unit="" if default.unit == "-" else f" {default.unit}",
             default=default.value,
             low=default.low,
             high=default.high,

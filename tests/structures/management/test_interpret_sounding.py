@@ -53,6 +53,8 @@ def test_the_printed_model_comes_back(tmp_path, capsys):
     assert len(found["equivalent"]) > 1
     assert [one["observed_ohm_m"] for one in found["readings"]] == [row[2] for row in TABLE_2]
     assert found["prior"] is not None
+    assert found["chi_square_per_degree"] < 1e-6
+    assert [len(row) for row in found["covariance"]] == [5] * 5  # ln of 3 resistivities, 2 depths
 
 
 def test_the_text_gives_depth_range_and_misfit(tmp_path, capsys):
@@ -61,6 +63,9 @@ def test_the_text_gives_depth_range_and_misfit(tmp_path, capsys):
     assert "8 times in 10 between" in out
     assert "misfit 0.0 %" in out
     assert "Seed" in out
+    # Handbook 2.6 and 2.7: segment factors are reported, the prior is printed with the result.
+    assert "factor of the readings with MN/2 2.5 m: 1.000" in out
+    assert "in 85 % of the prior." in out
 
 
 def test_a_real_curve_whose_segments_disagree_is_refused_with_the_reason(tmp_path, capsys):

@@ -144,6 +144,12 @@ def test_rock_over_the_crest_but_under_the_bed_leaves_two_stubs():
     assert len(wall.bars) == 1
 
 
+def test_a_setting_without_a_unit_is_named_without_one():
+    wall = replace(example("A").wall, film_faces=1, changed=("film_faces",))
+    (_, faces) = cautions(replace(example("A"), wall=wall))
+    assert faces.text.startswith("Film faces: 1 instead of 2 (accepted 0 to 2).")
+
+
 def test_changed_engineering_defaults_are_named_with_value_default_and_range():
     """Oracle: handbook 12; the lift is the district's own, the others ask for an engineer."""
     case = example("A")
