@@ -101,7 +101,8 @@ def footing(board: Board, y: float, unnamed: int) -> float:
     x = frame.form.left_mm + SCALE_WORDS_MM
     lines = [(_scale_words(board), ""), (DATUM, "quiet")]
     if unnamed:
-        words = f"{unnamed} tests stand too close to be named here; the table names them all."
+        stand = "test stands" if unnamed == 1 else "tests stand"
+        words = f"{unnamed} {stand} too close to be named here; the table names them all."
         lines.append((words, "quiet"))
     for line, (words, css) in enumerate(lines):
         sheet.text((x, y + 1.2 + 3.6 * line), words, css)
