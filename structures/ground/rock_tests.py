@@ -21,7 +21,6 @@ UNTIED_SD: Final = (1.5, 0.25)  # [A, E] the same where no test ties it; handboo
 REFRACTION_SD: Final = (0.5, 0.10)  # [A, E] handbook 4.3
 THIN_WEATHERED_M: Final = 0.5  # [A] a thicker weathered layer unties soundings; handbook 2.11
 SAME_PLACE_M: Final = 0.5  # [A] a bore and a pit so near to each other are one place
-GIVES_LEVEL: Final = ("outcrop", "pit", "bore", "sounding", "refraction")
 GEOPHYSICS: Final = ("sounding", "refraction")
 
 
