@@ -16,7 +16,9 @@ def figure(value, places=2):
     """A number with fixed decimals in the reader's locale; None is "not known", never zero."""
     if value is None:
         return _("not known")
-    return number_format(value, places, use_l10n=True, force_grouping=True)
+    # Rounded here as drawing and report round it: the framework would cut digits off.
+    rounded = Decimal(f"{value:.{places}f}")
+    return number_format(rounded, places, use_l10n=True, force_grouping=True)
 
 
 @register.filter
