@@ -1,0 +1,12 @@
+"""The program's settings, with less patience: a test cannot wait a minute for a lost worker."""
+
+from __future__ import annotations
+
+from config.settings import *  # noqa: F403 -- the program's own, of which five are changed
+from config.settings import INSTALLED_APPS as SHIPPED
+
+INSTALLED_APPS = [*SHIPPED, "trial"]
+RUN_LEASE_SECONDS = 2
+RUN_RESEND_SECONDS = 2
+RUN_SWEEP_SECONDS = 0.5
+RUN_ATTEMPTS = 10  # a worker killed seven times over must not wear an unlucky run out
