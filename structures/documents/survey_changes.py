@@ -8,11 +8,11 @@ from typing import TYPE_CHECKING, Any, Final
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping
 
-# Tables of a pack whose rows lie at an offset, and those that have readings of their own.
+# Tables of a pack whose rows lie at an offset, and those that carry a name.
 AT_OFFSETS: Final = ("ground", "rock", "probes", "rock_line")
-WITH_READINGS: Final = {"soundings": "readings", "refraction": "picks"}
+LABELLED: Final = {"soundings": ("sounding", "readings"), "refraction": ("line", "picks")}
 RECORDS: Final = ("site", "toes", "ground_water", "wall", "works")
-ORDER: Final = (*RECORDS[:2], *AT_OFFSETS, *WITH_READINGS, *RECORDS[2:])
+ORDER: Final = (*RECORDS[:2], *AT_OFFSETS, *LABELLED, *RECORDS[2:])
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,7 +28,7 @@ class SurveyChange:
 def survey_changes(before: Mapping[str, Any], after: Mapping[str, Any]) -> tuple[SurveyChange, ...]:
     """Compare two surveys by their canonical documents.
 
-    Source: the tables of a survey pack; rows are matched by offset, or by their order.
+    Source: the tables of a survey pack; rows are matched by offset, or by their name.
 
     Parameters
     ----------
@@ -56,13 +56,13 @@ def _entries(document: Mapping[str, Any]) -> Iterator[tuple[tuple[str, str], str
             if seen[where] > 1:
                 where = f"{where} ({seen[where]})"
             yield (part, where), _row(row, ("offset_m", "method"))
-    for part, rows in WITH_READINGS.items():
-        for order, one in enumerate(document.get(part) or [], start=1):
+    for part, (name, rows) in LABELLED.items():
+        for one in document.get(part) or []:
             values = [_row(row, ()) for row in one[rows]]
             place = f"at {one['offset_m']:g} m"
-            yield (part, f"{order}"), f"{place}, {len(values)} {rows}"
+            yield (part, one[name]), f"{place}, {len(values)} {rows}"
             for number, value in enumerate(values, start=1):
-                yield (part, f"{order}, reading {number}"), value
+                yield (part, f"{one[name]}, {number}"), value
 
 
 def _row(row: Mapping[str, Any], left_out: tuple[str, ...]) -> str:

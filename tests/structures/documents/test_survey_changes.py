@@ -29,7 +29,7 @@ def test_changed_added_and_dropped_places_are_named():
     assert [(one.part, one.where) for one in found] == [
         ("ground", f"{PACK['ground'][1]['offset_m']:g} m"),
         ("probes", f"{gone['offset_m']:g} m"),
-        ("soundings", "1, reading 3"),
+        ("soundings", f"{PACK['soundings'][0]['sounding']}, 3"),
     ]
     assert found[0].new.startswith("level_m 424.5")
     assert found[1].new is None
