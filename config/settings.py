@@ -34,6 +34,11 @@ INSTALLED_APPS = [
     "django.contrib.messages",
     "django.contrib.staticfiles",
     "axes",
+    "rest_framework",
+    "knox",
+    "django_filters",
+    "drf_spectacular",
+    "drf_spectacular_sidecar",
     "config",
     "structures",
     "costing",
@@ -103,7 +108,7 @@ WORKER_SILENT_SECONDS = 30  # without a sign of life for longer, a worker does n
 # --- People -----------------------------------------------------------------------------------
 AUTH_USER_MODEL = "structures.User"
 LOGIN_URL = "structures:sign-in"
-LOGIN_REDIRECT_URL = "structures:password"
+LOGIN_REDIRECT_URL = "structures:sites"
 AUTHENTICATION_BACKENDS = [
     "axes.backends.AxesStandaloneBackend",
     "structures.queries.accounts.AccountBackend",
@@ -129,6 +134,45 @@ AUTH_PASSWORD_VALIDATORS = [
     {"NAME": f"{_VALIDATION}.UserAttributeSimilarityValidator"},
     {"NAME": f"{_VALIDATION}.CommonPasswordValidator"},
 ]
+
+# --- The API ----------------------------------------------------------------------------------
+KNOX_TOKEN_MODEL = "structures.DeviceToken"
+REST_KNOX = {"TOKEN_TTL": timedelta(days=14)}  # a field season's phone signs in twice a month
+REST_FRAMEWORK = {
+    # The first one names what a 401 asks for.
+    "DEFAULT_AUTHENTICATION_CLASSES": [
+        "structures.api.tokens.DeviceAuthentication",
+        "rest_framework.authentication.SessionAuthentication",
+    ],
+    "DEFAULT_PERMISSION_CLASSES": ["rest_framework.permissions.IsAuthenticated"],
+    "DEFAULT_RENDERER_CLASSES": ["rest_framework.renderers.JSONRenderer"],
+    "DEFAULT_PARSER_CLASSES": ["rest_framework.parsers.JSONParser"],
+    "DEFAULT_PAGINATION_CLASS": "structures.api.paging.Pages",
+    "DEFAULT_FILTER_BACKENDS": [
+        "django_filters.rest_framework.DjangoFilterBackend",
+        "rest_framework.filters.OrderingFilter",
+    ],
+    "DEFAULT_THROTTLE_CLASSES": ["rest_framework.throttling.UserRateThrottle"],
+    "DEFAULT_THROTTLE_RATES": {"user": "1200/min", "sign-in": "60/min"},
+    "NUM_PROXIES": 0,  # the server's word on where a request came from, never a header's
+    "DEFAULT_SCHEMA_CLASS": "drf_spectacular.openapi.AutoSchema",
+    "EXCEPTION_HANDLER": "structures.api.problems.answer",
+}
+SPECTACULAR_SETTINGS = {
+    "TITLE": "Underbund",
+    "VERSION": "1",
+    "OAS_VERSION": "3.1.1",
+    "DESCRIPTION": (
+        "Sites, surveys, rates and estimates of subsurface dams. Lists come in pages and hold what "
+        "the asker's postings cover. What goes wrong is told as `application/problem+json`."
+    ),
+    "SCHEMA_PATH_PREFIX": "/api/v1",
+    "SERVE_PERMISSIONS": ["rest_framework.permissions.AllowAny"],
+    "SERVE_INCLUDE_SCHEMA": False,
+    "SWAGGER_UI_DIST": "SIDECAR",
+    "SWAGGER_UI_FAVICON_HREF": "SIDECAR",
+    "COMPONENT_SPLIT_REQUEST": True,
+}
 
 # --- Files ------------------------------------------------------------------------------------
 MEDIA_ROOT = ENVIRONMENT.media_root or DATA / "files"

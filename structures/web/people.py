@@ -5,7 +5,6 @@ from __future__ import annotations
 from functools import wraps
 
 from django.contrib import messages
-from django.core.paginator import Paginator
 from django.http import Http404
 from django.shortcuts import redirect, render
 from django.utils.translation import gettext as _
@@ -17,10 +16,9 @@ from structures.actions.enrolment import enrol
 from structures.errors import Refused
 from structures.queries.frame import frame_of
 from structures.queries.people_review import people_to_review, person_to_review
+from structures.web.lists import sheet_of
 from structures.web.people_forms import AccountForm, NewPersonForm, PostingForm
 from structures.web.refusals import STATUS, refuse
-
-PAGE = 50  # people on one sheet
 
 
 def keepers_only(view):
@@ -41,7 +39,7 @@ def people(request):
     text = request.GET.get("q", "")
     lines = people_to_review(request.user, text)
     context = {
-        "page": Paginator(lines, PAGE).get_page(request.GET.get("page")),
+        "page": sheet_of(request, lines),
         "doubtful": sum(bool(line.doubts) for line in lines),
         "text": text,
     }

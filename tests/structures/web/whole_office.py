@@ -1,0 +1,102 @@
+"""A district with one of everything under names of its own, for tests that walk every page."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+from costing.actions.estimate import request_estimate
+from costing.models import Estimate, RateSchedule
+from structures.models import Role, Run, Site, Survey, Upload, User
+from structures.runs.queue import execute
+from tests import factories as make
+
+SOUNDING = {
+    "offset_m": 30.0,
+    "array": "schlumberger",
+    # Handbook table 2, every second reading.
+    "readings": [
+        {"ab2_m": ab2, "mn2_m": mn2, "apparent_resistivity_ohm_m": value}
+        for ab2, mn2, value in (
+            *((1.5, 0.5, 190.832362), (3, 0.5, 151.362163), (5, 0.5, 98.976746)),
+            *((8, 0.5, 69.635646), (10, 2.5, 70.369479), (15, 2.5, 87.197841)),
+            *((25, 2.5, 136.601555), (40, 10, 197.168937), (60, 10, 278.057086)),
+        )
+    ],
+}
+
+
+@dataclass(frozen=True, slots=True)
+class Office:
+    """One district; `people` by role, the rest as pages name it."""
+
+    people: dict[str, User]
+    site: Site
+    surveys: tuple[Survey, ...]
+    estimates: tuple[Estimate, ...]
+    schedules: tuple[RateSchedule, ...]
+    run: Run
+    upload: Upload
+
+    def value(self, collection: str, name: str) -> Any:
+        """What stands for a part of an address below a collection; KeyError where nobody said it."""
+        watershed = self.site.watershed
+        field = self.people[Role.FIELD]
+        estimate = self.estimates[-1]
+        return {
+            ("sites", "code"): self.site.code,
+            ("watersheds", "code"): watershed.code,
+            ("districts", "code"): watershed.district.code,
+            ("surveys", "version"): self.surveys[1].version,
+            ("surveys", "other"): self.surveys[0].version,
+            ("soundings", "order"): 1,
+            ("people", "user_id"): field.pk,
+            ("postings", "posting_id"): field.postings.get().pk,
+            ("settings", "key"): "key_m",
+            ("files", "file_id"): self.upload.pk,
+            ("runs", "run_id"): self.run.pk,
+            ("appraisals", "run_id"): self.run.pk,
+            ("appraisals", "name"): "report.pdf",
+            ("estimates", "pk"): estimate.pk,
+            ("estimates", "other"): self.estimates[0].pk,
+            ("estimates", "name"): sorted(estimate.run.result["documents"])[0],
+            ("rates", "pk"): self.schedules[1].pk,
+            ("rates", "other"): self.schedules[0].pk,
+        }[collection, name]
+
+
+def whole_office(word: str, price: str, soundings: tuple[dict[str, Any], ...] = ()) -> Office:
+    """Seed a district in which every name, code and file holds the word, and film costs the price."""
+    district = make.a_district(f"{word}-D", name=f"{word} district")
+    watershed = make.a_watershed(district, f"{word}-W", name=f"{word} valley")
+    people = {role: make.a_user(role, district, login=f"{word}-{role}") for role in Role.values}
+    engineer = people[Role.ENGINEER]
+    site = make.a_site(
+        watershed,
+        f"{word}-07",
+        name=f"{word} ford",
+        village_upstream=f"{word} above",
+        village_downstream=f"{word} below",
+        changed_by=engineer,
+    )
+    first = make.a_survey(site, engineer)
+    second = make.a_survey(site, engineer, wall={"key_m": 0.2}, soundings=list(soundings))
+    schedules = tuple(
+        make.a_schedule(district, engineer, name=f"{word}-{year}.csv", film=film)
+        for year, film in ((2025, "61.00"), (2026, price))
+    )
+    for survey in (first, second):
+        request_estimate(site_id=site.pk, by=engineer, survey_id=survey.pk)
+    for run in Run.objects.filter(state="queued").order_by("created_at"):
+        execute(str(run.pk))
+    estimates = tuple(Estimate.objects.filter(site=site).order_by("version"))
+    assert len(estimates) == len(schedules)
+    return Office(
+        people=people,
+        site=site,
+        surveys=(first, second),
+        estimates=estimates,
+        schedules=schedules,
+        run=estimates[-1].run,
+        upload=second.upload,
+    )
