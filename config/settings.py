@@ -136,7 +136,7 @@ AUTH_PASSWORD_VALIDATORS = [
 ]
 
 # --- The API ----------------------------------------------------------------------------------
-KNOX_TOKEN_MODEL = "structures.DeviceToken"
+KNOX_TOKEN_MODEL = "structures.DeviceToken"  # noqa: S105 -- the name of a table
 REST_KNOX = {"TOKEN_TTL": timedelta(days=14)}  # a field season's phone signs in twice a month
 REST_FRAMEWORK = {
     # The first one names what a 401 asks for.

@@ -1,3 +1,4 @@
+from structures.models.device import DeviceToken, SentWrite
 from structures.models.inbox import Upload
 from structures.models.people import Posting, Role, SignInWord, User
 from structures.models.run import Run, WorkerPulse

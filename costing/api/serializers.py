@@ -1,0 +1,122 @@
+"""Rates and estimates as the API tells them; money is text with its two decimals."""
+
+from __future__ import annotations
+
+from rest_framework import serializers
+
+from costing.queries.estimates import stale_reasons
+from structures.api.serializers import FindingSerializer
+
+
+def _money(**more):
+    return serializers.DecimalField(max_digits=15, decimal_places=2, **more)
+
+
+class RateSerializer(serializers.Serializer):
+    item = serializers.CharField()
+    from_m = serializers.FloatField(allow_null=True, help_text="depth at which the lift begins")
+    unit = serializers.CharField()
+    rate = _money()
+    description = serializers.CharField()
+
+
+class RateScheduleSerializer(serializers.Serializer):
+    id = serializers.IntegerField()
+    code = serializers.CharField()
+    version = serializers.IntegerField()
+    district = serializers.CharField(source="district.code")
+    currency = serializers.CharField()
+    valid_from = serializers.DateField(allow_null=True)
+    valid_to = serializers.DateField(allow_null=True)
+    contingency_percent = serializers.DecimalField(max_digits=8, decimal_places=4)
+    overhead_percent = serializers.DecimalField(max_digits=8, decimal_places=4)
+    rate_count = serializers.IntegerField()
+    digest = serializers.CharField()
+    upload = serializers.IntegerField(source="upload_id")
+    by = serializers.CharField(source="by.username")
+    at = serializers.DateTimeField()
+
+
+class RateScheduleWholeSerializer(RateScheduleSerializer):
+    rates = RateSerializer(many=True)
+    findings = FindingSerializer(many=True)
+
+
+class RateChangeSerializer(serializers.Serializer):
+    """One item that differs from the schedule before; null where it is not there."""
+
+    item = serializers.CharField()
+    from_m = serializers.FloatField(allow_null=True)
+    kind = serializers.ChoiceField(["added", "changed", "removed"])
+    before = serializers.DecimalField(max_digits=18, decimal_places=4, allow_null=True)
+    after = serializers.DecimalField(max_digits=18, decimal_places=4, allow_null=True)
+
+
+class SchedulePreviewSerializer(serializers.Serializer):
+    """A schedule as it would be kept, and what it changes."""
+
+    preview = serializers.BooleanField(default=True)
+    code = serializers.CharField(source="schedule.schedule_id")
+    follows = serializers.IntegerField(source="newest.version", default=None, allow_null=True)
+    digest = serializers.CharField()
+    changes = RateChangeSerializer(many=True)
+    findings = FindingSerializer(source="schedule.findings", many=True)
+
+
+class EstimateLineSerializer(serializers.Serializer):
+    item = serializers.CharField()
+    from_m = serializers.FloatField(allow_null=True)
+    to_m = serializers.FloatField(allow_null=True)
+    unit = serializers.CharField()
+    quantity = _money(allow_null=True)
+    rate = _money(allow_null=True)
+    amount = _money(allow_null=True)
+
+
+class EstimateSerializer(serializers.Serializer):
+    id = serializers.IntegerField()
+    site = serializers.CharField(source="site.code")
+    version = serializers.IntegerField()
+    survey = serializers.IntegerField(source="survey_id")
+    rate_schedule = serializers.IntegerField(source="schedule_id")
+    rock_line = serializers.IntegerField(source="rock_line.version", default=None, allow_null=True)
+    design = serializers.IntegerField(source="design_id")
+    run = serializers.UUIDField(source="run_id")
+    method = serializers.CharField()
+    input_digest = serializers.CharField()
+    complete = serializers.BooleanField()
+    currency = serializers.CharField()
+    subtotal = _money()
+    contingency = _money()
+    overhead = _money()
+    total = _money()
+    sanction = _money(allow_null=True)
+    total_p10 = _money(source="p10", allow_null=True)
+    total_p50 = _money(source="p50", allow_null=True)
+    total_p90 = _money(source="p90", allow_null=True)
+    open_flank_share = serializers.FloatField(allow_null=True)
+    stale = serializers.SerializerMethodField(help_text="why it is out of date; empty: it is not")
+    asked_by = serializers.CharField(source="asked_by.username", default=None, allow_null=True)
+    frozen_at = serializers.DateTimeField()
+
+    def get_stale(self, estimate) -> list[str]:
+        return list(stale_reasons(estimate))
+
+
+class EstimateWholeSerializer(EstimateSerializer):
+    lines = EstimateLineSerializer(many=True)
+    wall = serializers.DictField(help_text="settings of the wall that differ from the defaults")
+    result = serializers.DictField(help_text="the keys of `appraise --json`")
+
+
+class EstimateRequestSerializer(serializers.Serializer):
+    """What to price; what is left out is the newest there is."""
+
+    survey = serializers.IntegerField(required=False, allow_null=True)
+    rate_schedule = serializers.IntegerField(required=False, allow_null=True)
+    wall = serializers.DictField(
+        required=False, help_text="settings of the wall, before those of survey and district"
+    )
+    id = serializers.UUIDField(
+        required=False, help_text="the write's own name, see Idempotency-Key"
+    )

@@ -1,0 +1,102 @@
+"""Rates and estimates, for those who may see money."""
+
+from __future__ import annotations
+
+from http import HTTPStatus
+
+from drf_spectacular.utils import OpenApiExample, extend_schema
+from rest_framework import exceptions
+from rest_framework.generics import get_object_or_404
+from rest_framework.reverse import reverse
+
+from costing.actions.estimate import request_estimate
+from costing.api import filters, serializers
+from costing.queries.estimates import visible_estimates
+from costing.queries.schedules import visible_schedules
+from structures.access import Act
+from structures.actions.devices import Answered
+from structures.api.serializers import RunSerializer
+from structures.api.views import insist
+from structures.api.viewsets import PROBLEM, Collection
+from structures.api.writes import KEY, once
+from structures.queries.sites import visible_sites
+from structures.queries.surveys import surveys_of
+
+
+class RateSchedules(Collection):
+    serializer_class = serializers.RateScheduleSerializer
+    whole_serializer_class = serializers.RateScheduleWholeSerializer
+    filterset_class = filters.RateScheduleFilter
+    ordering_fields = ("at", "code", "version", "valid_from", "valid_to")
+    ordering = ("-at", "-id")
+    lookup_value_regex = "[0-9]+"
+    visible = staticmethod(visible_schedules)
+
+
+class Estimates(Collection):
+    serializer_class = serializers.EstimateSerializer
+    whole_serializer_class = serializers.EstimateWholeSerializer
+    filterset_class = filters.EstimateFilter
+    ordering_fields = ("frozen_at", "site__code", "version", "total", "sanction")
+    ordering = ("-frozen_at", "-id")
+    lookup_value_regex = "[0-9]+"
+    visible = staticmethod(visible_estimates)
+
+
+class SiteEstimates(Estimates):
+    """Estimates of one site; one is asked for here."""
+
+    ordering = ("-version",)
+
+    def visible(self, user):
+        site = get_object_or_404(visible_sites(user), code=self.kwargs["code"])
+        return visible_estimates(user).filter(site=site)
+
+    @extend_schema(
+        summary="Ask for an estimate",
+        description=(
+            "Answers at once with the run that prices the site; its address is in `Location`. The "
+            "same inputs give the run there is already."
+        ),
+        parameters=[KEY],
+        request=serializers.EstimateRequestSerializer,
+        responses={202: RunSerializer, 403: PROBLEM, 404: PROBLEM, 409: PROBLEM, 422: PROBLEM},
+        examples=[
+            OpenApiExample("Everything newest", {}, request_only=True),
+            OpenApiExample(
+                "A thicker wall on an older survey",
+                {"survey": 12, "rate_schedule": 3, "wall": {"thickness_m": 1.2}},
+                request_only=True,
+            ),
+        ],
+    )
+    def create(self, request, code):
+        site = get_object_or_404(visible_sites(request.user), code=code)
+        insist(request.user, Act.REQUEST_ESTIMATE, site)
+        said = serializers.EstimateRequestSerializer(data=request.data)
+        said.is_valid(raise_exception=True)
+        wanted = said.validated_data
+        survey = _named("survey", surveys_of(request.user, code), wanted)
+        here = visible_schedules(request.user).filter(district=site.watershed.district)
+        schedule = _named("rate_schedule", here, wanted)
+
+        def write():
+            run = request_estimate(
+                site_id=site.pk,
+                by=request.user,
+                survey_id=survey,
+                schedule_id=schedule,
+                wall=wanted.get("wall"),
+            )
+            place = reverse("runs-detail", [run.pk], request=request)
+            return Answered(HTTPStatus.ACCEPTED, RunSerializer(run).data, {"Location": place})
+
+        return once(request, write)
+
+
+def _named(field, found, wanted):
+    """Give the number of a record that was named, if it is there for this site."""
+    number = wanted.get(field)
+    if number is not None and not found.filter(pk=number).exists():
+        raise exceptions.ValidationError({field: [f"There is no {number} for this site."]})
+    return number

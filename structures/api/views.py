@@ -1,0 +1,108 @@
+"""What all views of the API share: the limit on a body, rights in words, one reading of files."""
+
+from __future__ import annotations
+
+import hashlib
+from typing import TYPE_CHECKING, Any, Final, NamedTuple
+
+from rest_framework import exceptions
+from rest_framework.parsers import BaseParser, MultiPartParser
+from rest_framework.views import APIView
+
+from structures import access
+from structures.api.problems import TooLarge
+from structures.errors import Refused
+from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.runs.book import input_digest
+
+if TYPE_CHECKING:
+    from rest_framework.request import Request
+
+ENVELOPE_BYTES: Final = 100_000  # headings around a file that is sent as a form (project choice)
+BODY_MOST_BYTES: Final = FILE_MOST_BYTES + ENVELOPE_BYTES
+
+
+class Handed(NamedTuple):
+    """A file as it came."""
+
+    name: str
+    data: bytes
+
+
+class LimitedBody:
+    """Turns away a body that is too large before any of it is read."""
+
+    def initial(self, request: Request, *args: Any, **kwargs: Any) -> None:
+        if int(request.META.get("CONTENT_LENGTH") or 0) > BODY_MOST_BYTES:
+            limit = FILE_MOST_BYTES // MEGABYTE
+            raise TooLarge(f"More than {limit} MB came. Nothing was read. Split it.")
+        super().initial(request, *args, **kwargs)
+
+
+class OfficeView(LimitedBody, APIView):
+    pass
+
+
+class JsonFile(BaseParser):
+    """Keeps a body as the file it is, to its last byte."""
+
+    media_type = "application/json"
+    name = "survey.json"
+
+    def parse(self, stream, media_type=None, parser_context=None):
+        return Handed(self.name, stream.read())
+
+
+class ZipFile(JsonFile):
+    media_type = "application/zip"
+    name = "survey.zip"
+
+
+class Workbook(JsonFile):
+    media_type = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
+    name = "survey.xlsx"
+
+
+class CsvFile(JsonFile):
+    media_type = "text/csv"
+    name = "rates.csv"
+
+
+SURVEY_FILES: Final = (JsonFile, MultiPartParser, ZipFile, Workbook)
+
+
+def handed_in(request: Request) -> Handed:
+    """Give the file of a request: its body, or the one file of its form."""
+    if isinstance(request.data, Handed):
+        return request.data
+    files = list(request.FILES.values())
+    if len(files) != 1:
+        words = f"One file is expected in the form, {len(files)} came."
+        raise exceptions.ValidationError({"file": [words]})
+    return Handed(files[0].name, files[0].read())
+
+
+def body_digest(request: Request) -> str:
+    """Digest of method, address and contents, however JSON was spaced or a form was packed."""
+    data = request.data
+    if isinstance(data, Handed):
+        contents: object = _file_digest(data.data)
+    elif request.FILES:
+        contents = {key: _file_digest(file.read()) for key, file in request.FILES.items()}
+        for file in request.FILES.values():
+            file.seek(0)
+    else:
+        contents = data
+    return input_digest({"at": [request.method, request.get_full_path()], "body": contents})
+
+
+def _file_digest(data: bytes) -> str:
+    return hashlib.sha256(data).hexdigest()
+
+
+def insist(user: Any, act: access.Act, thing: Any = None) -> None:
+    """Answer 403 with the words of the rule where the user may see a thing but not do that."""
+    try:
+        access.insist(user, act, thing)
+    except Refused as refused:
+        raise exceptions.PermissionDenied(refused.sentence()) from refused
