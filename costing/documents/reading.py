@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import asdict, replace
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, Final
 
 from costing.documents.bundle import figures_of
 from costing.documents.drawings import appraised_section
@@ -14,15 +14,19 @@ from structures.ground.rock import estimate_rock
 if TYPE_CHECKING:
     from costing.appraisal import Appraisal
 
+UNPRICED: Final = "rates-not-given"  # a reading is made without rates; that is no doubt of it
+
 
 def reading_json(found: Appraisal, *, draws: int, seed: int) -> dict[str, Any]:
     """Give appraisal, drawings, tests as drawn, whole soundings, and the line the tests give.
 
     `estimated` is that line even where another one was settled; empty where no line is known.
     """
+    appraisal = as_json(found)
+    appraisal["cautions"] = [one for one in appraisal["cautions"] if one["code"] != UNPRICED]
     pairs = zip(found.soundings, found.pack.soundings, strict=True)
     return {
-        "appraisal": as_json(found),
+        "appraisal": appraisal,
         "figures": figures_of(found),
         "tests": [asdict(test) for test in appraised_section(found).tests],
         "soundings": [sounding_whole_json(said, sounding) for said, sounding in pairs],

@@ -78,12 +78,14 @@ class SiteForm(forms.Form):
         super().__init__(*args, initial=initial, **kwargs)
         self.site = site
         for key in EDITABLE:
-            widget = forms.Textarea if key == "downstream_users" else forms.TextInput
+            long = key == "downstream_users"
+            widget = forms.Textarea if long else forms.TextInput
+            attrs = {} if key in TEXTS else {"class": "figure"}
             self.fields[key] = forms.CharField(
                 label=LABELS[key],
                 required=False,
                 help_text=HELP.get(key, ""),
-                widget=widget(attrs={} if key in TEXTS else {"class": "figure"}),
+                widget=widget(attrs={"rows": 3} if long else attrs),
             )
 
     def clean(self):
@@ -124,7 +126,7 @@ class RockForm(forms.Form):
         label=_("Why the rock is so"),
         required=False,
         help_text=_("For example: rock met in pits at 26 and 52 m, soundings agree between."),
-        widget=forms.Textarea,
+        widget=forms.Textarea(attrs={"rows": 3}),
     )
     rests_on = forms.MultipleChoiceField(
         label=_("Tests it rests on"), required=False, widget=forms.CheckboxSelectMultiple
@@ -163,11 +165,13 @@ class RockForm(forms.Form):
 class TryForm(forms.Form):
     """Settings of a wall to try; a blank field keeps what counts at the site."""
 
-    def __init__(self, *args, wall, **kwargs):
+    def __init__(self, sent, *, wall):
         initial = {key: wall.get(key, WALL[key].value) for key in TRIED}
         if isinstance(initial["side_slope"], list):
             initial["side_slope"] = ""
-        super().__init__(*args, initial=initial, **kwargs)
+        # An address that names some settings only is filled with those that count.
+        data = {**initial, **sent.dict()} if sent else None
+        super().__init__(data, initial=initial)
         for key, label in TRIED.items():
             default = WALL[key]
             self.fields[key] = NumberField(

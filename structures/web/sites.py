@@ -188,7 +188,7 @@ def try_other_wall(request, code):
     if context["appraisal"] is None or context["appraisal"]["wall"] is None:
         return render(request, "structures/try.html", context)
     params = reading_params(survey)
-    form = TryForm(request.GET or None, wall=params["wall"])
+    form = TryForm(request.GET, wall=params["wall"])
     changed = {}
     if form.is_bound and form.is_valid():
         changed = form.chosen()
