@@ -22,8 +22,8 @@ from costing.price.rate_cells import (
     read_rate,
     read_text,
 )
-from structures.errors import LEVELS, Refused
 from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.intake.builder import refusal
 from structures.intake.defaults import MONEY
 from structures.intake.delimited import read_delimited
 from structures.intake.json_form import read_json
@@ -151,7 +151,7 @@ def read_rates(name: str, data: bytes, *, currency_default: str = CURRENCY) -> R
     if len(data) > FILE_MOST_BYTES:
         what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."
         ledger.add(Node(None, name), what, "Send one rate schedule.")
-        raise _refusal(ledger)
+        raise refusal(ledger, "rate schedule")
     sheet = _Sheet(ledger)
     for row in _rows(name, data, sheet):
         sheet.read_row(row)
@@ -161,7 +161,7 @@ def read_rates(name: str, data: bytes, *, currency_default: str = CURRENCY) -> R
     said = {key: sheet.agreed(key) for key in WHOLE}
     _check_days(said["valid_from"], said["valid_to"], Node(None, name, "valid_to"), ledger)
     if ledger.blocks:
-        raise _refusal(ledger)
+        raise refusal(ledger, "rate schedule")
     return RateSchedule(
         schedule_id=said["schedule_id"] or PurePosixPath(name).stem,
         currency=said["currency"] or currency_default,
@@ -313,14 +313,3 @@ def _check_days(first: date | None, last: date | None, node: Node, ledger: Ledge
     if first and last and last < first:
         what = f"The schedule ends on {last}, before it begins on {first}."
         ledger.add(node, what, "Look at both dates.")
-
-
-def _refusal(ledger: Ledger) -> Refused:
-    """Give the refusal that carries all findings, the blocking ones first."""
-    findings = tuple(sorted(ledger.findings, key=lambda one: LEVELS.index(one.level)))
-    first = findings[0]
-    if ledger.blocks == 1:
-        where = ", ".join(part for part in (first.where, first.field) if part)
-        return Refused(first.what, where=where, remedy=first.remedy, findings=findings)
-    what = f"{ledger.blocks} things are wrong in this rate schedule."
-    return Refused(what, remedy="Put right what is listed and read it again.", findings=findings)

@@ -25,7 +25,7 @@ if TYPE_CHECKING:
     from structures.intake.pack import GroundPoint, Probe, RockLinePoint, RockTest, Toes
     from structures.intake.parts import Placed
 
-SEVERAL: Final = "{count} things are wrong in this survey pack."
+SEVERAL: Final = "{count} things are wrong in this {thing}."
 
 
 def build_pack(root: Node, ledger: Ledger) -> SurveyPack:
@@ -84,13 +84,13 @@ def build_pack(root: Node, ledger: Ledger) -> SurveyPack:
     )
 
 
-def refusal(ledger: Ledger) -> Refused:
-    """Give the refusal that carries all findings, the blocking ones first."""
+def refusal(ledger: Ledger, thing: str = "survey pack") -> Refused:
+    """Give the refusal that carries all findings, the blocking ones first; `thing` names the file."""
     ordered = tuple(sorted(ledger.findings, key=lambda finding: LEVELS.index(finding.level)))
     blocking = [finding for finding in ordered if finding.level == "block"]
     if len(blocking) == 1:
         return _single(blocking[0], ordered)
-    what = SEVERAL.format(count=len(blocking))
+    what = SEVERAL.format(count=len(blocking), thing=thing)
     return Refused(what, remedy="Put right what is listed and read it again.", findings=ordered)
 
 

@@ -50,14 +50,14 @@ def read_sounding(
     if len(data) > FILE_MOST_BYTES:
         what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."
         ledger.add(Node(None, name), what, "Send one sounding.", rule="FI-02")
-        raise refusal(ledger)
+        raise refusal(ledger, "sounding")
     label = PurePosixPath(name).stem
     table = read_delimited(label, name, data, ledger)
     if table is None:
-        raise refusal(ledger)
+        raise refusal(ledger, "sounding")
     rows = [table.node(row, "") for row in table.rows]
     node = Node(rows, name, tabular=True)
     readings = read_readings(node, array, ledger)
     if ledger.blocks:
-        raise refusal(ledger)
+        raise refusal(ledger, "sounding")
     return Sounding(None, array, readings, label, findings=tuple(ledger.findings))

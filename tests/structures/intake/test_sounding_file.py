@@ -87,3 +87,10 @@ def test_an_array_that_nobody_lays_out_is_a_wrong_call():
 def test_a_sounding_file_is_no_pack():
     with pytest.raises(Refused, match="not yet a survey pack"):
         read_pack_bytes("s.csv", (HEADING + ROWS).encode())
+
+
+def test_several_wrong_readings_are_those_of_a_sounding():
+    rows = b"ab2_m,mn2_m,apparent_resistivity_ohm_m\n3,0.5,0\n4,0.5,-1\n"
+    with pytest.raises(Refused) as refused:
+        read_sounding("s.csv", rows)
+    assert refused.value.what == "2 things are wrong in this sounding."
