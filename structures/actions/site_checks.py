@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-import math
+from bisect import bisect_left, bisect_right, insort
 from dataclasses import dataclass
+from operator import attrgetter
 from typing import TYPE_CHECKING, Final
 
 from structures.errors import Finding
@@ -20,16 +21,33 @@ DEGREE_LEAST_M: Final = 110_000.0  # metres of latitude in a degree, rounded dow
 KM_M: Final = 1000.0  # exact
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, order=True)
 class Neighbour:
     """Another site as far as its position matters."""
 
-    code: str
-    lon: float
     lat: float
+    lon: float
+    code: str
 
 
-def site_findings(site: Site, others: Iterable[Neighbour], where: str) -> tuple[Finding, ...]:
+class Neighbourhood:
+    """Sites in the order of their latitude, so that the near ones are found among thousands."""
+
+    def __init__(self, sites: Iterable[Neighbour]) -> None:
+        self._sites = sorted(sites)
+
+    def add(self, site: Neighbour) -> None:
+        insort(self._sites, site)
+
+    def near(self, lat: float) -> list[Neighbour]:
+        """Give the sites within the band of latitude in which one can be the same place."""
+        reach = SAME_PLACE_M / DEGREE_LEAST_M
+        first = bisect_left(self._sites, lat - reach, key=attrgetter("lat"))
+        end = bisect_right(self._sites, lat + reach, key=attrgetter("lat"))
+        return self._sites[first:end]
+
+
+def site_findings(site: Site, others: Neighbourhood, where: str) -> tuple[Finding, ...]:
     """Judge a site by its watershed, its neighbours and what was not answered (PL-02 to PL-05)."""
     found = [
         *_outside(site, where),
@@ -67,16 +85,15 @@ def _coarse(site: Site, where: str) -> Iterable[Finding]:
         yield Finding(where, "accuracy_m", what, remedy, "warn", "PL-03")
 
 
-def _same_place(site: Site, others: Iterable[Neighbour], where: str) -> Iterable[Finding]:
-    near_degrees = SAME_PLACE_M / DEGREE_LEAST_M
-    for other in others:
-        if other.code == site.code or abs(other.lat - site.lat) > near_degrees:
-            continue
-        # A cheap look before the exact one: most sites are far apart.
-        if abs(other.lon - site.lon) * math.cos(math.radians(site.lat)) > 2.0 * near_degrees:
-            continue
-        away_m = distance_m((site.lon, site.lat), (other.lon, other.lat))
-        if away_m <= SAME_PLACE_M:
-            what = f"{other.code} is {away_m:.0f} m away."
-            remedy = "Same place? Join them, or write why both stay."
-            yield Finding(where, "lat", what, remedy, "hold", "PL-04")
+def _same_place(site: Site, others: Neighbourhood, where: str) -> Iterable[Finding]:
+    here = (site.lon, site.lat)
+    away = [
+        (distance_m(here, (other.lon, other.lat)), other.code)
+        for other in others.near(site.lat)
+        if other.code != site.code
+    ]
+    if away and min(away)[0] <= SAME_PLACE_M:
+        nearest_m, code = min(away)
+        what = f"{code} is {nearest_m:.0f} m away."
+        remedy = "Same place? Join them, or write why both stay."
+        yield Finding(where, "lat", what, remedy, "hold", "PL-04")

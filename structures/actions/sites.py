@@ -14,7 +14,7 @@ from structures import access
 from structures.access import Act, insist, may
 from structures.actions.inbox import mark_kept, receive_file, refuse_same_file, told_of
 from structures.actions.refusals import as_documents, blocking, field_findings, refusal
-from structures.actions.site_checks import Neighbour, site_findings
+from structures.actions.site_checks import Neighbour, Neighbourhood, site_findings
 from structures.actions.site_rows import Values, read_rows, read_site, row_of
 from structures.errors import Refused
 from structures.intake.tree import Ledger
@@ -159,7 +159,7 @@ def _read(
         site.findings = as_documents(found)
         drafts.append(Draft(site, draft.stream, found))
         taken.add(site.code)
-        neighbours.append(Neighbour(site.code, site.lon, site.lat))
+        neighbours.add(Neighbour(site.lat, site.lon, site.code))
     if blocking(ledger.findings):
         raise refusal(ledger.findings, thing)
     return drafts
@@ -230,7 +230,7 @@ def _name_streams(drafts: list[Draft]) -> None:
         draft.site.stream = streams[key]
 
 
-def _neighbours(by: User) -> list[Neighbour]:
+def _neighbours(by: User) -> Neighbourhood:
     """Sites that the user may see: a site elsewhere is never named."""
-    rows = access.sites(by).values_list("code", "lon", "lat")
-    return [Neighbour(*row) for row in rows]
+    rows = access.sites(by).values_list("lat", "lon", "code")
+    return Neighbourhood(Neighbour(*row) for row in rows)

@@ -62,8 +62,10 @@ def outside_m(position: tuple[float, float], outline: dict[str, Any]) -> float:
 
     Source: distance from the origin of the grid to the nearest point of the polygon.
     """
-    grid = _grid(position)
-    local = transform(shape(outline), grid.transform, interleaved=False)
+    polygon = shape(outline)
+    if polygon.covers(Point(position)):  # most sites; a grid of its own costs far more
+        return 0.0
+    local = transform(polygon, _grid(position).transform, interleaved=False)
     return float(local.distance(Point(0.0, 0.0)))
 
 

@@ -142,6 +142,17 @@ def test_what_is_doubted_of_a_site(watershed, engineer):
     assert enter(watershed, engineer, apart)[0].findings == []
 
 
+def test_of_several_near_places_the_nearest_is_named(watershed, engineer):
+    """Oracle: a degree of latitude is 110.6 km there, so 0.0003 and 0.0002 degrees are 33 and 22 m;
+    0.0004 degrees of longitude at 15.75 N are 43 m."""
+    a_site(watershed, "A", lat=15.75, lon=77.45)
+    a_site(watershed, "B", lat=15.7505, lon=77.45)
+    (site,) = enter(watershed, engineer, "OD-02,OD,,,15.7503,77.45,5,none")
+    assert [one["what"] for one in site.findings] == ["B is 22 m away."]
+    (east,) = enter(watershed, engineer, "OD-03,OD,,,15.75,77.4504,5,none")
+    assert [one["what"] for one in east.findings] == ["A is 43 m away."]
+
+
 def test_a_neighbour_out_of_sight_is_not_named(watershed, engineer):
     hidden = a_watershed(a_district("ZZ"), "ZA")
     a_site(hidden, "ZA-01", lat=15.75, lon=77.45)
