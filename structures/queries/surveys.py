@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import json
 from dataclasses import replace
-from typing import TYPE_CHECKING, Any
+from functools import lru_cache
+from typing import TYPE_CHECKING, Any, Final
 
 from django.db.models import Count
 
@@ -23,6 +24,7 @@ if TYPE_CHECKING:
     from structures.models import User
 
 NAME = "survey.json"  # how findings on a kept survey name it
+PACKS_KEPT: Final = 32  # packs in memory, some 50 kB each: what a handful of people try at once
 
 
 def visible_surveys(user: User) -> QuerySet[Survey]:
@@ -89,4 +91,10 @@ def names_of_tests(pack: SurveyPack) -> tuple[str, ...]:
 
 
 def _read(document: Mapping[str, Any]) -> SurveyPack:
-    return read_pack_bytes(NAME, json.dumps(document, ensure_ascii=False).encode())
+    return _read_text(json.dumps(document, ensure_ascii=False))
+
+
+@lru_cache(maxsize=PACKS_KEPT)
+def _read_text(text: str) -> SurveyPack:
+    """Read a document once as long as somebody works with it; a pack never changes."""
+    return read_pack_bytes(NAME, text.encode())

@@ -93,8 +93,11 @@ def _parts(pack):
 
 
 def _drawn(pack):
-    """The survey alone: ground and tests, before anything is read from it."""
-    view = view_section(pack, RockLine("none", [], []), None)
+    """The survey alone: ground, tests and a line handed in, before anything is read from it."""
+    points = pack.rock_line or ()
+    levels = [one.level_m for one in points]
+    line = RockLine("given" if points else "none", [one.offset_m for one in points], levels)
+    view = view_section(pack, line, None)
     wide = draw_section(view)
     return {"wide": wide, "narrow": draw_section(view, name="section-narrow", narrow=True)}
 
