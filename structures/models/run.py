@@ -1,11 +1,15 @@
 from __future__ import annotations
 
+import math
 import uuid
-from typing import ClassVar
+from typing import ClassVar, Final
 
 from django.conf import settings
 from django.db import models
 from django.db.models import Q
+from django.utils import timezone
+
+PACE_FROM: Final = 0.1  # of a run; before it the start-up says nothing of the pace
 
 
 class Run(models.Model):
@@ -74,6 +78,14 @@ class Run(models.Model):
     @property
     def going(self) -> bool:
         return self.state in self.GOING
+
+    @property
+    def seconds_left(self) -> int | None:
+        """What is left at the pace so far; None before there is a pace, and once it has ended."""
+        if self.state != self.State.RUNNING or self.progress < PACE_FROM:
+            return None
+        spent = (timezone.now() - self.started_at).total_seconds()
+        return math.ceil(spent * (1.0 - self.progress) / self.progress)
 
 
 class WorkerPulse(models.Model):

@@ -28,6 +28,18 @@ def test_every_file_is_the_one_in_the_manifest(folder):
         assert entry["licence"] == "SIL Open Font License 1.1"
 
 
+def test_every_script_is_the_one_in_its_manifest():
+    """Oracle: SHA-256 of the files as they came from their package; nothing else lies there."""
+    folder = ROOT / "static/underbund/vendor"
+    entries = listed("static/underbund/vendor")
+    for entry in entries:
+        content = (folder / entry["file"]).read_bytes()
+        assert hashlib.sha256(content).hexdigest() == entry["sha256"], entry["file"]
+        assert all(entry[key] for key in ("name", "version", "licence", "from"))
+    there = {path.name for path in folder.iterdir()} - {"MANIFEST.json"}
+    assert there == {entry["file"] for entry in entries}
+
+
 @FOLDERS
 def test_nothing_else_lies_beside_it(folder):
     there = {path.name for path in (ROOT / folder).iterdir()} - {"MANIFEST.json"}

@@ -179,6 +179,19 @@ def test_a_run_that_takes_its_worker_down_again_and_again_is_given_up(settings):
     assert f"{settings.RUN_ATTEMPTS} times" in run.message
 
 
+def test_the_time_left_follows_the_pace_so_far():
+    """Oracle: a quarter done in 10 s leaves three times as long."""
+    run = opened()
+    book.claim(run.pk)
+    begun = timezone.now() - timedelta(seconds=10)
+    Run.objects.update(progress=0.25, started_at=begun)
+    run.refresh_from_db()
+    assert run.seconds_left in (30, 31)
+    Run.objects.update(progress=0.01)
+    run.refresh_from_db()
+    assert run.seconds_left is None
+
+
 @pytest.mark.parametrize(
     "wrong",
     [{"progress": 1.5}, {"state": "done"}, {"state": "running", "lease_until": None}],
