@@ -62,10 +62,16 @@ class Office:
             ("estimates", "name"): sorted(estimate.run.result["documents"])[0],
             ("rates", "pk"): self.schedules[1].pk,
             ("rates", "other"): self.schedules[0].pk,
+            ("rate-schedules", "pk"): self.schedules[1].pk,
+            ("surveys", "pk"): self.surveys[1].pk,
+            ("soundings", "pk"): self.surveys[1].soundings.get().pk,
+            ("structures", "code"): self.site.code,
+            ("uploads", "pk"): self.upload.pk,
+            ("runs", "pk"): self.run.pk,
         }[collection, name]
 
 
-def whole_office(word: str, price: str, soundings: tuple[dict[str, Any], ...] = ()) -> Office:
+def whole_office(word: str, price: str) -> Office:
     """Seed a district in which every name, code and file holds the word, and film costs the price."""
     district = make.a_district(f"{word}-D", name=f"{word} district")
     watershed = make.a_watershed(district, f"{word}-W", name=f"{word} valley")
@@ -80,7 +86,7 @@ def whole_office(word: str, price: str, soundings: tuple[dict[str, Any], ...] = 
         changed_by=engineer,
     )
     first = make.a_survey(site, engineer)
-    second = make.a_survey(site, engineer, wall={"key_m": 0.2}, soundings=list(soundings))
+    second = make.a_survey(site, engineer, wall={"key_m": 0.2}, soundings=[SOUNDING])
     schedules = tuple(
         make.a_schedule(district, engineer, name=f"{word}-{year}.csv", film=film)
         for year, film in ((2025, "61.00"), (2026, price))
