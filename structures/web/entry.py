@@ -3,8 +3,6 @@
 from __future__ import annotations
 
 from django.contrib import messages
-from django.core import signing
-from django.http import Http404
 from django.shortcuts import redirect, render
 from django.utils.translation import gettext as _
 from django.views.decorators.http import require_http_methods
@@ -14,12 +12,10 @@ from structures.actions.entry import KINDS, enter_file, preview_entry
 from structures.actions.inbox import ACT
 from structures.errors import Refused
 from structures.queries.districts import visible_districts
-from structures.runs.files import keep_bytes, kept_bytes
+from structures.web.previews import FIELD, agreed, looked_at
 from structures.web.refusals import STATUS
 from structures.web.site_forms import EntryForm
 
-PREVIEW_HOURS = 12  # how long a looked-at file may wait for its yes
-SALT = "structures.entry.preview"
 NAMES_SHOWN = 100  # of what a file adds; the count says how many there are
 
 
@@ -31,7 +27,7 @@ def entry(request):
         for kind, words in KINDS
         if any(may(request.user, ACT[kind], one) for one in districts)
     ]
-    if request.method == "POST" and "looked_at" in request.POST:
+    if request.method == "POST" and FIELD in request.POST:
         return _keep(request)
     sent = request.method == "POST"
     form = EntryForm(
@@ -54,9 +50,8 @@ def _look(request, form, districts, context):
     except Refused as refused:
         context["refused"] = refused
         return
-    looked_at = {**handed, "digest": keep_bytes(data), "by": request.user.pk}
     context |= {
-        "looked_at": signing.dumps(looked_at, salt=SALT),
+        "looked_at": looked_at(request, data, **handed),
         "name": said["file"].name,
         "names": context["read"].names[:NAMES_SHOWN],
         "kind_words": dict(KINDS)[said["kind"]],
@@ -64,15 +59,7 @@ def _look(request, form, districts, context):
 
 
 def _keep(request):
-    try:
-        handed = signing.loads(request.POST["looked_at"], salt=SALT, max_age=PREVIEW_HOURS * 3600)
-    except signing.BadSignature as error:
-        raise Refused(
-            _("What was looked at is no longer there."), remedy=_("Choose the file again.")
-        ) from error
-    if handed.pop("by") != request.user.pk:
-        raise Http404
-    data = kept_bytes(handed.pop("digest"))
+    handed, data = agreed(request)
     kept = enter_file(**handed, data=data, by=request.user)
     messages.success(request, _("%(count)d rows are kept.") % {"count": kept.rows})
     return redirect(

@@ -16,7 +16,7 @@ from structures.actions import sites as site_actions
 from structures.documents.trial import try_wall
 from structures.drawing.map import draw_map
 from structures.errors import Refused
-from structures.life.cautions import ALWAYS, CLOSING_SENTENCE
+from structures.life.cautions import CLOSING_SENTENCE
 from structures.life.stages import STAGES
 from structures.queries.districts import visible_districts, visible_watersheds
 from structures.queries.history import changes_of
@@ -32,6 +32,7 @@ from structures.queries.survey_reading import reading_of, reading_params
 from structures.queries.surveys import names_of_tests, pack_of, surveys_of, visible_rock_lines
 from structures.web.figures import figure_rows
 from structures.web.lists import sheet_of
+from structures.web.readings import drawn_alone, reading_context
 from structures.web.refusals import STATUS, refuse
 from structures.web.site_forms import RockForm, SiteFilter, SiteForm, TryForm
 
@@ -88,21 +89,10 @@ def site(request, code):
         "sees_money": may(user, Act.SEE_MONEY, found),
         "closing": CLOSING_SENTENCE,
     }
-    return render(request, "structures/site.html", context | reading_context(run))
-
-
-def reading_context(run):
-    """What the templates of drawing, rock, wall and water take from a reading's result."""
-    result = None if run is None else run.result
-    if not result:
-        return {"appraisal": None}
-    cautions = result["appraisal"]["cautions"]
-    return {
-        "appraisal": result["appraisal"],
-        "figures": result["figures"],
-        "doubts": [one for one in cautions if one["code"] not in ALWAYS],
-        "always": [one for one in cautions if one["code"] in ALWAYS],
-    }
+    context |= reading_context(run)
+    if survey is not None and context["appraisal"] is None:
+        context["alone"] = drawn_alone(pack_of(survey))
+    return render(request, "structures/site.html", context)
 
 
 @require_http_methods(READ_METHODS)

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from django.contrib import messages
-from django.core import signing
 from django.http import Http404
 from django.shortcuts import get_object_or_404, redirect, render
 from django.utils.translation import gettext as _
@@ -14,22 +13,17 @@ from structures.access import Act, may
 from structures.actions import surveys as survey_actions
 from structures.actions.survey_reading import start_reading
 from structures.documents.survey_changes import survey_changes
-from structures.drawing.section import draw_section
-from structures.drawing.survey import view_section
 from structures.errors import Refused
-from structures.ground.rock_line import RockLine
 from structures.life.cautions import CLOSING_SENTENCE
 from structures.queries.sites import visible_sites
 from structures.queries.survey_reading import reading_of
 from structures.queries.surveys import pack_of, surveys_of, visible_soundings
-from structures.runs.files import keep_bytes, kept_bytes
 from structures.web.figures import figure_rows
+from structures.web.previews import FIELD, agreed, looked_at
+from structures.web.readings import drawn_alone, reading_context
 from structures.web.refusals import STATUS
 from structures.web.site_forms import SurveyForm
-from structures.web.sites import reading_context
 
-PREVIEW_HOURS = 12  # how long a looked-at file may wait for its yes
-SALT = "structures.survey.preview"
 PARTS = {
     "ground": gettext_lazy("points of the ground"),
     "rock": gettext_lazy("rock tests"),
@@ -43,7 +37,7 @@ PARTS = {
 def new_survey(request, code):
     """Read a file and show what was read; keep it only at the second, plain yes."""
     site = get_object_or_404(visible_sites(request.user), code=code)
-    if request.method == "POST" and "looked_at" in request.POST:
+    if request.method == "POST" and FIELD in request.POST:
         return _keep(request, site)
     form = SurveyForm(request.POST, request.FILES) if request.method == "POST" else SurveyForm()
     context = {"site": site, "form": form, "may": may(request.user, Act.ACCEPT_SURVEY, site)}
@@ -57,29 +51,23 @@ def new_survey(request, code):
         except Refused as refused:
             context["refused"] = refused
         else:
-            looked_at = {"digest": keep_bytes(data), "name": file.name, "site": site.pk}
             context |= {
-                "looked_at": signing.dumps({**looked_at, "by": request.user.pk}, salt=SALT),
+                "looked_at": looked_at(request, data, name=file.name, site=site.code),
                 "name": file.name,
                 "parts": _parts(context["read"].pack),
                 "newest": surveys_of(request.user, code).first(),
-                "drawn": _drawn(context["read"].pack),
+                "drawn": drawn_alone(context["read"].pack),
             }
     wrong = request.method == "POST" and "read" not in context
     return render(request, "structures/survey_new.html", context, status=STATUS if wrong else 200)
 
 
 def _keep(request, site):
-    try:
-        seen = signing.loads(request.POST["looked_at"], salt=SALT, max_age=PREVIEW_HOURS * 60 * 60)
-    except signing.BadSignature as error:
-        raise Refused(
-            _("What was looked at is no longer there."), remedy=_("Choose the file again.")
-        ) from error
-    if (seen["site"], seen["by"]) != (site.pk, request.user.pk):
+    said, data = agreed(request)
+    if said["site"] != site.code:
         raise Refused(_("Another survey was looked at."), remedy=_("Choose the file again."))
     survey = survey_actions.accept_survey(
-        site_id=site.pk, name=seen["name"], data=kept_bytes(seen["digest"]), by=request.user
+        site_id=site.pk, name=said["name"], data=data, by=request.user
     )
     words = _("Survey %(version)d is kept; a worker reads it now.")
     messages.success(request, words % {"version": survey.version})
@@ -90,16 +78,6 @@ def _parts(pack):
     """How many rows of each table were read; tables without a row are left out."""
     counts = ((words, len(getattr(pack, part))) for part, words in PARTS.items())
     return [(words, count) for words, count in counts if count]
-
-
-def _drawn(pack):
-    """The survey alone: ground, tests and a line handed in, before anything is read from it."""
-    points = pack.rock_line or ()
-    levels = [one.level_m for one in points]
-    line = RockLine("given" if points else "none", [one.offset_m for one in points], levels)
-    view = view_section(pack, line, None)
-    wide = draw_section(view)
-    return {"wide": wide, "narrow": draw_section(view, name="section-narrow", narrow=True)}
 
 
 @require_http_methods(["GET", "HEAD", "POST"])
@@ -125,7 +103,7 @@ def survey(request, code, version):
         **reading_context(run),
     }
     if context["appraisal"] is None:
-        context["figures"] = _drawn(pack)
+        context["figures"] = drawn_alone(pack)
     return render(request, "structures/survey.html", context)
 
 

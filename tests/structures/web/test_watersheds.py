@@ -93,7 +93,7 @@ def test_a_kind_that_a_role_may_not_enter_is_not_offered(client, site):
 def test_a_look_at_a_list_serves_its_own_hand_only(client, office, site):
     page = hand_in(office, "sites", SITES)
     client.force_login(make.an_engineer(site.watershed.district))
-    assert keep(client, page).status_code == 404
+    assert keep(client, page).status_code == 422
     assert Site.objects.count() == 1
 
 
