@@ -137,6 +137,7 @@ AUTH_PASSWORD_VALIDATORS = [
 
 # --- The API ----------------------------------------------------------------------------------
 KNOX_TOKEN_MODEL = "structures.DeviceToken"  # noqa: S105 -- the name of a table
+MIGRATION_MODULES = {"knox": None}  # its own table of tokens would stand empty beside ours
 REST_KNOX = {"TOKEN_TTL": timedelta(days=14)}  # a field season's phone signs in twice a month
 REST_FRAMEWORK = {
     # The first one names what a 401 asks for.
@@ -172,6 +173,10 @@ SPECTACULAR_SETTINGS = {
     "SWAGGER_UI_DIST": "SIDECAR",
     "SWAGGER_UI_FAVICON_HREF": "SIDECAR",
     "COMPONENT_SPLIT_REQUEST": True,
+    "POSTPROCESSING_HOOKS": [
+        "drf_spectacular.hooks.postprocess_schema_enums",
+        "structures.api.schema.tell_media_types",
+    ],
 }
 
 # --- Files ------------------------------------------------------------------------------------

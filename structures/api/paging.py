@@ -9,3 +9,16 @@ class Pages(PageNumberPagination):
     page_size = 50
     page_size_query_param = "page_size"
     max_page_size = 500
+
+    def get_paginated_response_schema(self, schema):
+        place = {"type": ["string", "null"], "format": "uri"}
+        return {
+            "type": "object",
+            "required": ["count", "next", "previous", "results"],
+            "properties": {
+                "count": {"type": "integer"},
+                "next": place,
+                "previous": place,
+                "results": schema,
+            },
+        }

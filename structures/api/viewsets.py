@@ -34,7 +34,7 @@ from structures.errors import Refused
 from structures.queries.districts import visible_districts, visible_watersheds
 from structures.queries.received import received_files
 from structures.queries.run_results import result_of
-from structures.queries.runs import visible_runs
+from structures.queries.runs import runs_of_kind, visible_runs
 from structures.queries.sites import search_sites, visible_sites
 from structures.queries.structures import visible_structures
 from structures.queries.surveys import visible_soundings, visible_surveys
@@ -50,8 +50,15 @@ class Collection(LimitedBody, mixins.ListModelMixin, mixins.RetrieveModelMixin, 
 
     def get_queryset(self):
         if getattr(self, "swagger_fake_view", False):
-            return None  # the schema is made for nobody, who sees no rows
+            return self.of_nobody()
         return self.visible(self.request.user)
+
+    def visible(self, user):
+        return self.query(user)
+
+    def of_nobody(self):
+        """Give rows for the schema, which only looks at what kind they are."""
+        return self.query(self.request.user)
 
     def get_serializer_class(self):
         if self.action == "retrieve" and self.whole_serializer_class is not None:
@@ -67,7 +74,7 @@ class Watersheds(Collection):
     ordering = ("code",)
     lookup_field = "code"
     lookup_value_regex = "[^/]+"
-    visible = staticmethod(visible_watersheds)
+    query = staticmethod(visible_watersheds)
 
 
 class Sites(Collection):
@@ -78,6 +85,7 @@ class Sites(Collection):
     ordering = ("code",)
     lookup_field = "code"
     lookup_value_regex = "[^/]+"
+    query = staticmethod(visible_sites)
 
     def visible(self, user):
         found = search_sites(user, self.request.query_params.get("q", ""))
@@ -167,7 +175,7 @@ class Surveys(Collection):
     ordering_fields = ("at", "site__code", "version")
     ordering = ("-at", "-id")
     lookup_value_regex = "[0-9]+"
-    visible = staticmethod(visible_surveys)
+    query = staticmethod(visible_surveys)
 
 
 class SiteSurveys(Surveys):
@@ -224,7 +232,7 @@ class Soundings(Collection):
     ordering_fields = ("offset_m", "survey__site__code", "label", "id")
     ordering = ("survey__site__code", "-survey__version", "order")
     lookup_value_regex = "[0-9]+"
-    visible = staticmethod(visible_soundings)
+    query = staticmethod(visible_soundings)
 
 
 class Structures(Collection):
@@ -235,7 +243,7 @@ class Structures(Collection):
     lookup_field = "site__code"
     lookup_url_kwarg = "code"
     lookup_value_regex = "[^/]+"
-    visible = staticmethod(visible_structures)
+    query = staticmethod(visible_structures)
 
 
 class Uploads(Collection):
@@ -244,7 +252,7 @@ class Uploads(Collection):
     ordering_fields = ("at", "name", "size", "kind")
     ordering = ("-at", "-id")
     lookup_value_regex = "[0-9]+"
-    visible = staticmethod(received_files)
+    query = staticmethod(received_files)
 
 
 class Runs(Collection):
@@ -254,7 +262,10 @@ class Runs(Collection):
     ordering_fields = ("created_at", "finished_at", "state", "kind")
     ordering = ("-created_at", "id")
     lookup_value_regex = "[0-9a-f-]{36}"
-    visible = staticmethod(visible_runs)
+    query = staticmethod(visible_runs)
+
+    def of_nobody(self):
+        return runs_of_kind("")
 
     def retrieve(self, request, *args, **kwargs):
         run = self.get_object()
