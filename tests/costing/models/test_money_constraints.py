@@ -95,45 +95,38 @@ def test_a_component_that_cannot_be(schedule, wrong):
     refused(RateComponent, rate=schedule.rates.first(), order=1, **values)
 
 
-@pytest.mark.parametrize(
-    "wrong",
-    [
-        {"amount": None},
-        {"quantity": None},
-        {"rate": None},
-        {"rate": 0, "amount": 0},
-        {"from_m": 1.5, "to_m": 1.5},
-        {"from_m": 1.5, "to_m": None},
-        {"order": 1},
-    ],
+WRONG_LINES = (
+    {"amount": None},
+    {"quantity": None},
+    {"rate": None},
+    {"rate": 0, "amount": 0},
+    {"from_m": 1.5, "to_m": 1.5},
+    {"from_m": 1.5, "to_m": None},
+    {"order": 1},
 )
-def test_a_line_that_cannot_be(estimate, wrong):
-    values = {"order": 99, "item": "clay", "unit": "m3", "quantity": 2, "rate": 3, "amount": 6}
-    refused(EstimateLine, estimate=estimate, **{**values, **wrong})
-
-
-@pytest.mark.parametrize("known", [{"quantity": None}, {"rate": None}])
-def test_a_line_not_known_keeps_its_place(estimate, known):
-    values = {"item": "clay", "unit": "m3", "quantity": 2, "rate": 3, "amount": None, **known}
-    assert EstimateLine.objects.create(estimate=estimate, order=99, **values).pk
-
-
-@pytest.mark.parametrize(
-    "wrong",
-    [
-        {"version": 1},
-        {"total": Decimal("107.01")},
-        {"subtotal": Decimal(-1), "total": Decimal(6)},
-        {"sanction": Decimal("106.99")},
-        {"sanction": None, "complete": True},
-        {"p10": Decimal(2), "p50": Decimal(1), "p90": Decimal(3)},
-        {"p10": Decimal(1), "p50": None, "p90": Decimal(3)},
-        {"open_flank_share": 1.1},
-    ],
+WRONG_ESTIMATES = (
+    {"version": 1},
+    {"total": Decimal("107.01")},
+    {"subtotal": Decimal(-1), "total": Decimal(6)},
+    {"sanction": Decimal("106.99")},
+    {"sanction": None, "complete": True},
+    {"p10": Decimal(2), "p50": Decimal(1), "p90": Decimal(3)},
+    {"p10": Decimal(1), "p50": None, "p90": Decimal(3)},
+    {"open_flank_share": 1.1},
 )
-def test_an_estimate_that_cannot_be(estimate, wrong):
+
+
+def test_lines_that_cannot_be_and_lines_not_known(estimate):
+    known = {"order": 99, "item": "clay", "unit": "m3", "quantity": 2, "rate": 3, "amount": 6}
+    for wrong in WRONG_LINES:
+        refused(EstimateLine, estimate=estimate, **{**known, **wrong})
+    for order, lacking in enumerate(("quantity", "rate"), start=98):
+        values = {**known, "order": order, "amount": None, lacking: None}
+        assert EstimateLine.objects.create(estimate=estimate, **values).pk
+
+
+def test_estimates_that_cannot_be(estimate):
     run = Run.objects.create(kind="estimate.price", digest="x", version="x")
-    sums = {"subtotal": Decimal(100), "contingency": Decimal(5), "overhead": Decimal(2)}
     values = {
         **{key: getattr(estimate, key) for key in ("site", "design", "survey", "schedule")},
         "version": 2,
@@ -143,12 +136,15 @@ def test_an_estimate_that_cannot_be(estimate, wrong):
         "result": {},
         "complete": True,
         "currency": "INR",
-        "total": Decimal(107),
         "sanction": Decimal(200),
-        **sums,
-        **wrong,
+        "subtotal": Decimal(100),
+        "contingency": Decimal(5),
+        "overhead": Decimal(2),
+        "total": Decimal(107),
     }
-    refused(Estimate, **values)
+    for wrong in WRONG_ESTIMATES:
+        refused(Estimate, **{**values, **wrong})
+    assert Estimate.objects.create(**values).pk
 
 
 def test_estimates_and_rates_are_written_once(estimate):
@@ -183,22 +179,19 @@ def test_the_list_of_such_tables_is_complete():
     assert {one._meta.db_table for one in ours if issubclass(one, Unchanging)} == {*WRITTEN_ONCE}
 
 
-@pytest.mark.parametrize(
-    "statement",
-    [
+@pytest.mark.usefixtures("estimate")
+def test_the_database_refuses_a_change_past_the_program():
+    for statement in (
         "UPDATE costing_estimate SET total = 0",
         "UPDATE costing_estimateline SET amount = 0",
         "UPDATE costing_rate SET rate = 1",
-    ],
-)
-@pytest.mark.usefixtures("estimate")
-def test_the_database_refuses_a_change_past_the_program(statement):
-    with (
-        pytest.raises(DatabaseError, match="is written once"),
-        transaction.atomic(),
-        connection.cursor() as cursor,
     ):
-        cursor.execute(statement)
+        with (
+            pytest.raises(DatabaseError, match="is written once"),
+            transaction.atomic(),
+            connection.cursor() as cursor,
+        ):
+            cursor.execute(statement)
 
 
 def test_a_priced_design_is_frozen(estimate):
