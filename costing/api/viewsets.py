@@ -7,18 +7,21 @@ from http import HTTPStatus
 from drf_spectacular.utils import OpenApiExample, extend_schema
 from rest_framework import exceptions
 from rest_framework.generics import get_object_or_404
+from rest_framework.response import Response
 from rest_framework.reverse import reverse
 
 from costing.actions.estimate import request_estimate
+from costing.actions.schedule import import_schedule, preview_schedule
 from costing.api import filters, serializers
 from costing.queries.estimates import visible_estimates
 from costing.queries.schedules import visible_schedules
 from structures.access import Act
 from structures.actions.devices import Answered
+from structures.api.examples import FORM
 from structures.api.serializers import RunSerializer
-from structures.api.views import insist
+from structures.api.views import RATE_FILES, handed_in, insist, named_district
 from structures.api.viewsets import PROBLEM, Collection
-from structures.api.writes import KEY, once
+from structures.api.writes import DISTRICT, KEY, PREVIEW, is_preview, once
 from structures.queries.sites import visible_sites
 from structures.queries.surveys import surveys_of
 
@@ -30,7 +33,52 @@ class RateSchedules(Collection):
     ordering_fields = ("at", "code", "version", "valid_from", "valid_to")
     ordering = ("-at", "-id")
     lookup_value_regex = "[0-9]+"
-    visible = staticmethod(visible_schedules)
+    query = staticmethod(visible_schedules)
+    parser_classes = RATE_FILES
+
+    @extend_schema(
+        summary="Bring in a rate schedule",
+        description=(
+            "CSV or JSON as the body, or a form with one file. The file's name "
+            "(`Content-Disposition: attachment; filename=...`) is the schedule's where the file "
+            "gives it none. With `preview=true` it is compared with the one before and not kept."
+        ),
+        parameters=[KEY, DISTRICT, PREVIEW],
+        request={
+            "text/csv": {"type": "string"},
+            "application/json": {"type": "object"},
+            "multipart/form-data": FORM,
+        },
+        responses={
+            200: serializers.SchedulePreviewSerializer,
+            201: serializers.RateScheduleWholeSerializer,
+            403: PROBLEM,
+            409: PROBLEM,
+            413: PROBLEM,
+            422: PROBLEM,
+        },
+        filters=False,
+    )
+    def create(self, request):
+        district = named_district(request, Act.IMPORT_SCHEDULE)
+        file = handed_in(request)
+        handed = {
+            "district_id": district.pk,
+            "name": file.name,
+            "data": file.data,
+            "by": request.user,
+        }
+        if is_preview(request):
+            read = preview_schedule(**handed)
+            return Response(serializers.SchedulePreviewSerializer(read).data)
+
+        def write():
+            kept = visible_schedules(request.user).get(pk=import_schedule(**handed).pk)
+            told = serializers.RateScheduleWholeSerializer(kept).data
+            place = reverse("rate-schedules-detail", [kept.pk], request=request)
+            return Answered(HTTPStatus.CREATED, told, {"Location": place})
+
+        return once(request, write)
 
 
 class Estimates(Collection):
@@ -40,7 +88,7 @@ class Estimates(Collection):
     ordering_fields = ("frozen_at", "site__code", "version", "total", "sanction")
     ordering = ("-frozen_at", "-id")
     lookup_value_regex = "[0-9]+"
-    visible = staticmethod(visible_estimates)
+    query = staticmethod(visible_estimates)
 
 
 class SiteEstimates(Estimates):

@@ -18,6 +18,37 @@ SURVEY_BODIES: Final = {
     "application/zip": FILE,
     "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet": FILE,
 }
+OUTLINE_BODIES: Final = {
+    "application/geo+json": {
+        "type": "object",
+        "required": ["type", "features"],
+        "properties": {
+            "type": {"const": "FeatureCollection"},
+            "features": {"type": "array", "minItems": 1, "items": {"type": "object"}},
+        },
+    },
+    "multipart/form-data": FORM,
+}
+OUTLINES: Final = OpenApiExample(
+    "One watershed",
+    {
+        "type": "FeatureCollection",
+        "features": [
+            {
+                "type": "Feature",
+                "properties": {"code": "KE", "name": "Keldun", "stream": "Keldun"},
+                "geometry": {
+                    "type": "Polygon",
+                    "coordinates": [
+                        [[77.4, 15.7], [77.5, 15.7], [77.5, 15.8], [77.4, 15.8], [77.4, 15.7]]
+                    ],
+                },
+            }
+        ],
+    },
+    request_only=True,
+    media_type="application/geo+json",
+)
 NEW_SITE: Final = OpenApiExample(
     "A ford",
     {

@@ -5,7 +5,9 @@ from __future__ import annotations
 import hashlib
 from typing import TYPE_CHECKING, Any, Final, NamedTuple
 
+from django.utils.http import parse_header_parameters
 from rest_framework import exceptions
+from rest_framework.generics import get_object_or_404
 from rest_framework.parsers import BaseParser, MultiPartParser
 from rest_framework.views import APIView
 
@@ -13,6 +15,7 @@ from structures import access
 from structures.api.problems import TooLarge
 from structures.errors import Refused
 from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.queries.districts import visible_districts
 from structures.runs.book import input_digest
 
 if TYPE_CHECKING:
@@ -44,31 +47,40 @@ class OfficeView(LimitedBody, APIView):
 
 
 class JsonFile(BaseParser):
-    """Keeps a body as the file it is, to its last byte."""
+    """Keeps a body as the file it is, to its last byte, under the name its sender gives it."""
 
     media_type = "application/json"
-    name = "survey.json"
+    ending = "json"
 
     def parse(self, stream, media_type=None, parser_context=None):
-        return Handed(self.name, stream.read())
+        said = parser_context["request"].META.get("HTTP_CONTENT_DISPOSITION", "")
+        _, parts = parse_header_parameters(said)
+        return Handed(parts.get("filename") or f"body.{self.ending}", stream.read())
 
 
 class ZipFile(JsonFile):
     media_type = "application/zip"
-    name = "survey.zip"
+    ending = "zip"
 
 
 class Workbook(JsonFile):
     media_type = "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet"
-    name = "survey.xlsx"
+    ending = "xlsx"
 
 
 class CsvFile(JsonFile):
     media_type = "text/csv"
-    name = "rates.csv"
+    ending = "csv"
+
+
+class GeoJsonFile(JsonFile):
+    media_type = "application/geo+json"
+    ending = "geojson"
 
 
 SURVEY_FILES: Final = (JsonFile, MultiPartParser, ZipFile, Workbook)
+RATE_FILES: Final = (CsvFile, JsonFile, MultiPartParser)
+OUTLINE_FILES: Final = (GeoJsonFile, JsonFile, MultiPartParser)
 
 
 def handed_in(request: Request) -> Handed:
@@ -98,6 +110,21 @@ def body_digest(request: Request) -> str:
 
 def _file_digest(data: bytes) -> str:
     return hashlib.sha256(data).hexdigest()
+
+
+def named_district(request: Request, act: access.Act) -> Any:
+    """Give the district that the address names, or the only one where the user may do that."""
+    code = request.query_params.get("district")
+    if code:
+        district = get_object_or_404(visible_districts(request.user), code=code)
+        insist(request.user, act, district)
+        return district
+    found = list(access.districts(request.user, act)[:2])
+    if not found:
+        insist(request.user, act)
+    if len(found) != 1:
+        raise exceptions.ValidationError({"district": ["Name the district in the address."]})
+    return found[0]
 
 
 def insist(user: Any, act: access.Act, thing: Any = None) -> None:

@@ -17,11 +17,20 @@ from structures.access import Act
 from structures.actions.devices import Answered
 from structures.actions.sites import edit_site, enter_site
 from structures.actions.surveys import accept_survey, preview_survey
+from structures.actions.watersheds import bulk_enter_watersheds
 from structures.api import examples, filters, serializers
 from structures.api.geojson import GeoJSONRenderer
 from structures.api.problems import ChangedSince
-from structures.api.views import SURVEY_FILES, LimitedBody, handed_in, insist
+from structures.api.views import (
+    OUTLINE_FILES,
+    SURVEY_FILES,
+    LimitedBody,
+    handed_in,
+    insist,
+    named_district,
+)
 from structures.api.writes import (
+    DISTRICT,
     IF_MATCH,
     KEY,
     PREVIEW,
@@ -75,6 +84,39 @@ class Watersheds(Collection):
     lookup_field = "code"
     lookup_value_regex = "[^/]+"
     query = staticmethod(visible_watersheds)
+    parser_classes = OUTLINE_FILES
+
+    @extend_schema(
+        summary="Enter watersheds",
+        description=(
+            "A GeoJSON FeatureCollection of polygons with `code` and `name`, perhaps `stream` and "
+            "`rain_gauge`, as the body or as the one file of a form; all of it, or nothing."
+        ),
+        parameters=[KEY, DISTRICT],
+        request=examples.OUTLINE_BODIES,
+        responses={
+            201: serializers.WatershedSerializer(many=True),
+            403: PROBLEM,
+            409: PROBLEM,
+            422: PROBLEM,
+        },
+        examples=[examples.OUTLINES],
+        filters=False,
+    )
+    def create(self, request):
+        district = named_district(request, Act.ENTER_WATERSHED)
+        file = handed_in(request)
+
+        def write():
+            kept = bulk_enter_watersheds(
+                district_id=district.pk, name=file.name, data=file.data, by=request.user
+            )
+            codes = [one.code for one in kept]
+            told = visible_watersheds(request.user).filter(code__in=codes)
+            body = serializers.WatershedSerializer(told, many=True).data
+            return Answered(HTTPStatus.CREATED, body)
+
+        return once(request, write)
 
 
 class Sites(Collection):

@@ -39,6 +39,9 @@ IF_MATCH: Final = OpenApiParameter(
     required=True,
     description="The ETag of the site as it was read; another one now is a 412.",
 )
+DISTRICT: Final = OpenApiParameter(
+    "district", str, description="Code; may be left out by who serves in one district only."
+)
 PREVIEW: Final = OpenApiParameter(
     "preview", OpenApiTypes.BOOL, description="Read and judge it, and keep nothing."
 )
