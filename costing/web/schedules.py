@@ -5,7 +5,6 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from django.contrib import messages
-from django.core import signing
 from django.shortcuts import get_object_or_404, redirect, render
 from django.utils.translation import gettext as _
 from django.views.decorators.http import require_http_methods, require_safe
@@ -16,15 +15,12 @@ from costing.web.forms import ScheduleForm
 from structures.access import Act, districts
 from structures.errors import Refused
 from structures.queries.districts import today_of
-from structures.runs.files import keep_bytes, kept_bytes
 from structures.web.lists import sheet_of
+from structures.web.previews import FIELD, agreed, looked_at
 from structures.web.refusals import STATUS
 
 if TYPE_CHECKING:
     from django.http import HttpRequest, HttpResponse
-
-PREVIEW_SECONDS = 12 * 60 * 60  # how long a looked-at file may wait for its yes
-SALT = "costing.schedules.preview"
 
 
 @require_safe
@@ -71,7 +67,7 @@ def schedule_against(request: HttpRequest, pk: int, other: int) -> HttpResponse:
 @require_http_methods(["GET", "HEAD", "POST"])
 def new_schedule(request: HttpRequest) -> HttpResponse:
     """Read a schedule and show what it changes; keep it only at the second, plain yes."""
-    if request.method == "POST" and "looked_at" in request.POST:
+    if request.method == "POST" and FIELD in request.POST:
         return _keep(request)
     where = districts(request.user, Act.IMPORT_SCHEDULE)
     sent = request.method == "POST"
@@ -87,14 +83,8 @@ def new_schedule(request: HttpRequest) -> HttpResponse:
         except Refused as refused:
             context["refused"] = refused
         else:
-            seen = {
-                "district": district.pk,
-                "name": file.name,
-                "digest": keep_bytes(data),
-                "by": request.user.pk,
-            }
             context |= {
-                "looked_at": signing.dumps(seen, salt=SALT),
+                "looked_at": looked_at(request, data, district=district.pk, name=file.name),
                 "name": file.name,
                 "district": district,
             }
@@ -103,19 +93,9 @@ def new_schedule(request: HttpRequest) -> HttpResponse:
 
 
 def _keep(request):
-    try:
-        seen = signing.loads(request.POST["looked_at"], salt=SALT, max_age=PREVIEW_SECONDS)
-    except signing.BadSignature as error:
-        raise Refused(
-            _("What was looked at is no longer there."), remedy=_("Choose the file again.")
-        ) from error
-    if seen["by"] != request.user.pk:
-        raise Refused(_("Somebody else looked at it."), remedy=_("Choose the file again."))
+    said, data = agreed(request)
     kept = import_schedule(
-        district_id=seen["district"],
-        name=seen["name"],
-        data=kept_bytes(seen["digest"]),
-        by=request.user,
+        district_id=said["district"], name=said["name"], data=data, by=request.user
     )
     words = _("%(schedule)s is kept. Open estimates priced at other rates are stale now.")
     messages.success(request, words % {"schedule": kept})
