@@ -5,7 +5,6 @@ from __future__ import annotations
 from typing import Any
 
 from rest_framework.renderers import JSONRenderer
-from rest_framework.utils.serializer_helpers import ReturnDict
 
 
 class GeoJSONRenderer(JSONRenderer):
@@ -15,20 +14,21 @@ class GeoJSONRenderer(JSONRenderer):
     format = "geojson"
 
     def render(self, data, accepted_media_type=None, renderer_context=None):
-        response = renderer_context["response"]
-        if not response.exception and data is not None:
-            data = collection(data) if "results" in data else feature(data)
+        if not renderer_context["response"].exception:
+            data = shape(data)
         return super().render(data, accepted_media_type, renderer_context)
 
 
-def collection(page: dict[str, Any]) -> dict[str, Any]:
-    """Give a page of a list as features; where in the list it stands goes beside them."""
-    features = [feature(record) for record in page["results"]]
-    places = {key: page[key] for key in ("count", "next", "previous")}
+def shape(data: dict[str, Any]) -> dict[str, Any]:
+    """Give a record as a feature, a page of a list as features beside its place in the list."""
+    if "results" not in data:
+        return feature(data)
+    features = [feature(record) for record in data["results"]]
+    places = {key: data[key] for key in ("count", "next", "previous")}
     return {"type": "FeatureCollection", "features": features, **places}
 
 
-def feature(record: ReturnDict | dict[str, Any]) -> dict[str, Any]:
+def feature(record: dict[str, Any]) -> dict[str, Any]:
     """Give a site as a point, a watershed as its outline."""
     properties = dict(record)
     if "outline" in properties:

@@ -113,7 +113,8 @@ class Watersheds(Collection):
             )
             codes = [one.code for one in kept]
             told = visible_watersheds(request.user).filter(code__in=codes)
-            body = serializers.WatershedSerializer(told, many=True).data
+            rows = serializers.WatershedSerializer(told, many=True).data
+            body = {"count": len(rows), "next": None, "previous": None, "results": rows}
             return Answered(HTTPStatus.CREATED, body)
 
         return once(request, write)

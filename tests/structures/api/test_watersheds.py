@@ -30,9 +30,17 @@ def send(client, data, **headers):
 def test_outlines_come_in_and_go_out_again(office):
     answer = send(office, outlines("KE", "LO"))
     assert answer.status_code == 201, answer.content
-    assert [one["code"] for one in answer.json()] == ["KE", "LO"]
+    assert [one["code"] for one in answer.json()["results"]] == ["KE", "LO"]
     told = office.get(f"{PLACE}?format=geojson&code=KE").json()["features"][0]
     assert told["geometry"]["coordinates"] == [FAR]
+
+
+def test_they_are_told_back_as_geojson_where_asked_for(office):
+    answer = send(office, outlines("KE", "LO"), Accept="application/geo+json")
+    assert answer.status_code == 201
+    told = answer.json()
+    assert told["type"] == "FeatureCollection"
+    assert [one["id"] for one in told["features"]] == ["KE", "LO"]
 
 
 def test_one_wrong_outline_keeps_all_of_them_out(office):
