@@ -5,6 +5,7 @@ from __future__ import annotations
 import hashlib
 from typing import TYPE_CHECKING, Any, Final, NamedTuple
 
+from django.utils.cache import patch_cache_control
 from django.utils.http import parse_header_parameters
 from rest_framework import exceptions
 from rest_framework.generics import get_object_or_404
@@ -22,6 +23,7 @@ if TYPE_CHECKING:
     from rest_framework.request import Request
 
 ENVELOPE_BYTES: Final = 100_000  # headings around a file that is sent as a form (project choice)
+NULL: Final = "\0"
 BODY_MOST_BYTES: Final = FILE_MOST_BYTES + ENVELOPE_BYTES
 
 
@@ -32,17 +34,25 @@ class Handed(NamedTuple):
     data: bytes
 
 
-class LimitedBody:
-    """Turns away a body that is too large before any of it is read."""
+class Guarded:
+    """Turns away what no view could use before any of it is read; keeps answers out of caches."""
 
     def initial(self, request: Request, *args: Any, **kwargs: Any) -> None:
         if int(request.META.get("CONTENT_LENGTH") or 0) > BODY_MOST_BYTES:
             limit = FILE_MOST_BYTES // MEGABYTE
             raise TooLarge(f"More than {limit} MB came. Nothing was read. Split it.")
+        # PostgreSQL has no text with a null character in it.
+        if any(NULL in text for text in (request.path, *request.GET.keys(), *request.GET.values())):
+            raise exceptions.ParseError("The address holds a null character.")
         super().initial(request, *args, **kwargs)
 
+    def finalize_response(self, request: Request, response: Any, *args: Any, **kwargs: Any) -> Any:
+        answer = super().finalize_response(request, response, *args, **kwargs)
+        patch_cache_control(answer, private=True, no_store=True)
+        return answer
 
-class OfficeView(LimitedBody, APIView):
+
+class OfficeView(Guarded, APIView):
     pass
 
 

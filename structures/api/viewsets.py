@@ -24,7 +24,7 @@ from structures.api.problems import ChangedSince
 from structures.api.views import (
     OUTLINE_FILES,
     SURVEY_FILES,
-    LimitedBody,
+    Guarded,
     handed_in,
     insist,
     named_district,
@@ -52,7 +52,7 @@ from structures.runs.book import ask_cancel
 PROBLEM = OpenApiResponse(serializers.ProblemSerializer, "what is wrong, and what to do")
 
 
-class Collection(LimitedBody, mixins.ListModelMixin, mixins.RetrieveModelMixin, GenericViewSet):
+class Collection(Guarded, mixins.ListModelMixin, mixins.RetrieveModelMixin, GenericViewSet):
     """A list in pages and its single records; a record that is not visible is not there."""
 
     whole_serializer_class = None

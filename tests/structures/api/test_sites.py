@@ -196,3 +196,24 @@ def test_an_address_that_is_not_there_is_a_problem(client):
     answer = client.get("/api/v1/strips/9")
     assert answer.status_code == 404
     assert answer["Content-Type"] == "application/problem+json"
+
+
+@pytest.mark.parametrize(
+    ("place", "status"),
+    [
+        (f"{SITES}/%00", 400),
+        (f"{SITES}?q=%00", 400),
+        (f"{SITES}/%00/surveys", 400),
+        ("/api/v1/surveys/99999999999999999999999", 404),
+        ("/api/v1/surveys?version=99999999999999999999999", 200),
+        ("/api/v1/runs/------------------------------------", 404),
+        (f"{SITES}?page=0", 404),
+        (f"{SITES}?ordering=password", 200),
+    ],
+)
+def test_an_odd_address_is_answered_in_words(office, place, status):
+    assert office.get(place).status_code == status
+
+
+def test_answers_stay_out_of_caches(office):
+    assert office.get(SITES)["Cache-Control"] == "private, no-store"
