@@ -25,7 +25,7 @@ if TYPE_CHECKING:
     from pathlib import Path
 
 LOOK_EVERY_S: Final = 0.1
-PATIENCE_S: Final = 3.5  # from asking to killing; both children are gone within 5 s
+PATIENCE_S: Final = 3.0  # from asking to killing; both children are gone within 5 s
 LONGEST_PAUSE_S: Final = 30.0
 HEALTHY_AFTER_S: Final = 60.0  # a child that lived so long begins again with the shortest pause
 PR_SET_PDEATHSIG: Final = 1  # from linux/prctl.h

@@ -48,6 +48,7 @@ if TYPE_CHECKING:
 
 METHOD: Final = "2026.12-1"  # raised whenever the same inputs would give other figures
 SEED: Final = 20261201  # stated with every result; the same seed gives the same digits again
+LINE_OVER_TEST: Final = "RK-03"
 DRAWS: Final = int(GROUND["risk_draws"].value)
 NO_SPREAD: Final = "the rock line is settled and nothing varies"
 NO_PRICE: Final = "the estimate is incomplete"
@@ -205,7 +206,9 @@ def _cautions(found: Appraisal) -> Iterable[Caution]:
     elif found.design is not None:
         yield caution("rates-not-given")
     yield from found.water.cautions
-    doubts = found.pack.findings + (() if found.schedule is None else found.schedule.findings)
+    # What the reader says of a settled line over a test, the rock line has said already.
+    doubts = [one for one in found.pack.findings if one.rule != LINE_OVER_TEST]
+    doubts += () if found.schedule is None else found.schedule.findings
     for finding in doubts:
         yield Caution(finding.rule.lower() or "survey", finding.level, finding.sentence())
     if found.soundings or found.refraction:

@@ -56,7 +56,7 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     "rock-untied": (
         "hold",
         (
-            "Soundings alone give the top of weathered or of sheet rock{where}. Good for a preliminary "
+            "Geophysics alone gives the top of weathered or of sheet rock{where}. Good for a preliminary "
             "estimate, for no design: meet rock in a bore, pit or outcrop on the same line."
         ),
     ),
@@ -158,7 +158,7 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
         ),
     ),
     "no-wall": (
-        "warn",
+        "block",
         (
             "Rock stands at or above the crest all along the surveyed line: there is no room for a "
             "wall and none is measured. Look at another line."

@@ -133,7 +133,7 @@ def test_rock_over_the_bed_at_both_toes_leaves_no_room_for_a_wall():
     wall = wall_of(case)
     assert (wall.left_end_m, wall.right_end_m, wall.closed) == (30.0, 50.0, True)
     assert (wall.length_m, wall.greatest_height_m, wall.steepest_slope) == (0.0, 0.0, None)
-    assert codes(case) == [("no-wall", "warn")]
+    assert codes(case) == [("no-wall", "block")]
 
 
 def test_rock_over_the_crest_but_under_the_bed_leaves_two_stubs():
