@@ -30,15 +30,15 @@ def free_port():
 class Site:
     """A started site; what it says is kept in a file beside it."""
 
-    def __init__(self, folder):
+    def __init__(self, folder, *options, **environ):
         self.folder = folder
         self.port = free_port()
         self.said = folder / "said.txt"
         with self.said.open("w") as out:
             self.process = subprocess.Popen(
-                [sys.executable, "manage.py", "start", "--empty", "--port", str(self.port)],
+                [sys.executable, "manage.py", "start", *options, "--port", str(self.port)],
                 cwd=folder,
-                env=clean_environment(),
+                env=clean_environment(**environ),
                 stdout=out,
                 stderr=subprocess.STDOUT,
             )
@@ -71,8 +71,8 @@ class Site:
 
 
 @contextmanager
-def started(folder):
-    site = Site(folder)
+def started(folder, options=("--empty",), **environ):
+    site = Site(folder, *options, **environ)
     try:
         yield site
     finally:
