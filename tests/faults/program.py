@@ -15,7 +15,9 @@ from tests.config import site_copy
 from tests.config.site_copy import clean_environment, whole_copy
 
 TRIAL = Path(__file__).with_name("trial")
-PATIENCE_S = 90  # a worker is up in two seconds, and in ten on a machine with other work
+# The environment is the one of this test run: a killed process must never be one that mends it.
+RUN = "import sys, manage; sys.exit(manage.run_django(sys.argv[1:]))"
+PATIENCE_S = 120  # a worker is up in two seconds, and in ten on a machine with other work
 wait_until = partial(site_copy.wait_until, patience_s=PATIENCE_S)
 
 
@@ -52,7 +54,7 @@ class Program:
         stem = self.folder / f"process-{len(self.processes)}"
         with stem.with_suffix(".out").open("w") as out, stem.with_suffix(".err").open("w") as err:
             process = subprocess.Popen(
-                [sys.executable, "manage.py", *arguments],
+                [sys.executable, "-c", RUN, *arguments],
                 cwd=self.folder,
                 env=clean_environment(**self.environ),
                 stdin=subprocess.DEVNULL,
@@ -64,7 +66,11 @@ class Program:
 
     def command(self, *arguments):
         process = self.begin(*arguments)
-        assert process.wait(PATIENCE_S) == 0, self.said(process, "err")
+        try:
+            status = process.wait(PATIENCE_S)
+        finally:
+            process.kill()
+        assert status == 0, self.said(process, "err")
 
     def worker(self):
         return self.begin("worker")

@@ -17,7 +17,7 @@ FLAGS = [
     *("--disable-background-networking", "--disable-component-update", "--disable-sync"),
 ]
 WIDE = {"width": 1280, "height": 800}
-PATIENCE_S = 90.0
+PATIENCE_S = 300.0  # the first start compresses every script and style sheet
 PAGE_PATIENCE_MS = 60_000  # an appraisal takes a few seconds, more on a machine with other work
 
 
