@@ -9,6 +9,7 @@ from pathlib import Path
 
 import dj_database_url
 from csp.constants import NONE, SELF
+from whitenoise.compress import Compressor
 
 from config.env import WrongEnvironment, read_environment
 from config.secret import own_secret
@@ -187,6 +188,9 @@ STORAGES = {
     "default": {"BACKEND": "django.core.files.storage.FileSystemStorage"},
     "staticfiles": {"BACKEND": "whitenoise.storage.CompressedManifestStaticFilesStorage"},
 }
+# Pages name a file by its digest only. Maps of sources must be there, not be small.
+WHITENOISE_KEEP_ONLY_HASHED_FILES = True
+WHITENOISE_SKIP_COMPRESS_EXTENSIONS = (*Compressor.SKIP_COMPRESS_EXTENSIONS, "map")
 FILE_UPLOAD_PERMISSIONS = 0o640
 
 # --- Language and time ------------------------------------------------------------------------

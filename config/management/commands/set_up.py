@@ -10,6 +10,7 @@ from django.core.management.base import BaseCommand, CommandError
 from django.db import connection
 
 from config.celery import make_folder
+from config.static_files import collect
 from structures.actions.people import WORD_HOURS, invite
 from structures.queries.accounts import anyone_has_a_password
 
@@ -44,7 +45,7 @@ class Command(BaseCommand):
             with connection.cursor() as cursor:
                 # Kept in the file itself: readers no longer wait for the writer.
                 cursor.execute("PRAGMA journal_mode=WAL")
-        call_command("collectstatic", interactive=False, verbosity=0)
+        collect()
         if not empty and "demo" in get_commands() and not has_people():
             call_command("demo")
         if empty:
