@@ -16,6 +16,7 @@ pytestmark = [pytest.mark.browser, pytest.mark.journey]
 
 DEMO = Path("fixtures/demo")
 PRICED = "OD-01"
+REFUSED = 422  # how every page answers a refusal (RFC 9110, 15.5.21)
 LISTS = ("/sites/", "/watersheds/", "/rates/", "/files/", "/runs/", "/entry/", "/help/")
 
 
@@ -46,7 +47,7 @@ def test_who_only_reads_sees_sheet_estimate_and_rates_and_no_way_to_change_them(
         assert page.get_by_role("link", name=way).count() == 0
 
     panel.get_by_role("link", name=re.compile("^Estimate ")).click()
-    expect(page.get_by_role("row").filter(has_text="Total").first).to_contain_text(totals[0])
+    expect(page.locator("tr.total").first).to_contain_text(totals[0])
     page.get_by_role("link", name="RS-2025-26").first.click()
     expect(page.locator("main")).to_contain_text("2,850.00")
 
@@ -54,9 +55,6 @@ def test_who_only_reads_sees_sheet_estimate_and_rates_and_no_way_to_change_them(
     assert page.get_by_label("Survey pack").count() == 0
     for path in (f"/sites/{PRICED}/estimates/", f"/sites/{PRICED}/surveys/1/"):
         assert sent(page, path).status == REFUSED
-
-
-REFUSED = 403
 
 
 def sent(page, path):
@@ -73,7 +71,6 @@ def test_the_auditor_changes_nothing(desk):
         assert page.locator("main").get_by_role("button").count() == 0, path
     page.goto(f"/sites/{PRICED}/")
     assert page.get_by_role("link", name="Change what is written here").count() == 0
-    assert sent(page, f"/sites/{PRICED}/edit/").status in {REFUSED, 422}
 
 
 def test_field_staff_see_no_money_anywhere(desk, totals):
@@ -102,12 +99,8 @@ def test_the_second_district_sees_nothing_of_the_first(desk, totals):
         with (DEMO / table).open(encoding="utf-8", newline="") as rows:
             names |= {row[column] for row in csv.DictReader(rows) for column in columns}
     strange = re.compile("|".join(rf"\b{re.escape(name)}\b" for name in sorted(names - {""})))
-    for path in (*LISTS, "/sites/?q=Nolkurava", "/settings/", f"/sites/{PRICED}/"):
-        answer = page.request.get(path)
-        assert strange.findall(answer.text().replace("q=Nolkurava", "")) in (
-            [],
-            ["Nolkurava"] if "?q=" in path else [],
-        ), path
+    for path in (*LISTS, "/settings/", f"/sites/{PRICED}/"):
+        assert strange.findall(page.request.get(path).text().replace(path, "")) == [], path
     for path in ("", "estimates/", "surveys/1/", "rock/", "try/", "edit/"):
         assert page.request.get(f"/sites/{PRICED}/{path}").status == 404
     page.goto("/sites/?q=Nolkurava")
