@@ -186,7 +186,7 @@ STATIC_URL = "/static/"
 STATIC_ROOT = DATA / "static"
 STORAGES = {
     "default": {"BACKEND": "django.core.files.storage.FileSystemStorage"},
-    "staticfiles": {"BACKEND": "whitenoise.storage.CompressedManifestStaticFilesStorage"},
+    "staticfiles": {"BACKEND": "config.static_storage.StaticStorage"},
 }
 # Pages name a file by its digest only. Maps of sources must be there, not be small.
 WHITENOISE_KEEP_ONLY_HASHED_FILES = True

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 
+import brotli
 import pytest
 
 from config.static_files import collect
@@ -51,3 +52,16 @@ def test_what_no_page_asks_for_is_left_out(source):
     unused.write_text("1")
     collect()
     assert not (source.parents[1] / "to" / "redoc").exists()
+
+
+def test_a_file_is_served_small_and_comes_back_whole(source, settings):
+    """Oracle: brotli's own reader."""
+    settings.STORAGES = {
+        **settings.STORAGES,
+        "staticfiles": {"BACKEND": "config.static_storage.StaticStorage"},
+    }
+    source.write_text("p { color: red }\n" * 200)
+    assert collect()
+    (small,) = settings.STATIC_ROOT.glob("page.*.css.br")
+    assert brotli.decompress(small.read_bytes()) == source.read_bytes()
+    assert not (settings.STATIC_ROOT / "page.css").exists()
