@@ -12,9 +12,10 @@ from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
-from costing.price.money import CENT, GATE_DECIMALS, measured
+from costing.price.money import CENT, measured
 from costing.price.rate_cells import PERCENT_DECIMALS
 from costing.price.rates import BY_LIFTS
+from structures.takeoff.quantity import GATE_DECIMALS
 
 if TYPE_CHECKING:
     from collections.abc import Mapping

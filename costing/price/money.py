@@ -9,7 +9,8 @@ import math
 from decimal import ROUND_CEILING, ROUND_HALF_UP, Decimal
 from typing import Final
 
-GATE_DECIMALS: Final = 6  # handbook 8.4: first to these, so that exact ties survive
+from structures.takeoff.quantity import GATE_DECIMALS
+
 GATE: Final = Decimal(1).scaleb(-GATE_DECIMALS)
 CENT: Final = Decimal("0.01")  # handbook 8.4: quantities, rates and amounts
 HUNDRED: Final = Decimal(100)  # per cent; also the step of the figure for sanction, handbook 8.4

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from structures.drawing.view import GroundTest, RockDrawn, SectionView, WallDrawn
+from structures.ground.gaussian import NORMAL_90
 from structures.wall.stretch import find_bars
 
 if TYPE_CHECKING:
@@ -16,8 +17,6 @@ if TYPE_CHECKING:
     from structures.intake.pack import RockTest, SurveyPack
     from structures.life.cautions import Caution
     from structures.wall.cutoff import Cutoff
-
-SIGMAS_10_TO_90: Final = 1.281552  # half the 10 % to 90 % range in sd, normal law (handbook 4.8)
 
 
 def view_section(
@@ -158,7 +157,7 @@ def _refraction_tests(pack: SurveyPack, rock: RockLine) -> list[GroundTest]:
         shallow = deep = None
         if one is not None:
             depth = float(np.interp(line.offset_m, x, z)) - one.level_m
-            half = SIGMAS_10_TO_90 * one.sd_m
+            half = NORMAL_90 * one.sd_m
             shallow, deep = max(0.0, depth - half), depth + half
         drawn.append(
             GroundTest(line.offset_m, "refraction", line.label, shallow_m=shallow, deep_m=deep)

@@ -17,6 +17,7 @@ from structures.arrays import frozen
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike, NDArray
 
+NORMAL_90: Final = 1.2815515655446004  # 90 % point of the normal law, handbook 8.9
 SWEEPS: Final = 30  # [A] Gibbs equals brute rejection within its own noise from 10 on (measured)
 TRIALS: Final = 4  # [A] rejection is given up when fewer than one trial in four survives
 TAIL: Final = -30.0  # standard bound below which the shares themselves fall out of floats

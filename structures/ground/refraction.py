@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 
 from structures.arrays import frozen
+from structures.ground.gaussian import NORMAL_90
 from structures.ground.rock_tests import REFRACTION_SD
 from structures.ground.sounding import Refusal
 from structures.ground.travel_times import (
@@ -38,7 +39,6 @@ PICKS_DIFFER: Final = (
     "depth. Look at triggers and picks, or shoot again."
 )
 GRID: Final = 80  # [A] thicknesses of each layer that are tried
-NORMAL_90: Final = 1.2815515655446004  # 90 % point of the normal law
 MS: Final = 1000.0  # ms in a second
 
 

@@ -9,6 +9,7 @@ import numpy as np
 from scipy.special import ndtr
 
 from structures.ground.gaussian import (
+    NORMAL_90,
     STEADY,
     Covariance,
     Observations,
@@ -19,6 +20,7 @@ from structures.ground.gaussian import (
 from structures.ground.rock_line import RockLine
 from structures.ground.rock_tests import Gathered, gather, ground_level_m
 from structures.intake.defaults import GROUND
+from structures.intake.line_checks import FOOT_ABOVE_M
 from structures.life.cautions import caution
 
 if TYPE_CHECKING:
@@ -32,11 +34,9 @@ if TYPE_CHECKING:
     from structures.life.cautions import Caution
 
 LOW, HALF, HIGH = 0.10, 0.50, 0.90  # points of the level that are printed, handbook 4.8
-NORMAL_90: Final = 1.2815515655446004  # 90 % point of the normal law, handbook 8.9
 FIT_FROM: Final = 15  # observations, handbook 4.6
 DEPTH_SHARE: Final = 0.25  # of the mean depth, default root of the sill, handbook 4.6
 LEAST_LEVELS: Final = 2  # tests that give a level, handbook 4.7
-ABOVE_TEST_M: Final = 0.05  # [A] a settled line may stand so far above the foot of a probe
 BOUNDS_AT_MOST: Final = 30  # [A] more are thinned, one in each stretch
 THINNED_TO_M: Final = 2.0  # [A] the length of such a stretch
 BITES_SD: Final = 7.0  # [A] a bound higher above the line cuts off less than 1e-11 of its draws
@@ -109,7 +109,7 @@ def _given(
         )
         for bound in gathered.bounds
         if x[0] <= bound.offset_m <= x[-1]
-        and round(float(np.interp(bound.offset_m, x, z)) - bound.level_m, 6) > ABOVE_TEST_M
+        and round(float(np.interp(bound.offset_m, x, z)) - bound.level_m, 6) > FOOT_ABOVE_M
     ]
     differs = [
         found for reading in soundings if (found := _differs(pack, reading, x, z)) is not None

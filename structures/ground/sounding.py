@@ -27,6 +27,7 @@ from structures.ground.sounding_curve import (
     overlap_gaps,
     segment_factors,
 )
+from structures.intake.sounding_checks import READINGS_LEAST
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -40,7 +41,6 @@ METHOD: Final = (
     "Version 1."
 )
 SEED: Final = 1  # [A] stated with every result
-LEAST_READINGS: Final = 8  # field rule SO-08
 LEAST_AB2_M: Final = 15.0  # [A] the prior ends at a third of it: 5 m, a shallow wall
 SPREAD_TO_DEPTH: Final = 5.0  # handbook 2.9: the widest AB/2 over the depth looked for
 LOW, MEDIAN, HIGH = 0.10, 0.50, 0.90  # handbook 4.8
@@ -199,10 +199,10 @@ def interpret(
 def _unfit(readings: Curve) -> Refusal | None:
     """Say why these readings should not be read at all, if so."""
     count, widest = readings.ab2_m.size, readings.ab2_m.max()
-    if count < LEAST_READINGS:
+    if count < READINGS_LEAST:
         return Refusal(
             "too-few-readings",
-            f"only {count} readings, {LEAST_READINGS} are needed to read layers. "
+            f"only {count} readings, {READINGS_LEAST} are needed to read layers. "
             "Keep it as a note, or take the sounding again.",
         )
     if widest < LEAST_AB2_M:

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 
 from structures.intake.defaults import WATER
+from structures.units import HOURS_PER_DAY, SECONDS_PER_DAY, SECONDS_PER_HOUR
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike, NDArray
@@ -19,9 +20,6 @@ if TYPE_CHECKING:
     from structures.intake.pack import GroundWater, Works
     from structures.wall.cutoff import Cutoff
 
-SECONDS_PER_DAY: Final = 86400.0  # exact
-SECONDS_PER_HOUR: Final = 3600.0  # exact
-HOURS_PER_DAY: Final = 24.0  # exact
 WATER_WEIGHT_KN_PER_M3: Final = 9.81  # handbook 6.10
 FOOT_WATER_M: Final = 0.30  # water left over the rock at the foot of the sides, handbook 6.c
 STANDBY_PUMPS: Final = 1  # handbook 6.10

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Final
 
+GATE_DECIMALS: Final = 6  # computed numbers are rounded to these first: exact ties survive (8.4)
 # Item code -> unit, in the order of every list and sheet. Source: the interface's item codes.
 ITEMS: Final[dict[str, str]] = {
     "excavation": "m3",

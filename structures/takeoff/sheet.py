@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 
 from structures.takeoff.markers import count_markers
-from structures.takeoff.quantity import ITEMS, Quantity
+from structures.takeoff.quantity import GATE_DECIMALS, ITEMS, Quantity
 from structures.takeoff.takings import Takings, measure_works
 from structures.takeoff.trench import (
     backfill_m3,
@@ -24,7 +24,6 @@ if TYPE_CHECKING:
     from structures.takeoff.dewatering import Pumping
     from structures.wall.cutoff import Cutoff, Upright
 
-GATE_DECIMALS: Final = 6  # a computed number is rounded to these before it is judged, handbook 8.4
 PIECE_COLUMNS: Final = (  # of a row, as the works of the wall name them
     "length_m",
     "face_area_m2",

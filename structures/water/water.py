@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Final, NamedTuple
 
 from structures.intake.defaults import WATER
 from structures.life.cautions import Caution, caution
+from structures.units import SECONDS_PER_DAY
 from structures.water.leakage import clay_leakage_m3_per_day, face_of
 from structures.water.section_area import Bands, surveyed_section
 from structures.water.storage import storage_m3
@@ -17,7 +18,6 @@ if TYPE_CHECKING:
     from structures.intake.pack import SurveyPack
     from structures.wall.cutoff import Cutoff
 
-SECONDS_PER_DAY: Final = 86400.0  # exact
 LEVEL: Final = "ground_water.water_level_m"
 NO_ROCK: Final = "no rock line is known"
 WORDS: Final = {

@@ -1,0 +1,9 @@
+"""What units are made of, exactly."""
+
+from __future__ import annotations
+
+from typing import Final
+
+SECONDS_PER_HOUR: Final = 3600.0  # exact
+SECONDS_PER_DAY: Final = 86400.0  # exact
+HOURS_PER_DAY: Final = 24.0  # exact
