@@ -5,8 +5,8 @@ from __future__ import annotations
 from django import forms
 from django.utils.translation import gettext_lazy as _
 
-from structures.web.figure_field import FigureField
 from structures.web.people_forms import LICENCE_MOST, day_field
+from structures.web.typed import NumberField
 
 NAME_MOST = 120  # characters, as the table of settings keeps them
 ENGINEER = "E"
@@ -15,7 +15,7 @@ ENGINEER = "E"
 class SettingForm(forms.Form):
     """A value in the place of a default, with who decided it and why."""
 
-    value = FigureField(label=_("Value"))
+    value = NumberField(label=_("Value"), required=True)
     reason = forms.CharField(label=_("Why it is changed"), widget=forms.Textarea(attrs={"rows": 3}))
     decided_by = forms.CharField(label=_("Who decided it"), max_length=NAME_MOST)
     licence_number = forms.CharField(label=_("Licence number"), max_length=LICENCE_MOST)

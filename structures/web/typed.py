@@ -11,22 +11,25 @@ from structures.intake.fields import Field
 from structures.intake.tree import Ledger, Node
 from structures.intake.values import read_value
 
+DECIMAL_COMMA: Final = re.compile(r"\s*([+-]?\d*),(\d+)\s*")
 # Three digits behind one comma may be thousands: such a number stays as it is and is asked about.
-DECIMAL_COMMA: Final = re.compile(r"\s*([+-]?\d+),(\d{1,2}|\d{4,})\s*")
+EITHER: Final = re.compile(r"\s*[+-]?0*[^\D0]\d{0,2},\d{3}\s*")
 
 
 def with_point(text: str) -> str:
     """Give a number with a plain decimal comma its point; any other text stays."""
     matched = DECIMAL_COMMA.fullmatch(text)
-    return f"{matched[1]}.{matched[2]}" if matched else text
+    if matched is None or EITHER.fullmatch(text):
+        return text
+    return f"{matched[1]}.{matched[2]}"
 
 
 class NumberField(forms.CharField):
-    """A number that may be left blank, with the range that is accepted."""
+    """A number, by default one that may be left blank, with the range that is accepted."""
 
-    def __init__(self, *, low=None, high=None, **kwargs):
-        widget = forms.TextInput(attrs={"class": "figure", "inputmode": "decimal"})
-        super().__init__(required=False, widget=widget, **kwargs)
+    def __init__(self, *, low=None, high=None, required=False, **kwargs):
+        attrs = {"class": "figure", "inputmode": "decimal", "autocomplete": "off"}
+        super().__init__(required=required, widget=forms.TextInput(attrs=attrs), **kwargs)
         self.low, self.high = low, high
 
     def clean(self, value):

@@ -114,7 +114,7 @@ def test_an_administrator_enters_another_owners_figure_as_decided_by_a_person(as
 
 @pytest.mark.parametrize(
     ("value", "sentence"),
-    [("9", "outside 0.1 to 0.5"), ("1,500", "thousands or a decimal"), ("x", "no number")],
+    [("9", "outside 0.1 to 0.5"), ("1,500", "no thousands mark"), ("x", "is not a number")],
 )
 def test_a_value_that_cannot_be_is_told_at_its_field(as_role, value, sentence):
     answer = change(as_role(Role.DISTRICT), OF_DISTRICT, value)

@@ -7,7 +7,7 @@ from django.core.exceptions import ValidationError
 from hypothesis import given
 from hypothesis import strategies as st
 
-from structures.web.figure_field import FigureField
+from structures.web.typed import NumberField
 
 
 @pytest.mark.parametrize(
@@ -25,26 +25,35 @@ from structures.web.figure_field import FigureField
 )
 def test_a_figure_is_understood(typed, read):
     """Oracle: the same figure in our digits."""
-    assert FigureField().clean(typed) == read
+    assert NumberField(label="Value", required=True).clean(typed) == read
 
 
 @pytest.mark.parametrize(
     ("typed", "sentence"),
     [
-        ("1,500", "thousands or a decimal"),
-        ("1,500,000", "no number"),
-        ("1.5 m", "no number"),
-        ("nan", "no number"),
-        ("1e999", "no number"),
-        ("1_0", "no number"),
+        ("1,500", "no thousands mark"),
+        ("1,500,000", "no thousands mark"),
+        ("1.5 m", "words behind the number"),
+        ("nan", "not a number"),
+        ("1e999", "too large"),
+        ("1_0", "words behind the number"),
         ("", "required"),
     ],
 )
 def test_what_can_be_read_in_two_ways_or_none_is_asked_again(typed, sentence):
     with pytest.raises(ValidationError, match=sentence):
-        FigureField().clean(typed)
+        NumberField(label="Value", required=True).clean(typed)
 
 
 @given(st.floats(-1e6, 1e6))
 def test_a_number_is_read_back_as_it_is_written(number):
-    assert FigureField().clean(repr(number)) == number
+    assert NumberField(label="Value", required=True).clean(repr(number)) == number
+
+
+def test_a_number_outside_its_range_is_refused_and_a_blank_one_is_not_known():
+    """Law: unknown is never zero."""
+    field = NumberField(label="Thickness", low=0.6, high=1.5)
+    assert field.clean("") is None
+    assert field.clean("0,9") == 0.9
+    with pytest.raises(ValidationError):
+        field.clean("1.6")
