@@ -42,6 +42,17 @@ def validate_outline(outline: Any) -> None:
         raise ValidationError(refused.sentence()) from refused
 
 
+def validate_course(course: Any) -> None:
+    from structures.ground.course import read_course  # noqa: PLC0415 -- 0.3 s, for courses only
+
+    if course is None:
+        return
+    try:
+        read_course(course, "course")
+    except Refused as refused:
+        raise ValidationError(refused.sentence()) from refused
+
+
 def validate_zone(zone: str) -> None:
     if zone not in available_timezones():
         raise ValidationError(f"{zone} is no time zone. Write it like Asia/Kolkata.")

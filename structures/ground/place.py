@@ -127,10 +127,17 @@ def _rings(geometry: object, where: str) -> list[list[tuple[float, float]]]:
         raise Refused(
             f"The outline has more than {RING_MOST} points.", where=where, remedy="Thin it out."
         )
-    return [[_position(point, where) for point in ring] for ring in rings]
+    return [[read_point(point, where) for point in ring] for ring in rings]
 
 
-def _position(point: object, where: str) -> tuple[float, float]:
+def read_point(point: object, where: str) -> tuple[float, float]:
+    """Read one position of a shape: longitude and latitude; a height is left out.
+
+    Raises
+    ------
+    Refused
+        If it is no longitude and latitude.
+    """
     numbers = point[:2] if isinstance(point, list) else []
     plain = [
         float(number)
@@ -144,7 +151,7 @@ def _position(point: object, where: str) -> tuple[float, float]:
         raise Refused(
             f"{NOT_DEGREES} The first point that cannot be one is {lon:g}, {lat:g}.",
             where=where,
-            remedy="Save the outline in WGS 84 degrees, longitude first.",
+            remedy="Save it in WGS 84 degrees, longitude first.",
         )
     return lon, lat
 

@@ -18,7 +18,7 @@ class Upload(models.Model):
     class Kind(models.TextChoices):
         SURVEY = "survey", "survey pack"
         SITES = "sites", "list of sites"
-        WATERSHEDS = "watersheds", "outlines of watersheds"
+        WATERSHEDS = "watersheds", "outlines and streams"
         PROFILES = "profiles", "long profiles"
         RATES = "rates", "rate schedule"
 

@@ -10,7 +10,12 @@ from django.db.models import Q
 from simple_history.models import HistoricalRecords
 
 from structures.intake.fields import CODE_PATTERN
-from structures.validators import validate_currency, validate_outline, validate_zone
+from structures.validators import (
+    validate_course,
+    validate_currency,
+    validate_outline,
+    validate_zone,
+)
 
 CODE = RegexValidator(CODE_PATTERN, "Up to 40 letters, digits, - _ or . without blanks.")
 
@@ -78,8 +83,11 @@ class Watershed(models.Model):
 
 
 class Stream(models.Model):
+    """A stream of a watershed; its course is a GeoJSON line, WGS84, where one was handed in."""
+
     watershed = models.ForeignKey(Watershed, on_delete=models.PROTECT, related_name="streams")
     name = models.CharField(max_length=120)
+    course = models.JSONField(null=True, blank=True, validators=[validate_course])
 
     class Meta:
         ordering = ("name",)

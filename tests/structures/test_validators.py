@@ -26,6 +26,11 @@ from structures.intake.defaults import WALL
             {"type": "Point"},
             "outline: This is no polygon. Send one GeoJSON polygon.",
         ),
+        (
+            validators.validate_course,
+            {"type": "Point"},
+            "course: This is no line. Send a GeoJSON LineString or MultiLineString.",
+        ),
     ],
 )
 def test_what_cannot_be_is_said_in_words(gate, wrong, words):
@@ -54,6 +59,7 @@ def test_none_passes_since_the_field_has_spoken():
         validators.validate_latitude,
         validators.validate_longitude,
         validators.validate_outline,
+        validators.validate_course,
     ):
         gate(None)
     validators.validate_setting("thickness_m", None)

@@ -94,7 +94,7 @@ def test_a_hole_is_not_counted():
             polygon([[771230.5, 1725410.2], [774980.1, 1725300.7], [774550.0, 1729120.9]]),
             (
                 "block 3: These are not longitude and latitude. The first point that cannot be one "
-                "is 771230, 1.72541e+06. Save the outline in WGS 84 degrees, longitude first."
+                "is 771230, 1.72541e+06. Save it in WGS 84 degrees, longitude first."
             ),
         ),
         (
