@@ -10,7 +10,7 @@ from django.core.exceptions import ValidationError
 
 from structures.errors import Refused
 from structures.ground.angle import LATITUDE_MOST, LONGITUDE_MOST
-from structures.intake.defaults import GROUND, WALL
+from structures.intake.defaults import EFFECT, GROUND, OFFICE, RATES, WALL, WORKS
 
 if TYPE_CHECKING:
     from structures.intake.defaults import Default
@@ -18,7 +18,9 @@ if TYPE_CHECKING:
 CURRENCY: Final = re.compile(r"[A-Z]{3}")  # letters of ISO 4217
 DRAWS: Final = "risk_draws"
 # Defaults that an office may change: those that a calculation takes from it.
-CHANGEABLE: Final[dict[str, Default]] = WALL | {DRAWS: GROUND[DRAWS]}
+CHANGEABLE: Final[dict[str, Default]] = (
+    WALL | {DRAWS: GROUND[DRAWS]} | WORKS | RATES | OFFICE | EFFECT
+)
 
 
 def validate_latitude(lat: float | None) -> None:
@@ -72,7 +74,7 @@ def validate_setting(key: str, value: float | None) -> None:
         return
     if not default.low <= value <= default.high:
         raise ValidationError(
-            f"{value:g} {default.unit} is outside {default.low:g} to {default.high:g}."
+            f"{default.written(value)} is outside {default.low:.15g} to {default.high:.15g}."
         )
     if default.whole and value != int(value):
         raise ValidationError(f"{value:g} is not a whole number.")

@@ -7,14 +7,12 @@ from decimal import ROUND_CEILING, Decimal
 from typing import Final, Literal
 
 from costing.price.money import gated, line_amount, percentage
-from structures.intake.defaults import Default
+from structures.intake.defaults import RATES
 
-OVERHEAD_PROFIT: Final = Default(
-    "rate_overhead_profit_percent", 10.0, "%", 0.0, 25.0, "A", "P", "overhead and profit in a rate"
-)
+OVERHEAD_PROFIT: Final = RATES["rate_overhead_profit_percent"]
 OVERHEAD_PROFIT_PERCENT: Final = gated(OVERHEAD_PROFIT.value)
-LEAD_STEP: Final = Default("lead_step_m", 50.0, "m", 25.0, 100.0, "C", "D", "step of lead")
-LIFT_STEP: Final = Default("lift_step_m", 1.5, "m", 1.0, 2.0, "C", "D", "step of lift")
+LEAD_STEP: Final = RATES["lead_step_m"]
+LIFT_STEP: Final = RATES["lift_step_m"]
 
 Kind = Literal["labour", "material", "machinery", "carriage", "water"]
 

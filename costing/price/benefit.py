@@ -7,11 +7,11 @@ from decimal import Decimal
 from typing import Final
 
 from costing.price.money import HUNDRED, gated
-from structures.intake.defaults import Default
+from structures.intake.defaults import RATES
 
-DISCOUNT: Final = Default("discount_percent", 6.0, "%", 2.0, 15.0, "A", "P", "discount rate")
+DISCOUNT: Final = RATES["discount_rate_percent"]
 DISCOUNT_PERCENT: Final = gated(DISCOUNT.value)
-LIFE: Final = Default("life_years", 40, "years", 10, 60, "A", "P", "life of the wall", whole=True)
+LIFE: Final = RATES["life_years"]
 
 
 @dataclass(frozen=True, slots=True)

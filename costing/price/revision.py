@@ -7,16 +7,10 @@ from decimal import Decimal
 from typing import Final
 
 from costing.price.money import HUNDRED, gated, to_cents
-from structures.intake.defaults import Default
+from structures.intake.defaults import OFFICE
 
-TECHNICAL_EXCESS: Final = Default(
-    "technical_excess_percent", 5.0, "%", 0.0, 20.0, "A", "P", "excess over technical sanction"
-)
-APPROVAL_EXCESS: Final = Default(
-    "approval_excess_percent", 10.0, "%", 0.0, 20.0, "P 9", "P", "excess over approval"
-)
-TECHNICAL_EXCESS_PERCENT: Final = gated(TECHNICAL_EXCESS.value)
-APPROVAL_EXCESS_PERCENT: Final = gated(APPROVAL_EXCESS.value)
+TECHNICAL_EXCESS_PERCENT: Final = gated(OFFICE["excess_technical_percent"].value)
+APPROVAL_EXCESS_PERCENT: Final = gated(OFFICE["excess_administrative_percent"].value)
 
 
 @dataclass(frozen=True, slots=True)

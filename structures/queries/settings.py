@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from django.db.models import Q
 
 from structures import access
+from structures.intake.defaults import WALL
 from structures.models import Setting
 from structures.validators import CHANGEABLE, DRAWS
 
@@ -26,7 +27,8 @@ class SettingLine:
     setting: Setting | None
 
     @property
-    def value(self) -> float:
+    def value(self) -> float | None:
+        """What counts; None where the default is the office's to say and it has not spoken."""
         return self.default.value if self.setting is None else self.setting.value
 
 
@@ -43,9 +45,7 @@ def settings_in_force(district: District) -> dict[str, SettingLine]:
 def wall_in_force(district: District) -> dict[str, float]:
     """Wall settings that differ from the defaults, as the `wall` of a survey pack."""
     lines = settings_in_force(district).items()
-    return {
-        key: line.value for key, line in lines if key != DRAWS and line.value != line.default.value
-    }
+    return {key: line.value for key, line in lines if key in WALL and line.value != WALL[key].value}
 
 
 def draws_in_force(district: District) -> int:

@@ -7,8 +7,9 @@ from typing import TYPE_CHECKING, Final
 from django.db.models import Q
 
 from structures import access
-from structures.intake.defaults import GROUND, MONEY, WATER
+from structures.intake.defaults import GROUPS
 from structures.models import District, Setting
+from structures.queries.settings import settings_in_force
 from structures.validators import CHANGEABLE
 
 if TYPE_CHECKING:
@@ -16,13 +17,21 @@ if TYPE_CHECKING:
 
     from structures.intake.defaults import Default
     from structures.models import User
+    from structures.queries.settings import SettingLine
 
 FIXED: Final[tuple[Default, ...]] = tuple(
-    default
-    for table in (GROUND, WATER, MONEY)
-    for key, default in table.items()
-    if key not in CHANGEABLE
+    default for table in GROUPS.values() for key, default in table.items() if key not in CHANGEABLE
 )
+
+
+def settings_by_group(district: District) -> dict[str, list[SettingLine]]:
+    """What counts in a district, in the groups in which the handbook's table is read."""
+    lines = settings_in_force(district)
+    return {
+        words: [lines[key] for key in table if key in lines]
+        for words, table in GROUPS.items()
+        if not lines.keys().isdisjoint(table)
+    }
 
 
 def settings_districts(user: User) -> QuerySet[District]:

@@ -19,6 +19,7 @@ def source_words(mark):
         "P 1": _("reference pages on permissible closing error, second-hand"),
         "P 2": _("TM 5-818-5, Dewatering and Groundwater Control, 1983"),
         "P 9": _("CPWD Works Manual 2012"),
+        "P 13": _("a contractors' summary of 29 CFR 1926 Subpart P, second-hand"),
     }[mark]
 
 
@@ -32,14 +33,45 @@ def owner_words(owner):
 
 
 @register.filter
+def group_words(name):
+    return {
+        "Wall and trench": _("Wall and trench"),
+        "Rock and soundings": _("Rock and soundings"),
+        "Water and pumping": _("Water and pumping"),
+        "Work on site": _("Work on site"),
+        "Estimate": _("Estimate"),
+        "Rates and worth": _("Rates and worth"),
+        "Sanction and approval": _("Sanction and approval"),
+        "Effect of a wall": _("Effect of a wall"),
+    }[name]
+
+
+@register.filter
 def plain(value):
     """A default as it is written: no more decimals than it has, tiny ones in powers of ten."""
-    text = f"{value:g}"
+    text = f"{value:.15g}"  # as many digits as a typed number keeps
     if "e" in text:
         return text
     return number_format(text, len(text.partition(".")[2]), use_l10n=True, force_grouping=True)
 
 
 @register.filter
+def figure_of(default, value):
+    """What counts of a default: its value, or the words for what nobody has said yet."""
+    return default.unset if value is None else plain(value)
+
+
+UNITS = {
+    "-": "",
+    "amount": "",
+    "m2": "m²",
+    "m3/h": "m³/h",
+    "ohm m": "Ω m",
+    "m2 a gang and day": "m² a gang and day",
+    "m3 a gang and day": "m³ a gang and day",
+}
+
+
+@register.filter
 def unit_words(unit):
-    return "" if unit == "-" else {"m2": "m²", "m3/h": "m³/h", "ohm m": "Ω m"}.get(unit, unit)
+    return UNITS.get(unit, unit)

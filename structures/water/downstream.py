@@ -5,12 +5,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Final
 
-from structures.intake.defaults import Default
+from structures.intake.defaults import WATER
 from structures.water.bounds import insist_positive
 
-SHARE_LIMIT: Final = Default(
-    "downstream_limit_percent", 20.0, "%", 5.0, 30.0, "A", "E", "downstream share limit"
-)
+SHARE_LIMIT: Final = WATER["downstream_limit_percent"]
 
 
 @dataclass(frozen=True, slots=True)

@@ -19,6 +19,7 @@ from structures.queries.settings_sheet import (
     changeable_default,
     setting_history,
     setting_of,
+    settings_by_group,
     settings_districts,
 )
 from structures.web.refusals import STATUS, refuse
@@ -38,7 +39,7 @@ def settings(request):
     context = {
         "districts": districts,
         "district": district,
-        "lines": settings_in_force(district).values() if district else (),
+        "groups": settings_by_group(district) if district else {},
         "allowed": _allowed(request.user, district),
         "fixed": FIXED,
         "keeps": administered_districts(request.user),
@@ -73,8 +74,8 @@ def setting(request, key):
         except Refused as refused:
             refuse(form, refused, fields={key: "value"})
         else:
-            told = {"words": default.words, "value": f"{kept.value:g}", "unit": default.unit}
-            messages.success(request, _("%(words)s: %(value)s %(unit)s holds now.") % told)
+            told = {"words": default.words, "value": default.written(kept.value)}
+            messages.success(request, _("%(words)s: %(value)s holds now.") % told)
             return redirect(request.get_full_path())
     context = {
         "default": default,

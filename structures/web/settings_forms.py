@@ -25,12 +25,10 @@ class SettingForm(forms.Form):
         """`on_behalf`: an administrator enters what somebody else decided."""
         super().__init__(*args, **kwargs)
         signed = default.owner == ENGINEER
-        low, high, unit = f"{default.low:g}", f"{default.high:g}", default.unit.strip("-")
         self.fields["value"].label = default.words.capitalize()
-        self.fields["value"].help_text = _("Accepted: %(low)s to %(high)s %(unit)s") % {
-            "low": low,
-            "high": high,
-            "unit": unit,
+        self.fields["value"].help_text = _("Accepted: %(low)s to %(high)s") % {
+            "low": f"{default.low:.15g}",
+            "high": default.written(default.high),
         }
         if signed:
             self.fields["decided_by"].label = _("Licensed engineer who decided it")

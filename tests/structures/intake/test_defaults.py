@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 
-from structures.intake.defaults import GROUND, LEAST_SLOPE, LICENSED_DEPTH_M, MONEY, WALL, WATER
+from structures.intake.defaults import EVERY, LEAST_SLOPE, LICENSED_DEPTH_M, WALL
 from structures.intake.pack import WallSettings
 
 # key: value, lowest and highest accepted, source mark, who may change it
@@ -45,19 +45,62 @@ HANDBOOK_12 = {
     "reciprocity_ms": (2.0, 0.5, 5.0, "A", "P"),
     "contingency_percent": (5.0, 0.0, 15.0, "P 9", "P"),
     "overhead_percent": (2.0, 0.0, 10.0, "A", "P"),
+    "observation_pipes": (2, 2, 100, "A", "D"),
+    "film_thickness_micron": (200, 150, 500, "C", "E"),
+    "trodden_least_m": (0.15, 0.10, 0.25, "C", "E"),
+    "trodden_most_m": (0.20, 0.10, 0.25, "C", "E"),
+    "clay_liquid_limit_percent": (50.0, 50.0, 90.0, "C", "E"),
+    "pump_efficiency": (0.50, 0.2, 0.8, "A", "D"),
+    "se_pit_m": (0.05, 0.05, 5.0, "A", "E"),
+    "se_core_m": (0.10, 0.10, 5.0, "A", "E"),
+    "se_well_m": (0.20, 0.20, 5.0, "A", "E"),
+    "se_refraction_m": (0.5, 0.5, 10.0, "A", "E"),
+    "se_refraction_share": (0.10, 0.10, 0.5, "A", "E"),
+    "se_sounding_m": (0.75, 0.75, 10.0, "A", "E"),
+    "se_sounding_share": (0.15, 0.15, 0.5, "A", "E"),
+    "lead_step_m": (50.0, 25.0, 100.0, "C", "D"),
+    "rate_overhead_profit_percent": (10.0, 0.0, 25.0, "A", "P"),
+    "excess_technical_percent": (5.0, 0.0, 20.0, "A", "P"),
+    "excess_administrative_percent": (10.0, 0.0, 20.0, "P 9", "P"),
+    "discount_rate_percent": (6.0, 2.0, 15.0, "A", "P"),
+    "life_years": (40, 10, 60, "A", "P"),
+    "downstream_limit_percent": (20.0, 5.0, 30.0, "A", "E"),
+    "effect_least_full_years": (2, 1, 20, "A", "P"),
+    "effect_least_m": (0.30, 0.05, 2.0, "A", "E"),
+    "effect_confidence": (0.90, 0.8, 0.99, "A", "P"),
+    "effect_least_pairs": (6, 6, 60, "A", "P"),
+    "effect_months_of_full_year": (10, 8, 12, "A", "P"),
+    "serial_lag": (None, 0, 12, "M", "P"),
+    "progress_excavation_m3_per_day": (80.0, 16.0, 400.0, "A", "D"),
+    "progress_rock_key_m3_per_day": (1.5, 0.3, 7.5, "A", "D"),
+    "progress_clay_m3_per_day": (10.0, 2.0, 50.0, "A", "D"),
+    "progress_film_m2_per_day": (100.0, 20.0, 500.0, "A", "D"),
+    "progress_backfill_m3_per_day": (120.0, 24.0, 600.0, "A", "D"),
+    "clay_pit_from_bund_m": (50.0, 50.0, 1000.0, "C", "E"),
+    "depth_without_entry_m": (1.2, 0.9, 1.2, "A", "E"),
+    "licensed_depth_m": (6.1, 1.5, 6.1, "P 13", "E"),
+    "rate_common_spread_percent": (8.0, 0.0, 30.0, "A", "P"),
 }
-TABLES = {**WALL, **GROUND, **WATER, **MONEY}
 
 
 @pytest.mark.parametrize("key", HANDBOOK_12)
 def test_each_default_is_the_handbook_s(key):
     """Oracle: handbook section 12, as a definition ("the default equals this")."""
-    found = TABLES[key]
+    found = EVERY[key]
     assert (found.value, found.low, found.high, found.source, found.owner) == HANDBOOK_12[key]
 
 
 def test_every_default_lies_in_its_own_range():
-    assert all(one.low <= one.value <= one.high for one in TABLES.values())
+    said = [one for one in EVERY.values() if one.value is not None]
+    assert all(one.low <= one.value <= one.high for one in said)
+    assert all(one.unset for one in EVERY.values() if one.value is None)
+
+
+def test_amounts_are_written_in_full():
+    limit = EVERY["technical_sanction_limit"]
+    assert limit.written(2_500_000.5) == "2500000.5"
+    assert EVERY["clay_k_m_per_s"].written(1e-9) == "1e-09 m/s"
+    assert EVERY["effect_confidence"].written(0.95) == "0.95"
 
 
 def test_a_wall_without_overrides_is_the_table():
