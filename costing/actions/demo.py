@@ -79,7 +79,8 @@ def load_demo(*, folder: Path, password: str) -> Loaded:
 
     engineer = _account("engineer-4")
     hand = {"district_id": district.pk, "by": engineer}
-    bulk_enter_watersheds(**hand, **_file(folder / "watersheds.geojson"))
+    for shapes in ("watersheds.geojson", "streams.geojson"):
+        bulk_enter_watersheds(**hand, **_file(folder / shapes))
     bulk_enter_sites(**hand, name="sites.csv", data=_without(folder / "sites.csv", IN_THE_PACK))
     bulk_enter_profiles(
         **hand, name="long_profiles.csv", data=_without(folder / "long_profiles.csv", ("line_id",))

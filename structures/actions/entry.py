@@ -11,7 +11,7 @@ from structures.access import insist
 from structures.actions.inbox import ACT
 from structures.actions.refusals import as_findings
 from structures.actions.sites import bulk_enter_sites
-from structures.actions.watersheds import bulk_enter_profiles, bulk_enter_watersheds
+from structures.actions.watersheds import Shapes, bulk_enter_profiles, bulk_enter_watersheds
 from structures.models import District, Upload
 
 if TYPE_CHECKING:
@@ -49,8 +49,7 @@ def enter_file(*, kind: str, district_id: int, name: str, data: bytes, by: User)
     kept = ENTER[kind](district_id=district_id, name=name, data=data, by=by)
     # Of the two that are there, the newest is the one just kept.
     upload = Upload.objects.filter(kind=kind, district=district_id, by=by).order_by("-pk").first()
-    names = tuple(str(one) for one in kept) if isinstance(kept, list) else ()
-    return Entry(names, upload.rows_in, as_findings(upload.findings))
+    return Entry(_names(kept), upload.rows_in, as_findings(upload.findings))
 
 
 def preview_entry(*, kind: str, district_id: int, name: str, data: bytes, by: User) -> Entry:
@@ -65,3 +64,9 @@ def preview_entry(*, kind: str, district_id: int, name: str, data: bytes, by: Us
         found = enter_file(kind=kind, district_id=district_id, name=name, data=data, by=by)
         transaction.set_rollback(True)
     return found
+
+
+def _names(kept: Any) -> tuple[str, ...]:
+    if isinstance(kept, Shapes):
+        return kept.names
+    return tuple(str(one) for one in kept) if isinstance(kept, list) else ()

@@ -1,4 +1,4 @@
-"""Entering watersheds from GeoJSON outlines, and long profiles of their sites from a list."""
+"""Entering watersheds and courses of streams from GeoJSON, and long profiles from a list."""
 
 from __future__ import annotations
 
@@ -9,10 +9,19 @@ from simple_history.utils import bulk_create_with_history
 
 from structures import access
 from structures.access import Act, may
+from structures.actions.courses import (
+    Basin,
+    Course,
+    course_of,
+    keep_courses,
+    known_basins,
+    place_courses,
+)
 from structures.actions.inbox import mark_kept, receive_file, refuse_same_file, told_of
 from structures.actions.refusals import as_documents, blocking, field_findings, refusal
 from structures.actions.site_rows import read_profile_point, read_rows
 from structures.errors import Finding, Refused
+from structures.ground.course import KINDS
 from structures.ground.place import read_outline
 from structures.intake.json_form import read_json
 from structures.intake.tree import Ledger
@@ -33,7 +42,9 @@ if TYPE_CHECKING:
 
 REACH_LEAST_M: Final = 100.0  # LP-01, each way
 WEIGHT_SLACK: Final = 1e-6  # weights typed with some decimals still add up to one
-FEATURES: Final = "Send a FeatureCollection of polygons with code and name."
+FEATURES: Final = (
+    "Send a FeatureCollection of polygons with code and name, or of lines with stream."
+)
 
 
 class Draft(NamedTuple):
@@ -45,16 +56,30 @@ class Draft(NamedTuple):
     findings: list[Finding]
 
 
-def bulk_enter_watersheds(*, district_id: int, name: str, data: bytes, by: User) -> list[Watershed]:
-    """Enter watersheds from a GeoJSON file; all of them, or nothing with every finding.
+class Shapes(NamedTuple):
+    """What a file of shapes added: watersheds, and streams that it gave a course."""
 
-    A feature's properties are `code`, `name`, `stream` (one name or a list), and `rain_gauge` (one
-    code) or `rain_gauges` (code to weight). What was mended in an outline is said as a note.
+    watersheds: list[Watershed]
+    streams: list[Stream]
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """One line each, as a page lists them."""
+        courses = (f"{one.watershed.code} {one.name}, course" for one in self.streams)
+        return (*(str(one) for one in self.watersheds), *courses)
+
+
+def bulk_enter_watersheds(*, district_id: int, name: str, data: bytes, by: User) -> Shapes:
+    """Enter watersheds and courses from a GeoJSON file; all, or nothing with every finding.
+
+    A polygon's properties are `code`, `name`, `stream` (one name or a list), and `rain_gauge` (one
+    code) or `rain_gauges` (code to weight). What was mended in an outline is said as a note. A line
+    is the course of the `stream` that it names; `watershed` (a code) says which where two have it.
 
     Raises
     ------
     Refused
-        If an outline cannot be used, or this very file is there already.
+        If an outline or a line cannot be used, or this very file is there already.
     """
     district = District.objects.get(pk=district_id)
     upload = receive_file(kind=Upload.Kind.WATERSHEDS, name=name, data=data, owner=district, by=by)
@@ -62,10 +87,18 @@ def bulk_enter_watersheds(*, district_id: int, name: str, data: bytes, by: User)
         # The district row locks its lists.
         District.objects.select_for_update().get(pk=district_id)
         refuse_same_file(kind=upload.kind, name=upload.name, data=data, district=district, by=by)
-        drafts = _drafts(district, upload.name, data)
-        findings = [one for draft in drafts for one in draft.findings]
-        mark_kept(upload, rows=len(drafts), findings=findings)
-        return _keep(drafts, by)
+        drafts, lines = _drafts(district, upload.name, data)
+        basins = known_basins(district, by)
+        known = {code: basin.watershed for code, basin in basins.items()}
+        for draft in drafts:
+            basins[draft.watershed.code] = Basin(draft.watershed, frozenset(draft.streams))
+        courses, told = place_courses(lines, basins)
+        if blocking(told):
+            raise refusal(told, "file of shapes")
+        findings = [*(one for draft in drafts for one in draft.findings), *told]
+        mark_kept(upload, rows=len(drafts) + len(courses), findings=findings)
+        kept = _keep(drafts, by)
+        return Shapes(kept, keep_courses(courses, known | {one.code: one for one in kept}))
 
 
 def bulk_enter_profiles(*, district_id: int, name: str, data: bytes, by: User) -> int:
@@ -102,20 +135,26 @@ def bulk_enter_profiles(*, district_id: int, name: str, data: bytes, by: User) -
         return len(points)
 
 
-def _drafts(district: District, name: str, data: bytes) -> list[Draft]:
+def _drafts(district: District, name: str, data: bytes) -> tuple[list[Draft], list[Course]]:
+    """Read the features: polygons are watersheds, lines are courses."""
     document = read_json(name, data).value
     features = [document]
     if isinstance(document, dict) and document.get("type") == "FeatureCollection":
         features = document.get("features")
     if not isinstance(features, list) or not features:
-        raise Refused("No outline is here.", where=name, remedy=FEATURES)
+        raise Refused("No outline and no line is here.", where=name, remedy=FEATURES)
     found: list[Finding] = []
     drafts: list[Draft] = []
+    courses: list[Course] = []
     taken = set(Watershed.objects.values_list("code", flat=True))
     for place, feature in enumerate(features):
         where = f"{name} feature {place + 1}"
         try:
-            draft = _draft(district, feature, where)
+            properties = _properties(feature, where)
+            if _is_line(feature):
+                courses.append(course_of(feature, properties, where))
+                continue
+            draft = _draft(district, feature, properties, where)
         except Refused as refused:
             found += refused.findings or [
                 Finding(refused.where or where, "", refused.what, refused.remedy)
@@ -127,14 +166,25 @@ def _drafts(district: District, name: str, data: bytes) -> list[Draft]:
         taken.add(draft.watershed.code)
         drafts.append(draft)
     if found:
-        raise refusal(found, "file of outlines")
-    return drafts
+        raise refusal(found, "file of shapes")
+    return drafts, courses
 
 
-def _draft(district: District, feature: Any, where: str) -> Draft:
+def _properties(feature: Any, where: str) -> dict[str, Any]:
     properties = feature.get("properties") if isinstance(feature, dict) else None
     if not isinstance(properties, dict):
         raise Refused("This is no feature with properties.", where=where, remedy=FEATURES)
+    return properties
+
+
+def _is_line(feature: dict[str, Any]) -> bool:
+    geometry = feature.get("geometry")
+    return isinstance(geometry, dict) and geometry.get("type") in KINDS
+
+
+def _draft(
+    district: District, feature: dict[str, Any], properties: dict[str, Any], where: str
+) -> Draft:
     outline = read_outline(feature.get("geometry"), where)
     notes = [Finding(where, "geometry", words, "", "note", "PL-02") for words in outline.mended]
     code = properties.get("code", feature.get("id"))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from typing import Any
 
 from drf_spectacular.utils import extend_schema_field
 from rest_framework import serializers
@@ -60,12 +61,18 @@ class WatershedSerializer(serializers.Serializer):
     area_km2 = serializers.FloatField(allow_null=True)
     outline = extend_schema_field(GEOMETRY)(serializers.JSONField)()
     streams = serializers.SerializerMethodField()
+    courses = serializers.SerializerMethodField(
+        help_text="stream to its course, a GeoJSON line, where one was handed in"
+    )
     gauges = serializers.SerializerMethodField(help_text="rain gauges with their weights")
     site_count = serializers.IntegerField(help_text="sites that are not closed off")
     findings = FindingSerializer(many=True)
 
     def get_streams(self, watershed) -> list[str]:
         return [one.name for one in watershed.streams.all()]
+
+    def get_courses(self, watershed) -> dict[str, Any]:
+        return {one.name: one.course for one in watershed.streams.all() if one.course}
 
     def get_gauges(self, watershed) -> dict[str, float]:
         return {one.gauge: one.weight for one in watershed.gauges.all()}

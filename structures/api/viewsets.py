@@ -111,7 +111,8 @@ class Watersheds(Collection):
             kept = bulk_enter_watersheds(
                 district_id=district.pk, name=file.name, data=file.data, by=request.user
             )
-            codes = [one.code for one in kept]
+            touched = [*kept.watersheds, *(one.watershed for one in kept.streams)]
+            codes = [one.code for one in touched]
             told = visible_watersheds(request.user).filter(code__in=codes)
             rows = serializers.WatershedSerializer(told, many=True).data
             body = {"count": len(rows), "next": None, "previous": None, "results": rows}

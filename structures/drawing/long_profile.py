@@ -56,7 +56,12 @@ NARROW: Final = Form(97.0, 14.0, 50.0, PHONE_TEXT_MM, PHONE_SMALL_MM, "dw-narrow
 
 
 def draw_profile(
-    reaches: Sequence[Reach], stream: str, *, name: str = "profile", narrow: bool = False
+    reaches: Sequence[Reach],
+    stream: str,
+    *,
+    along_course: bool = False,
+    name: str = "profile",
+    narrow: bool = False,
 ) -> str:
     """Draw the bed along a stream as SVG markup for a page.
 
@@ -68,6 +73,8 @@ def draw_profile(
         Sites in order downstream, each with two levelled points or more.
     stream
         Its name.
+    along_course
+        Whether the way is measured along the stream's course; else straight from site to site.
     name
         Keeps ids apart on one page.
     narrow
@@ -96,7 +103,7 @@ def draw_profile(
             places.take(Box(x1, min(y1, y2) - 0.6, x2, max(y1, y2) + 0.6))
     for reach in reaches:
         _site(sheet, places, frame, reach)
-    sheet.height_mm = _foot(sheet, frame)
+    sheet.height_mm = _foot(sheet, frame, along_course=along_course)
     return sheet.markup()
 
 
@@ -153,7 +160,7 @@ def _site(sheet: Sheet, places: Places, frame: _Frame, reach: Reach) -> None:
         sheet.text((label.x, label.y), reach.code, "mid halo strong")
 
 
-def _foot(sheet: Sheet, frame: _Frame) -> float:
+def _foot(sheet: Sheet, frame: _Frame, *, along_course: bool) -> float:
     """Draw the way downstream below the section; gives the height of the sheet."""
     y = frame.foot
     step_m = round_step((frame.last_m - frame.first_m) / 5.0)
@@ -167,7 +174,8 @@ def _foot(sheet: Sheet, frame: _Frame) -> float:
         sheet.text((x, y + 4.4), f"{place * step_m / KM_M:g}", "mid small")
         place += 1
     times = frame.rise_mm_per_m / frame.mm_per_m
-    words = f"km downstream, straight from site to site; heights {times:.0f} times"
+    way = "along the course" if along_course else "straight from site to site"
+    words = f"km downstream, {way}; heights {times:.0f} times"
     sheet.text((frame.form.left_mm, y + 9.0), words, "small quiet")
     return y + FOOT_MM
 

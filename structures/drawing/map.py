@@ -1,4 +1,4 @@
-"""Watersheds and sites from above: outlines as kept, each site by shape and code, north upwards."""
+"""Watersheds, streams and sites from above: lines as kept, each site by shape and code, north up."""
 
 from __future__ import annotations
 
@@ -35,6 +35,8 @@ WORDS: Final = {
     "cross": "halted or closed off",
 }
 
+COURSE: Final = "stream"  # in the key
+
 
 @dataclass(frozen=True, slots=True)
 class Outline:
@@ -43,6 +45,14 @@ class Outline:
     code: str
     name: str
     rings: tuple[tuple[Position, ...], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Run:
+    """A stream as the map shows it: its name and the lines of its course."""
+
+    name: str
+    lines: tuple[tuple[Position, ...], ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,16 +95,21 @@ def mark_of(stage: str) -> str:
 
 
 def draw_map(
-    outlines: Sequence[Outline], spots: Sequence[Spot], *, name: str = "map", narrow: bool = False
+    outlines: Sequence[Outline],
+    spots: Sequence[Spot],
+    runs: Sequence[Run] = (),
+    *,
+    name: str = "map",
+    narrow: bool = False,
 ) -> str:
-    """Draw outlines and sites as SVG markup for a page.
+    """Draw outlines, streams and sites as SVG markup for a page.
 
     Source: azimuthal equidistant projection about the middle of what is shown (Snyder 1987, 25).
 
     Parameters
     ----------
-    outlines, spots
-        What to show, at least one of either.
+    outlines, spots, runs
+        What to show, at least one of any.
     name
         Keeps ids apart on one page.
     narrow
@@ -107,21 +122,27 @@ def draw_map(
     """
     positions = [spot.position for spot in spots]
     positions += [place for one in outlines for ring in one.rings for place in ring]
+    positions += [place for run in runs for line in run.lines for place in line]
     if not positions:
-        raise ValueError("a map shows an outline or a site")
+        raise ValueError("a map shows an outline, a stream or a site")
     form = NARROW if narrow else WIDE
     lons, lats = zip(*positions, strict=True)
     origin = ((min(lons) + max(lons)) / 2.0, (min(lats) + max(lats)) / 2.0)
     on_paper = _Paper(form, on_grid(positions, origin), origin)
-    sheet = Sheet(name, form.width_mm, "Map of sites", _describe(outlines, spots), form.css)
+    sheet = Sheet(name, form.width_mm, "Map of sites", _describe(outlines, spots, runs), form.css)
     places = Places(Box(0.0, 0.0, form.width_mm, on_paper.foot_mm), form.text_mm, form.step_mm)
     for outline in outlines:
         for ring in outline.rings:
             sheet.area(on_paper.points(ring), "gap-wash p3")
+    for run in runs:
+        for line in run.lines:
+            sheet.path(on_paper.points(line), "level-a")
     _spots(sheet, places, on_paper.points([spot.position for spot in spots]), spots)
     for outline in outlines:
         _name_outline(sheet, places, on_paper, outline)
-    sheet.height_mm = _foot(sheet, on_paper, spots)
+    for run in runs:
+        _name_run(sheet, places, on_paper, run)
+    sheet.height_mm = _foot(sheet, on_paper, spots, streams=bool(runs))
     return sheet.markup()
 
 
@@ -193,6 +214,21 @@ def _name_outline(sheet: Sheet, places: Places, paper: _Paper, outline: Outline)
         sheet.text((label.x, label.y), label.lines[0], "halo quiet mid")
 
 
+def _name_run(sheet: Sheet, places: Places, paper: _Paper, run: Run) -> None:
+    """Write the stream's name beside its line where there is room, from its middle outwards."""
+    points = paper.points(max(run.lines, key=len))
+    middle = len(points) // 2
+    near = sorted(range(len(points)), key=lambda place: abs(place - middle))
+    label = places.put(
+        Label(points[place][0] + dx, points[place][1] + dy, (run.name,), anchor)
+        for place in near
+        for dx, dy, anchor in ((1.6, -1.0, "start"), (-1.6, 3.0, "end"), (1.6, 3.0, "start"))
+    )
+    if label is not None:
+        end = " end" if label.anchor == "end" else ""
+        sheet.text((label.x, label.y), run.name, f"halo t-water{end}")
+
+
 def _mark(sheet: Sheet, centre: Point, kind: str) -> None:
     x, y = centre
     if kind == "cross":
@@ -206,7 +242,7 @@ def _mark(sheet: Sheet, centre: Point, kind: str) -> None:
         sheet.rect((x - MARK_MM, y - MARK_MM), 2.0 * MARK_MM, 2.0 * MARK_MM, css)
 
 
-def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot]) -> float:
+def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot], *, streams: bool) -> float:
     """Draw scale bar, north and the key below the map; gives the height of the sheet."""
     form, y = paper.form, paper.foot_mm + 3.0
     bar_m = round_step(BAR_SHARE * form.width_mm / paper.mm_per_m)
@@ -228,11 +264,21 @@ def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot]) -> float:
         _mark(sheet, (x, y), kind)
         sheet.text((x + 2.8, y + 0.9), WORDS[kind], "small")
         x += wide
+    if streams:
+        if x + 9.0 + width_mm(COURSE, form.small_mm) > form.width_mm:
+            x, y = EDGE_MM + MARK_MM, y + form.step_mm + 1.0
+        sheet.line((x - MARK_MM, y), (x + 4.0, y), "level-a")
+        sheet.text((x + 5.5, y + 0.9), COURSE, "small")
     return y + 3.0
 
 
-def _describe(outlines: Sequence[Outline], spots: Sequence[Spot]) -> str:
+def _describe(outlines: Sequence[Outline], spots: Sequence[Spot], runs: Sequence[Run]) -> str:
     names = ", ".join(f"{spot.code} ({WORDS[mark_of(spot.stage)]})" for spot in spots)
     sheds = ", ".join(f"{one.name} {one.code}".strip() for one in outlines)
-    parts = [f"Outlines: {sheds}." if sheds else "", f"Sites: {names}." if names else "No site."]
+    streams = ", ".join(run.name for run in runs)
+    parts = [
+        f"Outlines: {sheds}." if sheds else "",
+        f"Streams: {streams}." if streams else "",
+        f"Sites: {names}." if names else "No site.",
+    ]
     return " ".join(part for part in parts if part)

@@ -20,7 +20,7 @@ from structures.life.cautions import CLOSING_SENTENCE
 from structures.life.stages import STAGES
 from structures.queries.districts import visible_districts, visible_watersheds
 from structures.queries.history import changes_of
-from structures.queries.map import outlines_of, spots_of
+from structures.queries.map import outlines_of, runs_of, spots_of
 from structures.queries.sites import (
     newest_rock_line,
     newest_survey,
@@ -52,7 +52,7 @@ def sites(request):
         watersheds = [one for one in watersheds if one.code == chosen["watershed"]]
     if chosen["stage"]:
         found = found.filter(structure__stage=chosen["stage"])
-    outlines, spots = outlines_of(watersheds), spots_of(found)
+    shown = outlines_of(watersheds), spots_of(found), runs_of(watersheds)
     context = {
         "form": form,
         "page": sheet_of(request, found),
@@ -60,9 +60,9 @@ def sites(request):
         "may_enter": any(may(request.user, Act.ENTER_SITE, one) for one in _districts(request)),
         "stages": STAGES,
     }
-    if outlines or spots:
-        context["map_wide"] = draw_map(outlines, spots)
-        context["map_narrow"] = draw_map(outlines, spots, name="map-narrow", narrow=True)
+    if any(shown):
+        context["map_wide"] = draw_map(*shown)
+        context["map_narrow"] = draw_map(*shown, name="map-narrow", narrow=True)
     return render(request, "structures/sites.html", context)
 
 

@@ -9,7 +9,7 @@ from structures.drawing.long_profile import draw_profile
 from structures.drawing.map import draw_map
 from structures.life.stages import STAGES
 from structures.queries.districts import visible_watersheds
-from structures.queries.map import outlines_of, reaches_of, spots_of
+from structures.queries.map import beds_of, outlines_of, runs_of, spots_of
 from structures.queries.sites import visible_sites
 from structures.web.lists import sheet_of
 
@@ -24,25 +24,28 @@ def watersheds(request):
 def watershed(request, code):
     found = get_object_or_404(visible_watersheds(request.user), code=code)
     sites = visible_sites(request.user).filter(watershed=found)
-    outlines, spots = outlines_of([found]), spots_of(sites)
+    shown = outlines_of([found]), spots_of(sites), runs_of([found])
     context = {
         "watershed": found,
         "page": sheet_of(request, sites),
         "stages": STAGES,
         "profiles": _profiles(request.user, found),
     }
-    if outlines or spots:
-        context["map_wide"] = draw_map(outlines, spots)
-        context["map_narrow"] = draw_map(outlines, spots, name="map-narrow", narrow=True)
+    if any(shown):
+        context["map_wide"] = draw_map(*shown)
+        context["map_narrow"] = draw_map(*shown, name="map-narrow", narrow=True)
     return render(request, "structures/watershed.html", context)
 
 
 def _profiles(user, found):
     """Drawings of the bed by stream, wide and narrow, with their figures."""
     drawn = []
-    for place, (stream, reaches) in enumerate(reaches_of(user, found).items(), start=1):
-        name = stream or found.name
-        wide = draw_profile(reaches, name, name=f"profile-{place}")
-        narrow = draw_profile(reaches, name, name=f"profile-narrow-{place}", narrow=True)
-        drawn.append({"stream": name, "wide": wide, "narrow": narrow, "reaches": reaches})
+    for place, bed in enumerate(beds_of(user, found), start=1):
+        stream = bed.stream or found.name
+        said = {"along_course": bed.along_course}
+        wide = draw_profile(bed.reaches, stream, name=f"profile-{place}", **said)
+        narrow = draw_profile(
+            bed.reaches, stream, name=f"profile-narrow-{place}", narrow=True, **said
+        )
+        drawn.append({"stream": stream, "wide": wide, "narrow": narrow, "bed": bed})
     return drawn

@@ -8,7 +8,7 @@ import pytest
 
 from structures.actions.watersheds import bulk_enter_profiles, bulk_enter_watersheds
 from structures.errors import Refused
-from structures.models import LongProfilePoint, Role, Upload, Watershed
+from structures.models import LongProfilePoint, Role, Stream, Upload, Watershed
 from structures.queries.districts import visible_watersheds
 from structures.queries.sites import bed_on_profile_m, long_profile
 from tests.factories import SQUARE, a_district, a_site, a_user, a_watershed, an_engineer
@@ -57,13 +57,13 @@ def test_outlines_become_watersheds(district, engineer):
 def test_one_gauge_counts_whole_and_several_streams_are_named_once(district, engineer):
     (watershed,) = enter(
         district, engineer, feature(stream=["Odre", "Odre", " Bilde "], rain_gauge="R1")
-    )
+    ).watersheds
     assert [stream.name for stream in watershed.streams.all()] == ["Bilde", "Odre"]
     assert [(one.gauge, one.weight) for one in watershed.gauges.all()] == [("R1", 1.0)]
 
 
 def test_an_open_clockwise_outline_is_mended_and_said(district, engineer):
-    (watershed,) = enter(district, engineer, feature(ring=SQUARE[:-1][::-1]))
+    (watershed,) = enter(district, engineer, feature(ring=SQUARE[:-1][::-1])).watersheds
     ring = watershed.outline["coordinates"][0]
     assert ring[0] == ring[-1]
     assert [one["level"] for one in watershed.findings] == ["note", "note"]
@@ -94,7 +94,7 @@ def test_all_findings_come_at_once_and_nothing_is_kept(district, engineer):
         ),
         (
             "w.geojson feature 6: This is no feature with properties. "
-            "Send a FeatureCollection of polygons with code and name."
+            "Send a FeatureCollection of polygons with code and name, or of lines with stream."
         ),
     ]
     assert "These are not longitude and latitude." in found[1]
@@ -104,7 +104,7 @@ def test_all_findings_come_at_once_and_nothing_is_kept(district, engineer):
 
 
 def test_an_empty_collection_is_refused(district, engineer):
-    with pytest.raises(Refused, match="No outline is here"):
+    with pytest.raises(Refused, match="No outline and no line is here"):
         enter(district, engineer)
 
 
@@ -112,6 +112,105 @@ def test_an_empty_collection_is_refused(district, engineer):
 def test_who_may_not_enter_watersheds(district, role):
     with pytest.raises(Refused, match="You may not enter a watershed here"):
         enter(district, a_user(role, district), feature())
+
+
+BEND = [[77.41, 15.72], [77.45, 15.75], [77.49, 15.74]]
+
+
+def course(points=BEND, **properties):
+    return {
+        "type": "Feature",
+        "properties": {"stream": "Odre", **properties},
+        "geometry": {"type": "LineString", "coordinates": points},
+    }
+
+
+class TestCourses:
+    def told(self, refused):
+        return [one.sentence() for one in refused.value.findings]
+
+    def test_a_line_beside_the_outline_is_the_course_of_its_stream(self, district, engineer):
+        kept = enter(district, engineer, feature(stream="Odre"), course())
+        assert kept.names == ("OD Odremma", "OD Odre, course")
+        stream = kept.watersheds[0].streams.get()
+        assert stream.course == {"type": "LineString", "coordinates": BEND}
+        assert Upload.objects.get().rows_in == 2
+
+    def test_a_file_of_its_own_names_the_watershed_and_may_name_the_stream(
+        self, district, engineer
+    ):
+        watershed = a_watershed(district)
+        kept = enter(district, engineer, course(stream="Bilde", watershed="OD"))
+        assert (kept.watersheds, [one.name for one in watershed.streams.all()]) == ([], ["Bilde"])
+
+    def test_a_second_course_takes_the_place_of_the_first_and_says_so(self, district, engineer):
+        enter(district, engineer, feature(stream="Odre"), course())
+        (stream,) = enter(district, engineer, course(BEND[::-1])).streams
+        assert stream.course["coordinates"] == BEND[::-1]
+        assert [(one["level"], one["what"]) for one in Upload.objects.first().findings] == [
+            ("note", "Odre in OD had a course already; this one takes its place.")
+        ]
+
+    def test_a_course_outside_its_watershed_is_doubted(self, district, engineer):
+        enter(district, engineer, feature(stream="Odre"), course([[70.0, 15.0], [70.1, 15.0]]))
+        (doubt,) = Upload.objects.get().findings
+        assert (doubt["level"], doubt["what"]) == (
+            "warn",
+            "The course of Odre lies outside the outline of OD.",
+        )
+
+    def test_every_line_that_cannot_be_placed_is_said_and_nothing_is_kept(self, district, engineer):
+        for code in ("OD", "TA"):
+            a_watershed(district, code).streams.create(name="Odre")
+        with pytest.raises(Refused) as refused:
+            enter(
+                district,
+                engineer,
+                course(),
+                course(stream="Nul"),
+                course(watershed="ZZ"),
+                course(watershed="OD"),
+                course(watershed="OD"),
+            )
+        assert self.told(refused) == [
+            (
+                "w.geojson feature 1, watershed: Odre is a stream of OD and of TA. "
+                "Give the code of its watershed as watershed."
+            ),
+            (
+                "w.geojson feature 2, watershed: No watershed here names a stream Nul. "
+                "Give the code of its watershed as watershed."
+            ),
+            (
+                "w.geojson feature 3, watershed: There is no watershed ZZ where you may enter "
+                "streams. Choose one of: OD, TA."
+            ),
+            (
+                "w.geojson feature 5, stream: The course of Odre in OD stands twice. "
+                "Keep one, or send both lines as one MultiLineString."
+            ),
+        ]
+        assert not Stream.objects.exclude(course=None).exists()
+
+    def test_a_line_without_a_stream_or_without_points_is_refused(self, district, engineer):
+        with pytest.raises(Refused) as refused:
+            enter(district, engineer, course(stream=""), course(points=[[77.4, 15.7]]))
+        assert self.told(refused) == [
+            (
+                "w.geojson feature 1, stream: This line names no stream. "
+                "Give the stream's name as stream, 120 characters at most."
+            ),
+            "w.geojson feature 2: A line has two different points or more. Draw it again.",
+        ]
+
+    def test_an_engineer_of_one_watershed_gives_no_course_to_another(self, district):
+        """As for outlines, the district's whole list is not theirs to enter into."""
+        here = a_watershed(district)
+        a_watershed(district, "TA").streams.create(name="Tavri")
+        hand = an_engineer(district, watersheds=[here])
+        with pytest.raises(Refused):
+            enter(district, hand, course(stream="Tavri"))
+        assert not Stream.objects.exclude(course=None).exists()
 
 
 class TestProfiles:

@@ -29,6 +29,14 @@ def test_water_goes_right_and_levels_keep_their_scale():
     assert lower[0][1] - y1 == pytest.approx((101.0 - 96.0) * (y2 - y1), abs=0.06)
 
 
+@pytest.mark.parametrize(
+    ("along", "words"),
+    [(True, "km downstream, along the course;"), (False, "straight from site to site;")],
+)
+def test_the_foot_says_how_the_way_was_measured(along, words):
+    assert words in draw_profile([UPPER, LOWER], "Odre", along_course=along)
+
+
 def test_sites_are_not_joined_by_a_line():
     assert len(lines(draw_profile([UPPER, LOWER], "Odre", narrow=True))) == 2
 

@@ -6,7 +6,7 @@ import re
 
 import pytest
 
-from structures.drawing.map import WORDS, Outline, Spot, draw_map, mark_of
+from structures.drawing.map import WORDS, Outline, Run, Spot, draw_map, mark_of
 from structures.ground.place import distance_m
 from structures.life.stages import STAGES
 
@@ -39,6 +39,21 @@ def test_north_is_up():
     assert north < south
 
 
+@pytest.mark.parametrize("narrow", [False, True])
+def test_a_stream_runs_through_its_sites_under_its_name(narrow):
+    """Oracle: a site on a bend of the course is drawn on the same place of the paper."""
+    run = Run("Odre", (((77.41, 15.75), (77.45, 15.76), (77.49, 15.75)),))
+    markup = draw_map([], [Spot("A", "", (77.45, 15.76), "noted")], [run], narrow=narrow)
+    course = re.search(r'<polyline class="level-a" points="([^"]+)"', markup)[1].split()
+    assert course[1] == ",".join(f"{part:.2f}" for part in circles(markup)[0])
+    assert re.search(r'<text class="halo t-water[^>]*>Odre</text>', markup)
+    assert ">stream</text>" in markup
+
+
+def test_a_map_without_streams_explains_none():
+    assert ">stream</text>" not in draw_map([SHED], [])
+
+
 def test_every_stage_has_a_shape_that_the_key_explains():
     assert {mark_of(stage) for stage in STAGES} == set(WORDS)
     assert mark_of("noted") == "open circle"
@@ -56,5 +71,5 @@ def test_words_are_escaped_and_a_lone_site_is_drawn(narrow):
 
 
 def test_a_map_of_nothing_is_a_wrong_call():
-    with pytest.raises(ValueError, match="outline or a site"):
+    with pytest.raises(ValueError, match="outline, a stream or a site"):
         draw_map([], [])
