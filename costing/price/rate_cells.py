@@ -76,7 +76,7 @@ def read_rate(node: Node, item: str, ledger: Ledger) -> Decimal | None:
         remedy = "Give it, or leave the row out where it is not known."
         ledger.add(node, f"The rate of {item} is missing.", remedy)
         return None
-    exact = _decimal(node, PERCENTS.get(item, RATE), ledger)
+    exact = read_decimal(node, PERCENTS.get(item, RATE), ledger)
     if exact is None:
         return None
     return _percent(node, exact, ledger) if item in PERCENTS else _price(node, exact, ledger)
@@ -109,7 +109,7 @@ def read_from(node: Node, item: str, ledger: Ledger) -> float | None:
     if item != BY_LIFTS:
         ledger.add(node, f"{item} has no lifts.", f"Leave from_m empty; only {BY_LIFTS} has it.")
         return None
-    depth = _decimal(node, FROM, ledger)
+    depth = read_decimal(node, FROM, ledger)
     return None if depth is None else float(depth)
 
 
@@ -144,7 +144,7 @@ def read_date(node: Node, ledger: Ledger) -> date | None:
     return None
 
 
-def _decimal(node: Node, field: Field, ledger: Ledger) -> Decimal | None:
+def read_decimal(node: Node, field: Field, ledger: Ledger) -> Decimal | None:
     """Read a number exactly; JSON may give it in quotes, as money is written there."""
     value = read_value(replace(node, tabular=True), field, ledger)
     if value is None:
