@@ -31,6 +31,7 @@ from structures.intake.tree import Ledger, Node, shown
 from structures.takeoff.quantity import ITEMS
 
 if TYPE_CHECKING:
+    from collections.abc import Iterable
     from datetime import date
 
     from structures.errors import Finding
@@ -106,12 +107,7 @@ class RateSchedule:
 
         Source: the interface of rate schedules.
         """
-        served = {
-            None if one.from_m is None else gated(one.from_m): one.rate
-            for one in self.rates_of(item)
-        }
-        general = served.get(None)
-        return general if from_m is None else served.get(gated(from_m), general)
+        return serving_rate(self.rates, item, from_m)
 
     def rates_of(self, item: str) -> tuple[Rate, ...]:
         """Rates of an item, one for each lift that has its own."""
@@ -120,6 +116,20 @@ class RateSchedule:
     def ended(self, on: date) -> bool:
         """Has the schedule's last day passed."""
         return self.valid_to is not None and on > self.valid_to
+
+
+def serving_rate(rates: Iterable[Rate], item: str, from_m: float | None = None) -> Decimal | None:
+    """Rate of an item, or of the lift that begins at `from_m`; None where there is none.
+
+    Source: the interface of rate schedules; a lift's own rate goes before the item's.
+    """
+    served = {
+        None if one.from_m is None else gated(one.from_m): one.rate
+        for one in rates
+        if one.item == item
+    }
+    general = served.get(None)
+    return general if from_m is None else served.get(gated(from_m), general)
 
 
 def read_rates(name: str, data: bytes, *, currency_default: str = CURRENCY) -> RateSchedule:

@@ -1,0 +1,93 @@
+"""The invented district's records of works, read from its tables into the records of `billing`."""
+
+from __future__ import annotations
+
+import csv
+from datetime import date, datetime
+from decimal import Decimal
+from functools import cache
+from pathlib import Path
+
+from costing.price.billing import Billed, BillLineAsked, HoldSeen, Measured
+from costing.price.contract import ContractTerms
+from costing.price.payable import BillAsked
+from costing.price.rates import read_rates
+
+DEMO = Path(__file__).parents[2] / "fixtures" / "demo"
+
+
+@cache
+def table(name):
+    with (DEMO / f"{name}.csv").open(encoding="utf-8", newline="") as file:
+        return tuple(csv.DictReader(file))
+
+
+def rows(name, site):
+    return [row for row in table(name) if site in (row.get("structure_id"), row.get("site_id"))]
+
+
+@cache
+def demo_rates():
+    return read_rates("rates.csv", (DEMO / "rates.csv").read_bytes())
+
+
+def contract(**terms):
+    """The district's rates as a contract; nothing else is stated unless the test says so."""
+    return ContractTerms("INR", demo_rates().rates, **terms)
+
+
+def holds(site, strip):
+    return tuple(
+        HoldSeen(
+            row["hold"],
+            datetime.fromisoformat(row["seen_at"]).date()
+            if row["seen_at"] and row["result"].startswith("go")
+            else None,
+        )
+        for row in rows("hold_points", site)
+        if row["strip_no"] == strip
+    )
+
+
+def book(site, billed_before=()):
+    """The measurement book by entry; `billed_before` names bills that were decided."""
+    billed = {
+        row["entry_id"]: Billed(row["bill_id"], int(row["line_no"]))
+        for row in rows("bills", site)
+        if row["bill_id"] in billed_before
+    }
+    return {
+        row["entry_id"]: Measured(
+            entry_id=row["entry_id"],
+            strip=int(row["strip_no"]) or None,
+            item=row["item"],
+            from_m=float(row["from_m"]) if row["from_m"] else None,
+            to_m=float(row["to_m"]) if row["to_m"] else None,
+            quantity=Decimal(row["quantity"]),
+            unit=row["unit"],
+            measured_on=date.fromisoformat(row["measured_on"]),
+            covered_on=date.fromisoformat(row["covered_on"]) if row["covered_on"] else None,
+            measured_by=row["measured_by"],
+            checked_by=row["checked_by"] or None,
+            relies_on=tuple(filter(None, row["relies_on"].split(";"))),
+            holds=holds(site, row["strip_no"]),
+            billed_in=billed.get(row["entry_id"]),
+        )
+        for row in rows("measurements", site)
+    }
+
+
+def bill(site, bill_id, **changes):
+    """One bill as it stands in the table, its total that of its lines."""
+    taken = [row for row in rows("bills", site) if row["bill_id"] == bill_id]
+    lines = tuple(
+        BillLineAsked(
+            int(row["line_no"]),
+            row["entry_id"],
+            *(Decimal(row[key]) for key in ("quantity", "rate", "amount")),
+        )
+        for row in taken
+    )
+    total = sum((Decimal(row["amount"]) for row in taken), start=Decimal(0))
+    said = {"kind": taken[0]["kind"], "currency": taken[0]["currency"], "total": total}
+    return BillAsked(bill_id, **said | {"lines": lines} | changes)
