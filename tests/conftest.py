@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 import pytest
 from django.conf import settings
+from django.db import connection
 from django.test import override_settings
 from hypothesis import settings as hypothesis_settings
 
@@ -13,6 +14,8 @@ from config.celery import app, folder_options
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
+
+    from pytest_django import DjangoDbBlocker
 
 # The same examples every time: a law that fails must fail for everyone.
 hypothesis_settings.register_profile("underbund", deadline=None, derandomize=True)
@@ -46,3 +49,13 @@ def apart_from_the_running_site(tmp_path_factory: pytest.TempPathFactory) -> Ite
         STORAGES=storages,
     ):
         yield
+
+
+@pytest.fixture(scope="session")
+def django_db_setup(django_db_setup: None, django_db_blocker: DjangoDbBlocker) -> None:
+    """Let SQLite empty the register between tests; the test of its trigger puts it back."""
+    with django_db_blocker.unblock(), connection.cursor() as cursor:
+        if connection.vendor == "sqlite":
+            cursor.execute("SELECT name FROM sqlite_master WHERE name LIKE '%\\_kept' ESCAPE '\\'")
+            for (name,) in cursor.fetchall():
+                cursor.execute(f"DROP TRIGGER {name}")

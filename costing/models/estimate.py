@@ -21,7 +21,7 @@ def _sum() -> CombinedExpression:
     return F("subtotal") + F("contingency") + F("overhead")
 
 
-def _money(*, null: bool = False) -> models.DecimalField:
+def money_field(*, null: bool = False) -> models.DecimalField:
     return models.DecimalField(max_digits=MONEY_DIGITS, decimal_places=2, null=null)
 
 
@@ -50,14 +50,14 @@ class Estimate(Unchanging):
     method = models.CharField(max_length=40)
     complete = models.BooleanField()
     currency = models.CharField(max_length=3)
-    subtotal = _money()
-    contingency = _money()
-    overhead = _money()
-    total = _money()
-    sanction = _money(null=True)
-    p10 = _money(null=True)
-    p50 = _money(null=True)
-    p90 = _money(null=True)
+    subtotal = money_field()
+    contingency = money_field()
+    overhead = money_field()
+    total = money_field()
+    sanction = money_field(null=True)
+    p10 = money_field(null=True)
+    p50 = money_field(null=True)
+    p90 = money_field(null=True)
     open_flank_share = models.FloatField(null=True)
     result = models.JSONField()
     asked_by = models.ForeignKey(
@@ -118,7 +118,7 @@ class EstimateLine(Unchanging):
     unit = models.CharField(max_length=10)
     quantity = models.DecimalField(max_digits=MONEY_DIGITS, decimal_places=2, null=True)
     rate = models.DecimalField(max_digits=RATE_DIGITS, decimal_places=2, null=True)
-    amount = _money(null=True)
+    amount = money_field(null=True)
 
     class Meta:
         ordering = ("estimate_id", "order")

@@ -41,7 +41,8 @@ class Posting(models.Model):
     """A person serves in a role in a district, or in named watersheds of it, for some time.
 
     Without named watersheds the whole district is meant. Only an administrator may have no
-    district: that one keeps people and settings everywhere and sees no site by it.
+    district: that one keeps people and settings everywhere and sees no site by it. One that was
+    `delegated_by` somebody who serves so has a last day and is taken back by ending it.
     """
 
     user = models.ForeignKey("structures.User", on_delete=models.PROTECT, related_name="postings")
@@ -56,6 +57,13 @@ class Posting(models.Model):
     watersheds = models.ManyToManyField("structures.Watershed", blank=True, related_name="postings")
     valid_from = models.DateField()
     valid_to = models.DateField(null=True, blank=True)
+    delegated_by = models.ForeignKey(
+        "structures.User",
+        null=True,
+        blank=True,
+        on_delete=models.PROTECT,
+        related_name="delegations",
+    )
     history = HistoricalRecords(m2m_fields=[watersheds])
 
     class Meta:
@@ -69,6 +77,11 @@ class Posting(models.Model):
             models.CheckConstraint(
                 condition=Q(district__isnull=False) | Q(role=Role.ADMIN),
                 name="posting_without_district_is_admin",
+            ),
+            models.CheckConstraint(
+                condition=Q(delegated_by__isnull=True)
+                | (Q(valid_to__isnull=False) & ~Q(delegated_by=F("user"))),
+                name="posting_delegated_ends",
             ),
         )
 

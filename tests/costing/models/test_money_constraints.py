@@ -23,6 +23,11 @@ WRITTEN_ONCE = (
     "costing_ratecomponent",
     "costing_estimate",
     "costing_estimateline",
+    "costing_sanction",
+    "costing_contract",
+    "costing_contractrate",
+    "costing_forecast",
+    "costing_linedecision",
 )
 
 

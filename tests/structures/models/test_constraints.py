@@ -227,6 +227,20 @@ WRITTEN_ONCE = (
     "structures_refractionline",
     "structures_refractionpick",
     "structures_rockline",
+    "structures_entry",
+    "structures_photo",
+    "structures_paper",
+    "structures_question",
+    "structures_answer",
+    "structures_move",
+    "structures_foundlevel",
+    "structures_trenchlook",
+    "structures_daysheet",
+    "structures_incident",
+    "structures_claytest",
+    "structures_verdict",
+    "structures_complaint",
+    "structures_complaintanswer",
 )
 
 
