@@ -2,10 +2,13 @@
 
 from __future__ import annotations
 
+import io
 import json
 from datetime import date
 from itertools import count
 from pathlib import Path
+
+import openpyxl
 
 from costing.actions.schedule import import_schedule
 from structures.actions.surveys import accept_survey
@@ -74,6 +77,19 @@ def pack_bytes(code="EX-A", letter="a", **changes):
     document["site"]["code"] = code
     parts = {**document, **changes}
     return json.dumps({key: part for key, part in parts.items() if part is not None}).encode()
+
+
+def book_bytes(**sheets):
+    """A workbook with a list of rows for each sheet."""
+    book = openpyxl.Workbook()
+    book.remove(book.active)
+    for title, rows in sheets.items():
+        sheet = book.create_sheet(title)
+        for row in rows:
+            sheet.append(row)
+    stream = io.BytesIO()
+    book.save(stream)
+    return stream.getvalue()
 
 
 def a_survey(site, by, **changes):

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Any, Final
 
 from structures.errors import Finding
 from structures.ground.angle import LATITUDE_MOST, LONGITUDE_MOST, read_angle, read_position
+from structures.intake.archive import BOOK, entry_names, is_packed
 from structures.intake.delimited import read_delimited
 from structures.intake.fields import LEVEL_MOST_M, Field
 from structures.intake.tree import Ledger, Node, shown
@@ -72,9 +73,19 @@ PROFILE_FIELDS: Final = (
 Values = dict[str, Any]
 
 
-def read_rows(name: str, data: bytes, ledger: Ledger) -> list[Node]:
-    """Read a CSV list into rows under the names the tables use; none, with findings, if it is none."""
-    table = read_delimited(name, name, data, ledger)
+def read_rows(name: str, data: bytes, title: str, ledger: Ledger) -> list[Node]:
+    """Read a list, CSV or XLSX, into rows under the names the tables use.
+
+    `title` is that of the sheet to read where a workbook has several. None, with findings, where
+    the file is no list.
+    """
+    if is_packed(data) and BOOK in entry_names(data):
+        # The workbook library takes a fifth of a second to load; CSV does without it.
+        from structures.intake.workbook import read_list_sheet  # noqa: PLC0415 -- see above
+
+        table = read_list_sheet(name, data, title, ledger)
+    else:
+        table = read_delimited(name, name, data, ledger)
     return [] if table is None else [_renamed(table, place) for place in range(len(table.rows))]
 
 

@@ -72,7 +72,7 @@ def enter_site(*, district_id: int, values: Values, by: User) -> Site:
 
 
 def bulk_enter_sites(*, district_id: int, name: str, data: bytes, by: User) -> list[Site]:
-    """Enter a list of sites from a CSV file; all of it, or nothing with every finding.
+    """Enter a list of sites from a CSV or XLSX file; all of it, or nothing with every finding.
 
     Raises
     ------
@@ -86,7 +86,7 @@ def bulk_enter_sites(*, district_id: int, name: str, data: bytes, by: User) -> l
         District.objects.select_for_update().get(pk=district_id)
         refuse_same_file(kind=upload.kind, name=upload.name, data=data, district=district, by=by)
         ledger = Ledger()
-        rows = read_rows(upload.name, data, ledger)
+        rows = read_rows(upload.name, data, "sites", ledger)
         drafts = _read(district, rows, ledger, by, thing="list of sites")
         found = [one for draft in drafts for one in draft.findings]
         mark_kept(upload, rows=len(rows), findings=(*ledger.findings, *found))

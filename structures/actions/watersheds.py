@@ -102,7 +102,7 @@ def bulk_enter_watersheds(*, district_id: int, name: str, data: bytes, by: User)
 
 
 def bulk_enter_profiles(*, district_id: int, name: str, data: bytes, by: User) -> int:
-    """Enter bed points of long profiles from a CSV file; a site's earlier points make room.
+    """Enter bed points of long profiles from a CSV or XLSX file; a site's earlier points make room.
 
     Returns
     -------
@@ -253,7 +253,7 @@ def _profiles(
     allowed = {one.pk for one in access.watersheds(by) if may(by, Act.ENTER_PROFILE, one)}
     sites = {site.code: site for site in seen if site.watershed_id in allowed}
     profiles: dict[Site, dict[float, float]] = {}
-    for row in read_rows(name, data, ledger):
+    for row in read_rows(name, data, "profiles", ledger):
         values = read_profile_point(row, ledger)
         if values is None:
             continue

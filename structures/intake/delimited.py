@@ -133,7 +133,7 @@ def _lines(text: str, mark: str, where: str, ledger: Ledger) -> list[Row] | None
             return None
         if len(rows) == LINES_MOST or len(cells) > COLUMNS_MOST:
             what = f"The table has more than {LINES_MOST} rows or {COLUMNS_MOST} columns."
-            ledger.add(Node(None, place), what, "Send one site's survey.", rule="FI-02")
+            ledger.add(Node(None, place), what, "Split it.", rule="FI-02")
             return None
         rows.append(Row(tuple(Cell(_unguarded(cell.strip()), place) for cell in cells), place))
 

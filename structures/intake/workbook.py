@@ -22,6 +22,8 @@ from structures.intake.tree import Node, shown
 if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
+Sheet = tuple[str, list[list[object]]]  # title, rows of cells
+
 LINKS: Final = "xl/_rels/workbook.xml.rels"
 CELLS_MOST: Final = 500_000  # cells of one sheet, empty ones between values included
 TEXT_MOST_BYTES: Final = 10 * FILE_MOST_BYTES  # longest text times cells, before it is spread out
@@ -40,18 +42,10 @@ def read_workbook(name: str, data: bytes, ledger: Ledger) -> list[Table]:
     A formula counts as the value it had when the workbook was saved; one without a value is
     refused at its cell.
     """
-    blocks = ledger.blocks
-    entries = read_archive(name, data, ledger)
-    _check_size(name, entries, ledger)
-    if ledger.blocks > blocks:
+    opened = _open(name, data, ledger)
+    if opened is None:
         return []
-    try:
-        sheets = _sheets(data)
-    except (CalamineError, ValueError, OSError) as error:
-        what = f"The workbook cannot be read: {shown(str(error))}."
-        ledger.add(Node(None, name), what, "Save it again as XLSX.")
-        return []
-    formulas = _formulas(entries)
+    sheets, formulas = opened
     tables = []
     for title, rows in sheets:
         if not is_part(title.strip().lower(), f"{name} {shown(title)[1:-1]}", ledger):
@@ -65,7 +59,54 @@ def read_workbook(name: str, data: bytes, ledger: Ledger) -> list[Table]:
     return tables
 
 
-def _sheets(data: bytes) -> list[tuple[str, list[list[object]]]]:
+def read_list_sheet(name: str, data: bytes, title: str, ledger: Ledger) -> Table | None:
+    """Read the one sheet of a workbook that holds a list: the only filled one, else by its title.
+
+    Returns
+    -------
+    Table or None
+        None where a finding says why it cannot be read.
+    """
+    opened = _open(name, data, ledger)
+    if opened is None:
+        return None
+    sheets, formulas = opened
+    filled = [
+        (one, rows) for one, rows in sheets if any(value != "" for row in rows for value in row)
+    ]
+    chosen = [one for one in filled if one[0].strip().lower() == title] or filled
+    if len(chosen) != 1:
+        what = f"Sheets with something in them: {len(filled)}; none is the one to read."
+        remedy = f"Name one sheet {title}." if filled else "Fill one, and send it again."
+        ledger.add(Node(None, name), what, remedy)
+        return None
+    ((found, rows),) = chosen
+    if len(filled) > 1:
+        what = f"Only the sheet {shown(found)[1:-1]} is read; the others stay in the file."
+        ledger.add(Node(None, name), what, "", level="note", rule="FI-03")
+    _tell_formulas(name, found, rows, formulas.get(found, []), ledger)
+    return _table(name, found, rows, ledger)
+
+
+def _open(
+    name: str, data: bytes, ledger: Ledger
+) -> tuple[list[Sheet], dict[str, list[str]]] | None:
+    """Judge a workbook before it is opened; give its sheets and the addresses of formulas."""
+    blocks = ledger.blocks
+    entries = read_archive(name, data, ledger)
+    _check_size(name, entries, ledger)
+    if ledger.blocks > blocks:
+        return None
+    try:
+        sheets = _sheets(data)
+    except (CalamineError, ValueError, OSError) as error:
+        what = f"The workbook cannot be read: {shown(str(error))}."
+        ledger.add(Node(None, name), what, "Save it again as XLSX.")
+        return None
+    return sheets, _formulas(entries)
+
+
+def _sheets(data: bytes) -> list[Sheet]:
     book = CalamineWorkbook.from_filelike(io.BytesIO(data))
     return [
         (sheet.name, book.get_sheet_by_name(sheet.name).to_python(skip_empty_area=False))
@@ -78,7 +119,7 @@ def _table(name: str, title: str, rows: list[list[object]], ledger: Ledger) -> T
     where = f"{name} {shown(title)[1:-1]}"
     if len(rows) * len(rows[0] if rows else ()) > CELLS_MOST:
         what = f"The sheet has more than {CELLS_MOST} cells."
-        ledger.add(Node(None, where), what, "Send one site's survey.", rule="FI-02")
+        ledger.add(Node(None, where), what, "Save the table alone.", rule="FI-02")
         return None
     lines = [
         Row(

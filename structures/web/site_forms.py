@@ -202,8 +202,8 @@ class EntryForm(forms.Form):
             "required": _("No file was chosen. Choose one."),
             "empty": _("This file is empty. Send it again."),
         },
-        help_text=_("CSV of sites or of bed points, or GeoJSON of watersheds; 20 MB at most."),
-        widget=forms.ClearableFileInput(attrs={"accept": ".csv,.geojson,.json"}),
+        help_text=_("CSV or XLSX of sites or of bed points, GeoJSON of watersheds; 20 MB at most."),
+        widget=forms.ClearableFileInput(attrs={"accept": ".csv,.xlsx,.geojson,.json"}),
     )
 
     def __init__(self, *args, kinds, districts, **kwargs):

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import io
+import zipfile
 from datetime import date
 
 import pytest
@@ -12,7 +14,7 @@ from structures.actions.sites import bulk_enter_sites, edit_site, enter_site, ne
 from structures.errors import Refused
 from structures.models import Role, Site, Structure, Upload
 from structures.queries.sites import visible_sites
-from tests.factories import a_district, a_site, a_user, a_watershed, an_engineer
+from tests.factories import a_district, a_site, a_user, a_watershed, an_engineer, book_bytes
 
 HEADING = "code,watershed,name,stream,lat,lon,accuracy_m,downstream_users"
 GOOD = "OD-01,OD,Nolkurava bend,Odre,15.75,77.45,5,none found within 2 km"
@@ -53,6 +55,90 @@ def test_a_list_becomes_sites_with_stream_and_stage(watershed, engineer):
     assert watershed.streams.count() == 1
     upload = Upload.objects.get()
     assert (upload.rows_in, upload.rows_kept, upload.rows_held) == (2, 2, 0)
+
+
+class TestWorkbook:
+    """A list kept as XLSX: the same rules, each finding at its cell."""
+
+    HEADS = ("code", "watershed", "name", "lat", "lon", "downstream_users")
+    ROW = ("OD-01", "OD", "Nolkurava bend", 15.75, 77.45, "none found within 2 km")
+
+    def enter(self, watershed, by, **sheets):
+        data = book_bytes(**sheets)
+        return bulk_enter_sites(district_id=watershed.district_id, name="s.xlsx", data=data, by=by)
+
+    def test_a_sheet_is_read_as_the_same_list_in_csv_is(self, watershed, engineer):
+        kept = self.enter(watershed, engineer, anything=[self.HEADS, self.ROW])
+        assert [(one.code, one.name, one.lat) for one in kept] == [
+            ("OD-01", "Nolkurava bend", 15.75)
+        ]
+        assert Upload.objects.get().findings == []
+
+    def test_findings_name_the_cell(self, watershed, engineer):
+        wrong = (*self.ROW[:3], 95.0, *self.ROW[4:])
+        nowhere = ("OD-02", "ZZ", "", 15.75, 77.45, "none")
+        with pytest.raises(Refused) as refused:
+            self.enter(watershed, engineer, sites=[self.HEADS, wrong, nowhere])
+        assert sentences(refused) == [
+            (
+                "s.xlsx sites!D2, lat: 95 is no latitude: -90 to 90 degrees. "
+                "Exchanged with the other, or not in degrees?"
+            ),
+            (
+                "s.xlsx sites!B3, watershed: There is no such watershed where you may enter "
+                "sites. Choose one of: OD."
+            ),
+        ]
+        assert not Site.objects.exists()
+
+    def test_of_several_sheets_the_one_named_so_is_read(self, watershed, engineer):
+        kept = self.enter(
+            watershed, engineer, cover=[("Sites of 2026",)], Sites=[self.HEADS, self.ROW], rest=[]
+        )
+        assert len(kept) == 1
+        assert [(one["level"], one["what"]) for one in Upload.objects.get().findings] == [
+            ("note", "Only the sheet Sites is read; the others stay in the file.")
+        ]
+
+    @pytest.mark.parametrize(
+        ("sheets", "sentence"),
+        [
+            (
+                {"one": [("code",)], "two": [("code",)]},
+                (
+                    "s.xlsx: Sheets with something in them: 2; none is the one to read. "
+                    "Name one sheet sites."
+                ),
+            ),
+            (
+                {"one": []},
+                (
+                    "s.xlsx: Sheets with something in them: 0; none is the one to read. "
+                    "Fill one, and send it again."
+                ),
+            ),
+            (
+                {"sites": [HEADS]},
+                "s.xlsx sites: Only headings are here, no row. Fill it, or leave it out.",
+            ),
+        ],
+    )
+    def test_a_workbook_without_a_list_is_refused(self, watershed, engineer, sheets, sentence):
+        with pytest.raises(Refused) as refused:
+            self.enter(watershed, engineer, **sheets)
+        assert sentences(refused) == [sentence]
+
+    def test_a_zip_that_is_no_workbook_is_refused(self, watershed, engineer):
+        data = io.BytesIO()
+        with zipfile.ZipFile(data, "w") as archive:
+            archive.writestr("sites.csv", f"{HEADING}\n{GOOD}")
+        with pytest.raises(Refused, match="This is an archive or a workbook, not a table"):
+            bulk_enter_sites(
+                district_id=watershed.district_id,
+                name="s.zip",
+                data=data.getvalue(),
+                by=engineer,
+            )
 
 
 def test_a_site_begins_on_the_day_of_its_district(db):

@@ -11,7 +11,7 @@ from structures.errors import Refused
 from structures.models import LongProfilePoint, Role, Stream, Upload, Watershed
 from structures.queries.districts import visible_watersheds
 from structures.queries.sites import bed_on_profile_m, long_profile
-from tests.factories import SQUARE, a_district, a_site, a_user, a_watershed, an_engineer
+from tests.factories import SQUARE, a_district, a_site, a_user, a_watershed, an_engineer, book_bytes
 
 pytestmark = pytest.mark.django_db
 
@@ -230,6 +230,17 @@ class TestProfiles:
         points = long_profile(engineer, "EX-A").values_list("distance_upstream_m", "bed_level_m")
         assert (kept, list(points)) == (2, [(-100.0, 99.8), (300.0, 101.4)])
         assert bed_on_profile_m(site) == pytest.approx(100.2)
+
+    def test_points_come_in_from_a_workbook_with_each_cell_named(self, site, engineer):
+        heads = ("code", "distance_upstream_m", "bed_level_m")
+        hand = {"district_id": site.watershed.district_id, "name": "p.xlsx", "by": engineer}
+        wrong = book_bytes(bed=[heads, ("EX-A", -120, 99.8), ("EX-A", 130, "high")])
+        with pytest.raises(Refused) as refused:
+            bulk_enter_profiles(data=wrong, **hand)
+        assert [one.where for one in refused.value.findings] == ["p.xlsx bed!C3"]
+        good = book_bytes(bed=[heads, ("EX-A", -120, 99.8), ("EX-A", 130, 101.4)])
+        assert bulk_enter_profiles(data=good, **hand) == 2
+        assert LongProfilePoint.objects.count() == 2
 
     def test_a_profile_that_does_not_reach_the_site_says_nothing(self, site, engineer):
         self.enter(site, engineer, "EX-A,50,101.4", "EX-A,300,101.9")
