@@ -39,6 +39,27 @@ class Act(StrEnum):
     SET_ENGINEERING = "change an engineering default"
     SET_OFFICE = "change a default of the office"
     SET_PROGRAMME = "change a default of the programme"
+    FILL_IN_PAPER = "fill in a paper"
+    MOVE = "move a structure"
+    ASK = "ask and answer questions"
+    DELEGATE = "let somebody act for you"
+    SANCTION = "give a technical sanction"
+    APPROVE = "give an administrative approval"
+    KEEP_MONEY_LINES = "keep money lines"
+    SIGN_CONTRACT = "enter a signed contract"
+    DECIDE_OPTIONS = "decide an option paper"
+    RECORD_WORKS = "make records at the trench"
+    SEE_HOLD = "see a hold point"
+    SET_ALARM = "set an alarm"
+    LIFT_ALARM = "lift an alarm"
+    MEASURE = "measure up and check measurements"
+    WRITE_BILL = "write a bill"
+    DECIDE_BILL = "decide a bill"
+    ENTER_WELL = "enter a well"
+    PROPOSE_VERDICT = "propose a verdict"
+    REVIEW_VERDICT = "review a verdict"
+    HEAR_COMPLAINT = "take in and answer a complaint"
+    SETTLE_CLASH = "decide which of two records counts"
 
 
 # Source: the office's practice, "people": what each role may and may never do.
@@ -58,6 +79,28 @@ MAY: Final[dict[Act, frozenset[Role]]] = {
     Act.SET_ENGINEERING: frozenset({Role.ENGINEER, Role.ADMIN}),
     Act.SET_OFFICE: frozenset({Role.DISTRICT, Role.ADMIN}),
     Act.SET_PROGRAMME: frozenset({Role.PROGRAMME, Role.ADMIN}),
+    # Which paper and which move a role may make stands in `life`; here, that it makes any.
+    Act.FILL_IN_PAPER: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT, Role.PROGRAMME}),
+    Act.MOVE: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT, Role.PROGRAMME}),
+    Act.ASK: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT, Role.PROGRAMME}),
+    Act.DELEGATE: frozenset({Role.DISTRICT, Role.PROGRAMME}),
+    Act.SANCTION: frozenset({Role.DISTRICT, Role.PROGRAMME}),
+    Act.APPROVE: frozenset({Role.DISTRICT, Role.PROGRAMME}),
+    Act.KEEP_MONEY_LINES: frozenset({Role.PROGRAMME}),
+    Act.SIGN_CONTRACT: frozenset({Role.DISTRICT}),
+    Act.DECIDE_OPTIONS: frozenset({Role.DISTRICT, Role.PROGRAMME}),
+    Act.RECORD_WORKS: frozenset({Role.FIELD, Role.ENGINEER}),
+    Act.SEE_HOLD: frozenset({Role.ENGINEER}),
+    Act.SET_ALARM: frozenset({Role.FIELD, Role.ENGINEER, Role.DISTRICT, Role.PROGRAMME}),
+    Act.LIFT_ALARM: frozenset({Role.ENGINEER, Role.DISTRICT}),
+    Act.MEASURE: frozenset({Role.ENGINEER}),
+    Act.WRITE_BILL: frozenset({Role.ENGINEER}),
+    Act.DECIDE_BILL: frozenset({Role.DISTRICT}),
+    Act.ENTER_WELL: frozenset({Role.FIELD, Role.ENGINEER}),
+    Act.PROPOSE_VERDICT: frozenset({Role.ENGINEER}),
+    Act.REVIEW_VERDICT: frozenset({Role.PROGRAMME}),
+    Act.HEAR_COMPLAINT: frozenset({Role.DISTRICT}),
+    Act.SETTLE_CLASH: frozenset({Role.ENGINEER}),
 }
 # What an administrator of the whole office does everywhere; none of it shows a site.
 OF_THE_OFFICE: Final = frozenset(act for act in MAY if Role.ADMIN in MAY[act]) - {Act.SEE}
