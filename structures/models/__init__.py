@@ -6,6 +6,8 @@ from structures.models.move import Move
 from structures.models.paper import Answer, Paper, Photo, Question
 from structures.models.parcel import Clash, DailyMail, PhoneRecord
 from structures.models.people import Posting, Role, SignInWord, User
+from structures.models.rain import Gauge, RainDay, RainMonth
+from structures.models.readings import ColumnChoice, Reading, Repair, WaterSample
 from structures.models.register import Chain, Entry
 from structures.models.run import Run, WorkerPulse
 from structures.models.season import FirstRun

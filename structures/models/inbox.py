@@ -12,7 +12,8 @@ from django.db.models import F, Q
 class Upload(models.Model):
     """One file as it came. Its bytes lie under their digest; the name is never a path.
 
-    The rows are null until the file has been read. A refused file adds nothing.
+    The rows are null until the file has been read. A refused file adds nothing; one that was taken
+    back added something once, and nothing any more.
     """
 
     class Kind(models.TextChoices):
@@ -21,11 +22,14 @@ class Upload(models.Model):
         WATERSHEDS = "watersheds", "outlines and streams"
         PROFILES = "profiles", "long profiles"
         RATES = "rates", "rate schedule"
+        READINGS = "readings", "readings of wells"
+        RAIN = "rain", "rain"
 
     class Outcome(models.TextChoices):
         RECEIVED = "received", "received, not read to the end"
         KEPT = "kept", "kept"
         REFUSED = "refused", "refused"
+        BACK = "back", "taken back"
 
     district = models.ForeignKey(
         "structures.District", on_delete=models.PROTECT, related_name="uploads"
