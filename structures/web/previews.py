@@ -37,7 +37,10 @@ def agreed(request: HttpRequest) -> tuple[dict[str, Any], bytes]:
         raise _gone() from error
     if who != request.user.pk:
         raise _gone()
-    return said, kept_bytes(digest)
+    try:
+        return said, kept_bytes(digest)
+    except FileNotFoundError as error:
+        raise _gone() from error
 
 
 def _gone() -> Refused:

@@ -59,6 +59,7 @@ urlpatterns = [
     path("entry/", entry.entry, name="entry"),
     path("files/", files.files, name="files"),
     path("files/<int:file_id>/", files.file, name="file"),
+    path("files/<int:file_id>/as-received/", files.as_received, name="file-as-received"),
     path("runs/", runs.runs, name="runs"),
     path("runs/<uuid:run_id>/", runs.run, name="run"),
     path("runs/<uuid:run_id>/cancel/", runs.cancel, name="cancel-run"),

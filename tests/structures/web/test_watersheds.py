@@ -124,6 +124,66 @@ def test_a_file_says_what_became_of_it(office):
         assert said in page
 
 
+class TestAsReceived:
+    """The file itself, handed back to whoever may know what stands in it."""
+
+    def place(self):
+        return f"/files/{Upload.objects.get().pk}/as-received/"
+
+    @pytest.fixture
+    def sent(self, office):
+        data = SITES + b'OD-3,OD,15.77,77.46,"=HYPERLINK(""http://x"")"\n'
+        keep(office, hand_in(office, "sites", data, "<script>\u0939.csv"))
+        return data
+
+    def test_the_bytes_are_the_same_and_the_browser_only_saves_them(self, office, sent):
+        page = words(office.get(f"/files/{Upload.objects.get().pk}/"))
+        assert f'<a href="{self.place()}">' in page
+        answer = office.get(self.place())
+        assert b"".join(answer.streaming_content) == sent
+        assert answer["Content-Type"] == "application/octet-stream"
+        assert answer["X-Content-Type-Options"] == "nosniff"
+        # Oracle: RFC 6266 4.3 and RFC 8187: what is no ASCII stands in filename*, in percents.
+        told = answer["Content-Disposition"]
+        assert told == "attachment; filename*=utf-8''%3Cscript%3E%E0%A4%B9.csv"
+
+    @pytest.mark.usefixtures("sent")
+    def test_a_name_with_line_ends_makes_no_header(self, office):
+        Upload.objects.update(name='a\r\nSet-Cookie: x="1".csv')
+        told = office.get(self.place())["Content-Disposition"]
+        assert told == 'attachment; filename="aSet-Cookie: x=\\"1\\".csv"'
+
+    @pytest.mark.usefixtures("sent")
+    def test_a_list_of_the_district_is_not_handed_to_one_watershed_of_it(self, client, site):
+        district = site.watershed.district
+        make.a_watershed(district, "TA")
+        narrow = make.a_user(Role.FIELD, district, watersheds=[site.watershed])
+        client.force_login(narrow)
+        page = words(client.get(f"/files/{Upload.objects.get().pk}/"))
+        assert "its sender may have it back" in page
+        assert self.place() not in page
+        assert client.get(self.place()).status_code == 404
+        client.force_login(make.a_user(Role.FIELD, district))
+        assert client.get(self.place()).status_code == 200
+        Upload.objects.update(by=narrow)
+        client.force_login(narrow)
+        assert client.get(self.place()).status_code == 200
+
+    @pytest.mark.usefixtures("sent")
+    def test_bytes_that_are_lost_are_said_to_be_lost(self, office, settings, tmp_path):
+        settings.MEDIA_ROOT = tmp_path / "elsewhere"
+        answer = office.get(self.place())
+        assert answer.status_code == 422
+        assert "The bytes of this file are no longer kept." in words(answer)
+
+    def test_a_look_whose_bytes_are_lost_asks_for_the_file_again(self, office, settings, tmp_path):
+        page = hand_in(office, "sites", SITES)
+        settings.MEDIA_ROOT = tmp_path / "elsewhere"
+        answer = keep(office, page)
+        assert answer.status_code == 422
+        assert "What was looked at is no longer there." in words(answer)
+
+
 def test_field_people_see_no_file_of_rates(client, site):
     district = site.watershed.district
     make.a_schedule(district, make.an_engineer(district))
