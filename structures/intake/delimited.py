@@ -40,7 +40,9 @@ def no_table(data: bytes) -> str:
     return next((what for magic, what in NO_TABLES if data.startswith(magic)), "")
 
 
-def read_delimited(name: str, where: str, data: bytes, ledger: Ledger) -> Table | None:
+def read_delimited(
+    name: str, where: str, data: bytes, ledger: Ledger, *, lines_most: int = LINES_MOST
+) -> Table | None:
     """Read a CSV file.
 
     Parameters
@@ -49,6 +51,8 @@ def read_delimited(name: str, where: str, data: bytes, ledger: Ledger) -> Table 
         The part of the pack that the table holds.
     where
         The file, as findings name it.
+    lines_most
+        More rows than these are refused.
 
     Returns
     -------
@@ -59,7 +63,7 @@ def read_delimited(name: str, where: str, data: bytes, ledger: Ledger) -> Table 
     if text is None:
         return None
     mark = _column_mark(text, where, ledger)
-    lines = _lines(text, mark, where, ledger) if mark else None
+    lines = _lines(text, mark, where, lines_most, ledger) if mark else None
     if lines is None:
         return None
     if mark != ",":
@@ -116,7 +120,7 @@ def _same_width(text: str, mark: str) -> bool:
     return len({len(row) for row in rows}) == 1 and len(rows[0]) > 1
 
 
-def _lines(text: str, mark: str, where: str, ledger: Ledger) -> list[Row] | None:
+def _lines(text: str, mark: str, where: str, lines_most: int, ledger: Ledger) -> list[Row] | None:
     """Cut text into rows; a quoted line end keeps the number of the line where the row starts."""
     reader = csv.reader(io.StringIO(text, newline=""), delimiter=mark, strict=True)
     rows = []
@@ -131,8 +135,8 @@ def _lines(text: str, mark: str, where: str, ledger: Ledger) -> list[Row] | None
             what = "A quote is not closed." if unclosed else f"The row cannot be read: {error}."
             ledger.add(Node(None, place), what, "Close it, or take the quotes out.")
             return None
-        if len(rows) == LINES_MOST or len(cells) > COLUMNS_MOST:
-            what = f"The table has more than {LINES_MOST} rows or {COLUMNS_MOST} columns."
+        if len(rows) == lines_most or len(cells) > COLUMNS_MOST:
+            what = f"The table has more than {lines_most} rows or {COLUMNS_MOST} columns."
             ledger.add(Node(None, place), what, "Split it.", rule="FI-02")
             return None
         rows.append(Row(tuple(Cell(_unguarded(cell.strip()), place) for cell in cells), place))
