@@ -5,11 +5,16 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from django.utils import timezone
+
 from structures.access import MAY, Act
 from structures.models import Role
+from structures.queries.districts import today_of
 from structures.queries.people import own_postings
 
 if TYPE_CHECKING:
+    from datetime import date
+
     from django.contrib.auth.models import AnonymousUser
 
     from structures.models import District, User
@@ -17,11 +22,15 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, slots=True)
 class Frame:
-    """Places beyond those of everyone, and the districts that are invented."""
+    """Places beyond those of everyone, the districts that are invented, and the reader's day.
+
+    `today` is the day of the reader's districts; where they differ, or there is none, the server's.
+    """
 
     keeps_people: bool
     sees_money: bool
     invented: tuple[District, ...]
+    today: date
 
 
 def frame_of(user: User | AnonymousUser) -> Frame:
@@ -29,10 +38,12 @@ def frame_of(user: User | AnonymousUser) -> Frame:
     held = list(own_postings(user))
     roles = {posting.role for posting in held}
     districts = {posting.district for posting in held if posting.district is not None}
+    days = {today_of(one) for one in districts}
     return Frame(
         keeps_people=Role.ADMIN in roles,
         sees_money=bool(roles & MAY[Act.SEE_MONEY]),
         invented=tuple(
             sorted((one for one in districts if one.invented), key=lambda one: one.code)
         ),
+        today=days.pop() if len(days) == 1 else timezone.localdate(),
     )

@@ -2,12 +2,23 @@
 
 from __future__ import annotations
 
+from datetime import date
+
 import pytest
 from django.template.loader import render_to_string
 from django.test import Client
+from django.utils import timezone
 
 from structures.models import Role
-from tests.factories import a_district, a_user
+from tests.factories import (
+    a_district,
+    a_posting,
+    a_site,
+    a_survey,
+    a_user,
+    a_watershed,
+    an_engineer,
+)
 
 pytestmark = pytest.mark.django_db
 
@@ -34,6 +45,42 @@ def test_each_role_sees_the_places_it_works_in(client, role):
 def test_the_place_one_is_at_is_marked(client):
     client.force_login(a_user(Role.ADMIN, a_district()))
     assert '<a href="/people/" aria-current="true">' in words(client.get("/people/new/"))
+
+
+class TestDayOfTheSheet:
+    """The title block prints the district's day, whatever day the server has."""
+
+    def printed(self, client, place):
+        return words(client.get(place)).partition("<dt>Date</dt>")[2].partition("</dd>")[0]
+
+    @pytest.fixture
+    def site(self):
+        return a_site(a_watershed(a_district(invented=True, as_of=date(2026, 4, 10))))
+
+    @pytest.mark.parametrize(
+        "place",
+        [
+            *("/sites/", "/watersheds/", "/files/", "/entry/"),
+            *("/sites/EX-A/", "/sites/EX-A/edit/", "/sites/EX-A/surveys/new/", "/watersheds/OD/"),
+        ],
+    )
+    def test_of_a_district_that_stands_still(self, client, site, place):
+        client.force_login(an_engineer(site.watershed.district))
+        assert self.printed(client, place) == " <dd> 10 Apr 2026 "
+
+    def test_of_a_wall_that_is_tried(self, client, site, tmp_path, settings):
+        settings.MEDIA_ROOT = tmp_path
+        engineer = an_engineer(site.watershed.district)
+        a_survey(site, engineer)
+        client.force_login(engineer)
+        assert self.printed(client, "/sites/EX-A/try/") == " <dd> 10 Apr 2026 "
+
+    def test_of_two_districts_with_two_days_is_the_servers(self, client, site):
+        engineer = an_engineer(site.watershed.district)
+        a_posting(engineer, Role.ENGINEER, a_district("ZZ", zone="UTC"))
+        client.force_login(engineer)
+        today = timezone.localdate()
+        assert self.printed(client, "/sites/") == f" <dd> {today.day} {today:%b %Y} "
 
 
 def test_a_page_that_is_not_there_says_so_without_a_name(client):
