@@ -43,7 +43,8 @@ def documents_of(found: Appraisal) -> dict[str, bytes]:
 def figures_of(found: Appraisal) -> dict[str, Any]:
     """Give the drawings as a page takes them in, with their table twin."""
     view = appraised_section(found)
-    drawn = zip(found.soundings, appraised_soundings(found), strict=True)
+    sheets = (appraised_soundings(found), appraised_soundings(found, narrow=True))
+    drawn = zip(found.soundings, *sheets, strict=True)
     return {
         "wide": draw_section(view),
         "narrow": draw_section(view, name="section-narrow", narrow=True),
@@ -51,10 +52,11 @@ def figures_of(found: Appraisal) -> dict[str, Any]:
         "soundings": [
             {
                 "label": said.label,
-                "drawing": markup,
+                "drawing": wide,
+                "narrow": narrow,
                 "words": " ".join(depth_lines(sounding_json(said))),
             }
-            for said, markup in drawn
+            for said, wide, narrow in drawn
         ],
     }
 

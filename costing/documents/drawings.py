@@ -24,10 +24,11 @@ def appraised_section(found: Appraisal) -> SectionView:
     )
 
 
-def appraised_soundings(found: Appraisal) -> list[str]:
-    """Give the drawing of each sounding, in the order of the survey."""
+def appraised_soundings(found: Appraisal, *, narrow: bool = False) -> list[str]:
+    """Give the drawing of each sounding, in the order of the survey; `narrow` for a telephone."""
     pairs = zip(found.pack.soundings, found.soundings, strict=True)
+    name = "sounding-narrow" if narrow else "sounding"
     return [
-        draw_sounding(view_sounding(sounding, said), name=f"sounding-{place}")
+        draw_sounding(view_sounding(sounding, said), name=f"{name}-{place}", narrow=narrow)
         for place, (sounding, said) in enumerate(pairs, 1)
     ]

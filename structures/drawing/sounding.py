@@ -2,6 +2,7 @@
 
 Decades are equal both ways, so that slopes can be judged. Nothing is shifted by hand: where MN was
 changed the computed line breaks. Below, on the same axis, the layers with the range of the rock.
+Two sheets of one drawing: wide for paper and screen, narrow for a telephone; a page shows one.
 """
 
 from __future__ import annotations
@@ -12,7 +13,15 @@ from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
-from structures.drawing.letters import SMALL_MM, shorten, width_mm, wrap_mm
+from structures.drawing.letters import (
+    PHONE_SMALL_MM,
+    PHONE_TEXT_MM,
+    SMALL_MM,
+    TEXT_MM,
+    shorten,
+    width_mm,
+    wrap_mm,
+)
 from structures.drawing.svg import Sheet
 
 if TYPE_CHECKING:
@@ -20,9 +29,6 @@ if TYPE_CHECKING:
 
     from structures.drawing.sounding_view import SoundingView
 
-WIDTH_MM: Final = 120.0
-LEFT_MM: Final = 17.0
-RIGHT_MM: Final = 8.0
 TOP_MM: Final = 13.0
 TALLEST_MM: Final = 75.0  # the curve's part; decades grow smaller where it would be taller
 STEPS_MM: Final = 25.0  # height of the layers' part
@@ -31,9 +37,27 @@ SHAPES: Final = ("circle", "square", "triangle")  # one a segment of MN, in turn
 
 
 @dataclass(frozen=True, slots=True)
+class Form:
+    """One of the two sheets: sizes in millimetres."""
+
+    width_mm: float
+    left_mm: float
+    right_mm: float
+    text_mm: float
+    small_mm: float
+    step_mm: float
+    css: str
+
+
+WIDE: Final = Form(120.0, 17.0, 8.0, TEXT_MM, SMALL_MM, 3.6, "dw-wide")
+NARROW: Final = Form(97.0, 15.0, 6.0, PHONE_TEXT_MM, PHONE_SMALL_MM, 4.4, "dw-narrow")
+
+
+@dataclass(frozen=True, slots=True)
 class LogFrame:
     """Where a spacing, depth or resistivity lies on the sheet."""
 
+    form: Form
     least_m: float
     most_m: float
     least_ohm_m: float
@@ -42,11 +66,16 @@ class LogFrame:
 
     def x(self, metres: NDArray | float) -> NDArray:
         """Place of a half spacing or a depth."""
-        return LEFT_MM + np.log10(np.asarray(metres) / self.least_m) * self.decade_mm
+        return self.form.left_mm + np.log10(np.asarray(metres) / self.least_m) * self.decade_mm
 
     def y(self, ohm_m: NDArray | float) -> NDArray:
         """Place of an apparent resistivity."""
         return TOP_MM + np.log10(self.most_ohm_m / np.asarray(ohm_m)) * self.decade_mm
+
+    @property
+    def left(self) -> float:
+        """Left edge."""
+        return self.form.left_mm
 
     @property
     def right(self) -> float:
@@ -59,7 +88,7 @@ class LogFrame:
         return float(self.y(self.least_ohm_m))
 
 
-def draw_sounding(view: SoundingView, *, name: str = "sounding") -> str:
+def draw_sounding(view: SoundingView, *, name: str = "sounding", narrow: bool = False) -> str:
     """Draw one sounding as SVG markup for a page.
 
     Source: standard practice of sounding curves (double logarithmic paper, equal decades).
@@ -70,28 +99,31 @@ def draw_sounding(view: SoundingView, *, name: str = "sounding") -> str:
         Readings, computed line, layers and rock.
     name
         Keeps the ids of several drawings on one page apart.
+    narrow
+        The sheet for a telephone.
 
     Raises
     ------
     ValueError
         If the name cannot be part of an id.
     """
-    frame = _frame(view)
-    sheet = Sheet(name, WIDTH_MM, f"Sounding {view.label}: readings, computed line and layers")
-    sheet.desc = _describe(view)
-    label = shorten(f"Sounding {view.label}", WIDTH_MM - 1.0, strong=True)
+    frame = _frame(view, NARROW if narrow else WIDE)
+    form = frame.form
+    title = f"Sounding {view.label}: readings, computed line and layers"
+    sheet = Sheet(name, form.width_mm, title, _describe(view), form.css)
+    label = shorten(f"Sounding {view.label}", form.width_mm - 1.0, form.text_mm, strong=True)
     sheet.text((0.4, 3.6), label, "strong")
     _paper(sheet, frame)
     _curve(sheet, view, frame)
-    y = frame.foot + 11.0
+    y = frame.foot + 6.4 + 2.0 * form.small_mm
     if view.resistivity_ohm_m.size:
         y = _layers(sheet, view, frame, y)
-    y = _rock_words(sheet, view, y)
-    sheet.height_mm = round(_key(sheet, view, y) + 2.0, 2)
+    y = _rock_words(sheet, view, form, y)
+    sheet.height_mm = round(_key(sheet, view, form, y) + 2.0, 2)
     return sheet.markup()
 
 
-def _frame(view: SoundingView) -> LogFrame:
+def _frame(view: SoundingView, form: Form) -> LogFrame:
     """Round the axes outward to 1, 2 or 5 and give both the same decade."""
     depths = [view.ab2_m.min(), view.ab2_m.max(), *view.bottom_m]
     depths += [d for d in (view.rock_low_m, view.rock_high_m) if d is not None]
@@ -101,8 +133,9 @@ def _frame(view: SoundingView) -> LogFrame:
     values = np.concatenate(curves)
     least_m, most_m = _round_out(min(depths), max(depths))
     least, most = _round_out(float(values.min()), float(values.max()))
-    across = (WIDTH_MM - LEFT_MM - RIGHT_MM) / np.log10(most_m / least_m)
-    return LogFrame(least_m, most_m, least, most, min(across, TALLEST_MM / np.log10(most / least)))
+    across = (form.width_mm - form.left_mm - form.right_mm) / np.log10(most_m / least_m)
+    decade_mm = min(across, TALLEST_MM / np.log10(most / least))
+    return LogFrame(form, least_m, most_m, least, most, decade_mm)
 
 
 def _round_out(least: float, most: float) -> tuple[float, float]:
@@ -122,24 +155,24 @@ def _paper(sheet: Sheet, frame: LogFrame) -> None:
     """Grid lines at the numbers, ticks between them, axes with units."""
     for value in _steps(frame.least_ohm_m, frame.most_ohm_m):
         y = float(frame.y(value))
-        sheet.line((LEFT_MM, y), (frame.right, y), "grid")
-        sheet.text((LEFT_MM - 1.4, y + 0.9), f"{value:g}", "end small")
+        sheet.line((frame.left, y), (frame.right, y), "grid")
+        sheet.text((frame.left - 1.4, y + 0.9), f"{value:g}", "end small")
     for value in _steps(frame.least_m, frame.most_m):
         x = float(frame.x(value))
         sheet.line((x, TOP_MM), (x, frame.foot), "grid")
-        sheet.text((x, frame.foot + 4.2), f"{value:g}", "mid small")
+        sheet.text((x, frame.foot + 1.9 + frame.form.small_mm), f"{value:g}", "mid small")
     first = int(np.floor(np.log10(frame.least_m)))
     for power in range(first, int(np.ceil(np.log10(frame.most_m)))):
         for digit in range(1, 10):
             if frame.least_m <= digit * 10.0**power <= frame.most_m:
                 x = float(frame.x(digit * 10.0**power))
                 sheet.line((x, frame.foot), (x, frame.foot + 0.9), "p1")
-    sheet.line((LEFT_MM, TOP_MM), (LEFT_MM, frame.foot), "p2")
-    sheet.line((LEFT_MM, frame.foot), (frame.right, frame.foot), "p2")
+    sheet.line((frame.left, TOP_MM), (frame.left, frame.foot), "p2")
+    sheet.line((frame.left, frame.foot), (frame.right, frame.foot), "p2")
     sheet.text((0.4, TOP_MM - 4.0), "apparent resistivity ohm m", "small quiet")
     words = "half current spacing AB/2 m; below: depth m"
-    across = max(frame.right, 0.4 + width_mm(words, SMALL_MM))
-    sheet.text((across, frame.foot + 8.0), words, "small quiet end")
+    across = max(frame.right, 0.4 + width_mm(words, frame.form.small_mm))
+    sheet.text((across, frame.foot + 3.4 + 2.0 * frame.form.small_mm), words, "small quiet end")
 
 
 def _curve(sheet: Sheet, view: SoundingView, frame: LogFrame) -> None:
@@ -178,20 +211,20 @@ def _layers(sheet: Sheet, view: SoundingView, frame: LogFrame, top: float) -> fl
         sheet.rect((left, top), right - left, STEPS_MM, "band-solid")
         for x in (left, right):
             sheet.line((x, top), (x, foot), "band-edge")
-    edges = [LEFT_MM, *frame.x(view.bottom_m).tolist(), frame.right]
+    edges = [frame.left, *frame.x(view.bottom_m).tolist(), frame.right]
     trail = [
-        (min(max(x, LEFT_MM), frame.right), y)
+        (min(max(x, frame.left), frame.right), y)
         for place, y in enumerate(heights)
         for x in edges[place : place + 2]
     ]
     sheet.path(trail, "p5")
     for place, (y, ohm_m) in enumerate(zip(heights, view.resistivity_ohm_m, strict=True)):
         words = three_figures(float(ohm_m))
-        room = edges[place + 1] - edges[place] >= width_mm(words) + 1.6
+        room = edges[place + 1] - edges[place] >= width_mm(words, frame.form.text_mm) + 1.6
         x = edges[place] + 0.8 if room else (edges[place] + edges[place + 1]) / 2
         sheet.text((x, y - 1.2), words, "halo" if room else "halo mid")
-    sheet.line((LEFT_MM, top), (LEFT_MM, foot), "p2")
-    sheet.line((LEFT_MM, foot), (frame.right, foot), "p2")
+    sheet.line((frame.left, top), (frame.left, foot), "p2")
+    sheet.line((frame.left, foot), (frame.right, foot), "p2")
     sheet.text((0.4, top + 2.0), "layers ohm m", "small quiet")
     return foot
 
@@ -202,7 +235,7 @@ def three_figures(value: float) -> str:
     return f"{float(f'{value:.3g}'):.{places}f}"
 
 
-def _rock_words(sheet: Sheet, view: SoundingView, y: float) -> float:
+def _rock_words(sheet: Sheet, view: SoundingView, form: Form, y: float) -> float:
     """Say the depth of the rock with its range, or why there is none; gives the lower edge."""
     if view.rock_depth_m is None:
         words = f"No depth of rock: {view.refusal}"
@@ -212,42 +245,42 @@ def _rock_words(sheet: Sheet, view: SoundingView, y: float) -> float:
             f"{view.rock_low_m:.1f} to {view.rock_high_m:.1f} m."
         )
     y += 1.6
-    for line in wrap_mm(words, WIDTH_MM - LEFT_MM):
-        y += 3.6
-        sheet.text((LEFT_MM, y), line, "t-doubt")
+    for line in wrap_mm(words, form.width_mm - form.left_mm, form.text_mm):
+        y += form.step_mm
+        sheet.text((form.left_mm, y), line, "t-doubt")
     return y
 
 
-def _key(sheet: Sheet, view: SoundingView, y: float) -> float:
+def _key(sheet: Sheet, view: SoundingView, form: Form, y: float) -> float:
     """Explain marks, bars and line; gives the lower edge."""
     entries = [f"MN/2 {view.mn2_m[part[0]]:g} m" for part in view.segments]
     if view.array == "wenner":
         entries = ["Wenner, AB/2 is 1.5 a"]
-    x, y = LEFT_MM + 1.0, y + 5.0
+    x, y = form.left_mm + 1.0, y + 1.4 + form.step_mm
     for place, words in enumerate(entries):
-        x, y = _next_place(x, y, words)
+        x, y = _next_place(x, y, words, form)
         _mark(sheet, x, y - 0.9, place)
         sheet.text((x + 2.0, y), words, "small")
-        x += 6.0 + width_mm(words, SMALL_MM)
+        x += 6.0 + width_mm(words, form.small_mm)
     words = "bars: twice the noise"
-    x, y = _next_place(x, y, words)
+    x, y = _next_place(x, y, words, form)
     sheet.line((x, y - 2.4), (x, y + 0.6), "p1")
     for end in (y - 2.4, y + 0.6):
         sheet.line((x - 0.7, end), (x + 0.7, end), "p1")
     sheet.text((x + 2.0, y), words, "small")
-    x += 8.0 + width_mm(words, SMALL_MM)
+    x += 8.0 + width_mm(words, form.small_mm)
     if view.computed_ohm_m is not None:
-        x, y = _next_place(x, y, "computed")
+        x, y = _next_place(x, y, "computed", form)
         sheet.line((x - 2.0, y - 0.9), (x + 2.2, y - 0.9), "p3")
         sheet.text((x + 3.2, y), "computed", "small")
     return y
 
 
-def _next_place(x: float, y: float, words: str) -> tuple[float, float]:
+def _next_place(x: float, y: float, words: str, form: Form) -> tuple[float, float]:
     """Begin a new line of the key where the words would leave the sheet."""
-    if x + 3.2 + width_mm(words, SMALL_MM) <= WIDTH_MM:
+    if x + 3.2 + width_mm(words, form.small_mm) <= form.width_mm:
         return x, y
-    return LEFT_MM + 1.0, y + 4.0
+    return form.left_mm + 1.0, y + form.step_mm + 0.4
 
 
 def _describe(view: SoundingView) -> str:

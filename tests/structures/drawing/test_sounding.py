@@ -7,7 +7,7 @@ from structures.drawing.sounding import draw_sounding
 from structures.drawing.sounding_view import view_sounding
 from structures.ground.sounding import Interpretation, Layer, Refusal
 from structures.intake.pack import Sounding, SoundingReading
-from tests.structures.drawing.paper import SVG, cut_off, overlaps, read, shapes, words
+from tests.structures.drawing.paper import SVG, cut_off, overlaps, read, shapes, size, words
 from tests.structures.drawing.soundings import AB2, COMPUTED, table_2, unread
 
 
@@ -23,8 +23,9 @@ def grid_place(root, text, axis):
     return min(lines, key=lambda at: abs(at - place))
 
 
-def test_decades_are_equal_both_ways():
-    root = read(draw_sounding(table_2()))
+@pytest.mark.parametrize("narrow", [False, True])
+def test_decades_are_equal_both_ways(narrow):
+    root = read(draw_sounding(table_2(), narrow=narrow))
     across = grid_place(root, "100", "x") - grid_place(root, "10", "x")
     up = grid_place(root, "50", "y") - grid_place(root, "500", "y")
     assert across == pytest.approx(up, abs=0.02)
@@ -53,6 +54,16 @@ def test_the_line_breaks_where_mn_was_changed():
     assert {"MN/2 0.5 m", "MN/2 2.5 m", "MN/2 10 m"} <= set(said(root))
 
 
+def test_the_narrow_sheet_says_the_same_and_is_legible_on_a_telephone():
+    """Oracle: 97 mm shown on 328 px (360 less the page's edges); letters of 10 px or more."""
+    wide, narrow = (read(draw_sounding(table_2(), narrow=one)) for one in (False, True))
+    assert set(said(narrow)) == set(said(wide))
+    width_mm, _ = size(narrow)
+    assert width_mm == 97.0
+    assert 3.0 * 328.0 / width_mm >= 10.0
+    assert "dw-narrow" in narrow.get("class")
+
+
 def test_layers_and_rock_stand_on_the_same_axis():
     """Oracle: depths 2 and 8 m, range 6.5 to 8.9 m, on the spacing's axis."""
     root = read(draw_sounding(table_2()))
@@ -78,19 +89,21 @@ def test_a_refusal_is_said_in_place_of_a_depth():
     assert "S2 <नेर>" in root.find(f"{SVG}title").text
 
 
+@pytest.mark.parametrize("narrow", [False, True])
 @pytest.mark.parametrize("make", [table_2, unread])
-def test_no_words_touch(make):
-    root = read(draw_sounding(make()))
+def test_no_words_touch(make, narrow):
+    root = read(draw_sounding(make(), narrow=narrow))
     assert overlaps(root) == []
     assert cut_off(root) == []
 
 
 @settings(max_examples=25, deadline=None)
 @given(
+    narrow=st.booleans(),
     ohm_m=st.lists(st.floats(0.5, 50000.0), min_size=3, max_size=20),
     layers=st.lists(st.floats(1.0, 20000.0), min_size=2, max_size=5),
 )
-def test_whatever_was_read_can_be_drawn(ohm_m, layers):
+def test_whatever_was_read_can_be_drawn(narrow, ohm_m, layers):
     """Law: no words are cut off, whatever curve and layers."""
     count = len(ohm_m)
     view = table_2(
@@ -102,7 +115,7 @@ def test_whatever_was_read_can_be_drawn(ohm_m, layers):
         bottom_m=np.geomspace(1.0, 30.0, len(layers) - 1),
         resistivity_ohm_m=np.array(layers),
     )
-    assert cut_off(read(draw_sounding(view))) == []
+    assert cut_off(read(draw_sounding(view, narrow=narrow))) == []
 
 
 def test_a_view_takes_what_the_interpretation_says():
