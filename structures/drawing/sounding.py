@@ -225,7 +225,9 @@ def _layers(sheet: Sheet, view: SoundingView, frame: LogFrame, top: float) -> fl
         sheet.text((x, y - 1.2), words, "halo" if room else "halo mid")
     sheet.line((frame.left, top), (frame.left, foot), "p2")
     sheet.line((frame.left, foot), (frame.right, foot), "p2")
-    sheet.text((0.4, top + 2.0), "layers ohm m", "small quiet")
+    small_mm = frame.form.small_mm
+    for place, words in enumerate(wrap_mm("layers ohm m", frame.left - 1.5, small_mm)):
+        sheet.text((0.4, top + 2.0 + place * 1.3 * small_mm), words, "small quiet")
     return foot
 
 
