@@ -18,7 +18,9 @@ from structures.ground.refraction import interpret_refraction
 from structures.ground.rock import estimate_rock
 from structures.ground.sounding import interpret
 from structures.intake.defaults import GROUND
+from structures.intake.practice import HANDBOOK, Practice
 from structures.life.cautions import Caution, caution
+from structures.life.changed import changed_default
 from structures.takeoff.dewatering import plan_pumping
 from structures.takeoff.sheet import measure, measurement_sheet, quantities
 from structures.takeoff.spoil import spoil_distance_m
@@ -85,6 +87,7 @@ class Appraisal:
     spread: Spread | None
     water: Water
     cautions: tuple[Caution, ...]
+    practice: Practice = HANDBOOK
     method: str = METHOD
 
     @property
@@ -117,6 +120,8 @@ class Appraisal:
             self.on.isoformat(),
             f"{0 if lines is None else len(lines)} draws, seed {self.rock.seed}",
         )
+        if self.practice != HANDBOOK:
+            inputs += (repr(self.practice),)
         return hashlib.sha256("\n".join(inputs).encode()).hexdigest()
 
 
@@ -127,6 +132,7 @@ def appraise(
     on: date,
     draws: int = DRAWS,
     seed: int = SEED,
+    practice: Practice = HANDBOOK,
 ) -> Appraisal:
     """Walk one survey from the ground to the price.
 
@@ -142,32 +148,47 @@ def appraise(
         The day for which the schedule's validity is judged.
     draws, seed
         Whole-line draws of an estimated rock line, 2000 or more, and their seed.
+    practice
+        The defaults in force beside those of the wall, which stand in the pack.
 
     Raises
     ------
     Refused
         If ground and rock line share no stretch, or a lift has no rate.
     """
-    soundings = tuple(interpret(one) for one in pack.soundings)
-    refraction = tuple(interpret_refraction(one) for one in pack.refraction)
-    rock = estimate_rock(pack, soundings=soundings, refraction=refraction, draws=draws, seed=seed)
-    design = None if rock.source == "none" else _design(pack, rock)
+    soundings = tuple(interpret(one, practice=practice) for one in pack.soundings)
+    refraction = tuple(interpret_refraction(one, practice=practice) for one in pack.refraction)
+    read = {"soundings": soundings, "refraction": refraction}
+    rock = estimate_rock(pack, **read, draws=draws, seed=seed, practice=practice)
+    design = None if rock.source == "none" else _design(pack, rock, practice)
     estimate = spread = None
     if design is not None and schedule is not None:
         estimate = make_abstract(design.quantities, schedule)
         if rock.draws_m is not None:
-            spread = _spread(pack, rock, schedule if estimate.complete else None, seed=seed)
-    water = judge_water(pack, rock, None if design is None else design.cutoff)
+            priced_by = schedule if estimate.complete else None
+            spread = _spread(pack, rock, priced_by, practice, seed=seed)
+    cutoff = None if design is None else design.cutoff
     silent = Appraisal(
-        pack, schedule, on, soundings, refraction, rock, design, estimate, spread, water, ()
+        pack=pack,
+        schedule=schedule,
+        on=on,
+        soundings=soundings,
+        refraction=refraction,
+        rock=rock,
+        design=design,
+        estimate=estimate,
+        spread=spread,
+        water=judge_water(pack, rock, cutoff, practice=practice),
+        cautions=(),
+        practice=practice,
     )
     return replace(silent, cautions=_in_order(_cautions(silent)))
 
 
-def _design(pack: SurveyPack, rock: RockLine) -> Design:
+def _design(pack: SurveyPack, rock: RockLine, practice: Practice) -> Design:
     wall, cutoff = design_wall(pack.ground, pack.toes, rock.offset_m, rock.level_m, pack.wall)
     takings = measure(cutoff, pack.wall)
-    pumping = plan_pumping(cutoff, pack.ground_water, pack.works)
+    pumping = plan_pumping(cutoff, pack.ground_water, pack.works, practice=practice)
     return Design(
         wall=wall,
         cutoff=cutoff,
@@ -179,7 +200,12 @@ def _design(pack: SurveyPack, rock: RockLine) -> Design:
 
 
 def _spread(
-    pack: SurveyPack, rock: RockLine, schedule: RateSchedule | None, *, seed: int
+    pack: SurveyPack,
+    rock: RockLine,
+    schedule: RateSchedule | None,
+    practice: Practice,
+    *,
+    seed: int,
 ) -> Spread:
     """Price every whole-line draw of the rock at the same rates (handbook 8.9 and 8.10).
 
@@ -188,7 +214,7 @@ def _spread(
     cutoff = cut(make_section(pack.ground, pack.toes, rock.offset_m, rock.draws_m, pack.wall))
     if schedule is None:
         return unpriced(cutoff.ends, seed=seed, why=NO_PRICE)
-    pumping = plan_pumping(cutoff, pack.ground_water, pack.works)
+    pumping = plan_pumping(cutoff, pack.ground_water, pack.works, practice=practice)
     return price_draws(measure(cutoff, pack.wall), pumping, cutoff.ends, schedule, seed=seed)
 
 
@@ -198,9 +224,12 @@ def _cautions(found: Appraisal) -> Iterable[Caution]:
     if found.rock.source == "given":
         yield caution("rock-line-settled")
     if found.design is not None:
-        yield from wall_cautions(found.design.wall, found.pack.wall, found.pack.works)
+        yield from wall_cautions(
+            found.design.wall, found.pack.wall, found.pack.works, practice=found.practice
+        )
         if found.design.pumping.hours is None:
             yield caution("dewatering-not-known", why=found.design.pumping.why)
+    yield from _changed_defaults(found.practice)
     if found.estimate is not None:
         yield from _estimate_cautions(found)
     elif found.design is not None:
@@ -214,9 +243,15 @@ def _cautions(found: Appraisal) -> Iterable[Caution]:
     if found.soundings or found.refraction:
         yield caution("geophysics")
     if found.design is not None and found.design.wall.length_m > 0.0:
-        yield from _works_cautions(found.pack, found.design)
+        yield from _works_cautions(found.pack, found.design, found.practice.depth_without_entry_m)
     yield caution("downstream")
     yield caution("raw-water")
+
+
+def _changed_defaults(practice: Practice) -> Iterable[Caution]:
+    for default, value in practice.changed:
+        if default.owner == "E":
+            yield changed_default(default, value, practice.decision(default.key))
 
 
 def _estimate_cautions(found: Appraisal) -> Iterable[Caution]:
@@ -250,9 +285,10 @@ def _unused_lifts(found: Appraisal) -> Iterable[Caution]:
         )
 
 
-def _works_cautions(pack: SurveyPack, design: Design) -> Iterable[Caution]:
-    yield caution("trench-collapse")
-    yield caution("edge", distance_m=spoil_distance_m(design.wall.greatest_depth_to_key_m))
+def _works_cautions(pack: SurveyPack, design: Design, entry_m: float) -> Iterable[Caution]:
+    back_m = spoil_distance_m(design.wall.greatest_depth_to_key_m)
+    yield caution("trench-collapse", entry_m=entry_m)
+    yield caution("edge", distance_m=back_m, entry_m=entry_m)
     if pack.works.pump_hours != 0:
         yield caution("pumping")
         reach_m = 0.0 if design.pumping.inflow is None else float(design.pumping.inflow.reach_m[0])

@@ -43,6 +43,7 @@ def _estimated(found: Appraisal, *, draws: int, seed: int) -> list[dict[str, flo
             refraction=found.refraction,
             draws=draws,
             seed=seed,
+            practice=found.practice,
         )
     if rock.source == "none":
         return []

@@ -59,9 +59,11 @@ def sounding_whole_json(read: Interpretation, sounding: Sounding) -> dict[str, A
                 "mn2_m": reading.mn2_m,
                 "observed_ohm_m": reading.apparent_resistivity_ohm_m,
                 "computed_ohm_m": fitted,
-                "sd_percent": reading.sd_percent,
+                "sd_percent": 100 * noise if reading.sd_percent is None else reading.sd_percent,
             }
-            for reading, fitted in zip(sounding.readings, computed, strict=True)
+            for reading, fitted, noise in zip(
+                sounding.readings, computed, read.noise.tolist(), strict=True
+            )
         ],
         "equivalent": [_layers(layers) for layers in read.equivalent],
         "chi_square_per_degree": read.chi_square_per_degree,

@@ -9,6 +9,7 @@ from structures.drawing.section import draw_section
 from structures.drawing.survey import view_section
 from structures.drawing.view import GroundTest
 from structures.ground.rock_line import RockLine
+from structures.intake.practice import HANDBOOK, Practice
 from structures.takeoff.dewatering import plan_pumping
 from structures.takeoff.sheet import measure, quantities
 from structures.wall.wall import design_wall, wall_cautions
@@ -47,7 +48,11 @@ def kept_rock(rock: Mapping[str, Any]) -> RockLine:
 
 
 def try_wall(
-    pack: SurveyPack, rock: Mapping[str, Any], tests: Sequence[Mapping[str, Any]]
+    pack: SurveyPack,
+    rock: Mapping[str, Any],
+    tests: Sequence[Mapping[str, Any]],
+    *,
+    practice: Practice = HANDBOOK,
 ) -> Trial:
     """Draw the wall of a pack's settings on the middle line of a reading.
 
@@ -61,6 +66,8 @@ def try_wall(
         `rock` of the reading's appraisal, source "given" or "estimated".
     tests
         The tests as the reading drew them.
+    practice
+        The defaults in force of the reading.
 
     Raises
     ------
@@ -69,8 +76,8 @@ def try_wall(
     """
     line = kept_rock(rock)
     wall, cutoff = design_wall(pack.ground, pack.toes, line.offset_m, line.level_m, pack.wall)
-    pumping = plan_pumping(cutoff, pack.ground_water, pack.works)
-    said = tuple(wall_cautions(wall, pack.wall, pack.works))
+    pumping = plan_pumping(cutoff, pack.ground_water, pack.works, practice=practice)
+    said = tuple(wall_cautions(wall, pack.wall, pack.works, practice=practice))
     drawn = view_section(pack, line, cutoff, cautions=said)
     view = replace(drawn, tests=tuple(GroundTest(**test) for test in tests))
     plain = asdict(wall)

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
-from structures.intake.defaults import GROUND
+from structures.intake.practice import HANDBOOK, Practice
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -24,9 +24,14 @@ BATCH: Final = 4  # draws offered for one wanted; most thicknesses drawn are not
 class RockRule:
     """When the deepest layer of a model is read as rock (handbook 2.10)."""
 
-    least_ohm_m: float = GROUND["rock_least_ohm_m"].value
-    least_ratio: float = GROUND["rock_least_ratio"].value
-    share: float = GROUND["rock_share"].value
+    least_ohm_m: float = HANDBOOK.rock_least_ohm_m
+    least_ratio: float = HANDBOOK.rock_least_ratio
+    share: float = HANDBOOK.rock_share
+
+
+def rock_rule(practice: Practice) -> RockRule:
+    """Give the rule of a practice."""
+    return RockRule(practice.rock_least_ohm_m, practice.rock_least_ratio, practice.rock_share)
 
 
 @dataclass(frozen=True, slots=True)

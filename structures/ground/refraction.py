@@ -10,7 +10,6 @@ import numpy as np
 
 from structures.arrays import frozen
 from structures.ground.gaussian import NORMAL_90
-from structures.ground.rock_tests import REFRACTION_SD
 from structures.ground.sounding import Refusal
 from structures.ground.travel_times import (
     DippingPlane,
@@ -18,7 +17,7 @@ from structures.ground.travel_times import (
     slowness,
     thicknesses_m,
 )
-from structures.intake.defaults import GROUND
+from structures.intake.practice import HANDBOOK, Practice
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
@@ -83,7 +82,9 @@ class Branches:
     score: float
 
 
-def interpret_refraction(line: RefractionLine) -> RefractionReading:
+def interpret_refraction(
+    line: RefractionLine, *, practice: Practice = HANDBOOK
+) -> RefractionReading:
     """Read the depth of rock from a refraction line.
 
     Source: handbook 3.1 to 3.3 and 3.6. Each side of each shot is split into two or three straight
@@ -94,6 +95,8 @@ def interpret_refraction(line: RefractionLine) -> RefractionReading:
     ----------
     line
         Picks along a spread that crosses the wall line at `offset_m`.
+    practice
+        Least error of the depth, and how far times there and back may differ.
     """
     known = {"offset_m": line.offset_m, "label": line.label}
     sides = [split for side in _sides(line) if (split := split_branches(side)) is not None]
@@ -105,7 +108,7 @@ def interpret_refraction(line: RefractionLine) -> RefractionReading:
         return RefractionReading(**known, refusal=Refusal("no-branches", why))
     layers = max(len(side.velocities) for side in sides)
     sides = [side for side in sides if len(side.velocities) == layers]
-    known["notes"] = _notes(line, sides)
+    known["notes"] = _notes(line, sides, practice.reciprocity_ms)
     try:
         velocities, plane = _velocities(sides)
     except ValueError:
@@ -128,8 +131,8 @@ def interpret_refraction(line: RefractionLine) -> RefractionReading:
         return RefractionReading(**known, refusal=Refusal("picks-differ", PICKS_DIFFER))
     depths = [sum(thicknesses) for thicknesses in layers_m]
     depth, low, high, spread = _with_hidden_sand(sides, velocities, float(np.mean(depths)))
-    least, share = REFRACTION_SD
-    sd = max(least, share * depth, spread, float(np.std(depths)))
+    least_m, share = practice.se_refraction_m, practice.se_refraction_share
+    sd = max(least_m, share * depth, spread, float(np.std(depths)))
     return RefractionReading(
         **known,
         rock_depth_m=depth,
@@ -255,14 +258,13 @@ def _with_hidden_sand(
     return float(median), min(float(low), shallow_m), float(high), sd
 
 
-def _notes(line: RefractionLine, sides: Sequence[Branches]) -> tuple[str, ...]:
+def _notes(line: RefractionLine, sides: Sequence[Branches], limit_ms: float) -> tuple[str, ...]:
     notes = []
     if len({side.side.forward for side in sides}) == 1:
         notes.append(
             "Rock shows in one direction only: its dip cannot be told, the depth is doubtful."
         )
     time_ms = {(pick.shot_m, pick.geophone_m): pick.time_ms for pick in line.picks}
-    limit_ms = GROUND["reciprocity_ms"].value
     for (shot, geophone), one_way in time_ms.items():
         back = time_ms.get((geophone, shot))
         if shot < geophone and back is not None and abs(one_way - back) > limit_ms:

@@ -21,6 +21,7 @@ from structures.ground.rock_line import RockLine
 from structures.ground.rock_tests import Gathered, gather, ground_level_m
 from structures.intake.defaults import GROUND
 from structures.intake.line_checks import FOOT_ABOVE_M
+from structures.intake.practice import HANDBOOK, Practice
 from structures.life.cautions import caution
 
 if TYPE_CHECKING:
@@ -57,6 +58,7 @@ def estimate_rock(
     refraction: Sequence[DepthReading] = (),
     draws: int = int(GROUND["risk_draws"].value),
     seed: int,
+    practice: Practice = HANDBOOK,
 ) -> RockLine:
     """Give the rock line of a survey.
 
@@ -72,8 +74,10 @@ def estimate_rock(
         Whole lines to draw, at least 2000 for a price.
     seed
         Of the draws.
+    practice
+        Errors of the tests, range and least sill of the line.
     """
-    gathered = gather(pack, soundings=soundings, refraction=refraction)
+    gathered = gather(pack, soundings=soundings, refraction=refraction, practice=practice)
     unread = _unread(soundings, "sounding") + _unread(refraction, "refraction")
     if pack.rock_line is not None:
         return _given(pack, gathered, unread, soundings)
@@ -88,7 +92,7 @@ def estimate_rock(
             evidence=gathered.evidence,
             cautions=(caution("rock-not-known", why=why), *unread),
         )
-    return _estimated(pack, gathered, unread, draws=draws, rng_seed=seed)
+    return _estimated(pack, gathered, unread, draws=draws, rng_seed=seed, practice=practice)
 
 
 def _given(
@@ -142,6 +146,7 @@ def _estimated(
     *,
     draws: int,
     rng_seed: int,
+    practice: Practice,
 ) -> RockLine:
     levels = gathered.levels
     seen = Observations(
@@ -149,7 +154,7 @@ def _estimated(
         [one.level_m for one in levels],
         [one.sd_m for one in levels],
     )
-    covariance, spread = _covariance(pack, seen)
+    covariance, spread = _covariance(pack, seen, practice)
     reach = float(seen.offset_m.min()), float(seen.offset_m.max())
     inside = [one for one in gathered.bounds if reach[0] <= one.offset_m <= reach[1]]
     bounds, thinned = _thinned(_biting(inside, seen, covariance))
@@ -197,8 +202,10 @@ def _estimated(
     )
 
 
-def _covariance(pack: SurveyPack, seen: Observations) -> tuple[Covariance, tuple[Caution, ...]]:
-    """Give the field's covariance: fitted from 15 observations on, else the defaults."""
+def _covariance(
+    pack: SurveyPack, seen: Observations, practice: Practice
+) -> tuple[Covariance, tuple[Caution, ...]]:
+    """Give the field's covariance: fitted from 15 observations on, else that of the practice."""
     sill, reach = GROUND["rock_least_sill_m2"], GROUND["rock_range_m"]
     count = seen.offset_m.size
     if count >= FIT_FROM:
@@ -210,7 +217,9 @@ def _covariance(pack: SurveyPack, seen: Observations) -> tuple[Covariance, tuple
         code = "rock-default-spread"
         ground = np.array([ground_level_m(pack, at) for at in seen.offset_m])
         depth = float(np.mean(ground - seen.level_m))
-        covariance = Covariance(max((DEPTH_SHARE * depth) ** 2, sill.value), reach.value)
+        covariance = Covariance(
+            max((DEPTH_SHARE * depth) ** 2, practice.rock_least_sill_m2), practice.rock_range_m
+        )
     said = caution(code, range_m=covariance.range_m, sill_m2=covariance.sill_m2, count=count)
     return covariance, (said,)
 

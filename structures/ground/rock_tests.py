@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Final, Protocol
 import numpy as np
 
 from structures.ground.rock_line import Evidence
+from structures.intake.practice import HANDBOOK, Practice
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
@@ -15,10 +16,8 @@ if TYPE_CHECKING:
     from structures.ground.sounding import Refusal
     from structures.intake.pack import RockTest, SurveyPack
 
-SEEN_SD_M: Final = {"outcrop": 0.05, "pit": 0.05, "bore": 0.10}  # [A, E] handbook 4.3 and 4.4
-SOUNDING_SD: Final = (0.75, 0.15)  # [A, E] least m, share of depth; handbook 4.3
-UNTIED_SD: Final = (1.5, 0.25)  # [A, E] the same where no test ties it; handbook 2.11
-REFRACTION_SD: Final = (0.5, 0.10)  # [A, E] handbook 4.3
+OUTCROP_SD_M: Final = 0.05  # [A] handbook 4.4
+UNTIED_SD: Final = (1.5, 0.25)  # [A, E] of a sounding that no test ties: least m, share; 2.11
 THIN_WEATHERED_M: Final = 0.5  # [A] a thicker weathered layer unties soundings; handbook 2.11
 SAME_PLACE_M: Final = 0.5  # [A] a bore and a pit so near to each other are one place
 GEOPHYSICS: Final = ("sounding", "refraction")
@@ -70,6 +69,7 @@ def gather(
     *,
     soundings: Iterable[DepthReading],
     refraction: Iterable[DepthReading],
+    practice: Practice = HANDBOOK,
 ) -> Gathered:
     """Put every test as a level with its error, or as an upper bound.
 
@@ -81,9 +81,16 @@ def gather(
         The survey.
     soundings, refraction
         What was read from its soundings and refraction lines.
+    practice
+        Errors of the tests.
     """
     tied = _tied(pack.rock)
-    evidence = [_of_rock(pack, test) for test in pack.rock]
+    seen_sd_m = {
+        "outcrop": OUTCROP_SD_M,
+        "pit": practice.se_pit_m,
+        "bore": practice.se_core_m,
+    }
+    evidence = [_of_rock(pack, test, seen_sd_m[test.method]) for test in pack.rock]
     evidence += [
         Evidence(
             probe.offset_m,
@@ -92,10 +99,9 @@ def gather(
         )
         for probe in pack.probes
     ]
-    sounding_sd = SOUNDING_SD if tied else UNTIED_SD
     for kind, readings, limits in (
-        ("sounding", soundings, sounding_sd),
-        ("refraction", refraction, REFRACTION_SD),
+        ("sounding", soundings, _sounding_sd(practice, tied=tied)),
+        ("refraction", refraction, (practice.se_refraction_m, practice.se_refraction_share)),
     ):
         evidence += [
             _of_depth(pack, reading, kind, limits)
@@ -105,13 +111,19 @@ def gather(
     return Gathered(tuple(sorted(evidence, key=lambda one: one.offset_m)), tied)
 
 
-def _of_rock(pack: SurveyPack, test: RockTest) -> Evidence:
+def _sounding_sd(practice: Practice, *, tied: bool) -> tuple[float, float]:
+    """Least error and share of depth; an untied sounding is never surer than a tied one."""
+    stated = (practice.se_sounding_m, practice.se_sounding_share)
+    return stated if tied else (max(UNTIED_SD[0], stated[0]), max(UNTIED_SD[1], stated[1]))
+
+
+def _of_rock(pack: SurveyPack, test: RockTest, sd_m: float) -> Evidence:
     level = ground_level_m(pack, test.offset_m) - test.depth_m
     if not test.met_rock:
         return Evidence(test.offset_m, level, "hole")
     if test.what == "weathered":
         return Evidence(test.offset_m, level, "weathered")
-    return Evidence(test.offset_m, level, test.method, SEEN_SD_M[test.method])
+    return Evidence(test.offset_m, level, test.method, sd_m)
 
 
 def _of_depth(

@@ -10,23 +10,21 @@ import numpy as np
 from structures.arrays import frozen
 from structures.ground.ensemble import sample_ensemble
 from structures.ground.inversion import (
-    CHI_SQUARE,
     LAYER_COUNTS,
-    STARTS,
     Fit,
     fewest_layers,
     invert,
 )
-from structures.ground.layer_prior import Prior, prior_for
+from structures.ground.layer_prior import Prior, prior_for, rock_rule
 from structures.ground.sounding_curve import (
     NOISE,
-    SEGMENT_SD,
     Curve,
     SegmentFactor,
     curve,
     overlap_gaps,
     segment_factors,
 )
+from structures.intake.practice import HANDBOOK, Practice
 from structures.intake.sounding_checks import READINGS_LEAST
 
 if TYPE_CHECKING:
@@ -109,10 +107,8 @@ class Interpretation:
 def interpret(
     sounding: Sounding,
     *,
+    practice: Practice = HANDBOOK,
     noise: float | None = None,
-    segment_sd: float = SEGMENT_SD.value,
-    starts: int = int(STARTS.value),
-    chi_square_limit: float = CHI_SQUARE.value,
     prior: Prior | None = None,
     seed: int = SEED,
 ) -> Interpretation:
@@ -124,14 +120,12 @@ def interpret(
     ----------
     sounding
         Readings with the MN that was recorded, in the order of the sheet.
+    practice
+        Noise of a reading that states none, log sd of the free factor of each MN segment beyond
+        the first, starts of each fit, chi-square per degree of freedom that a model must stay
+        under, and what counts as rock in which share of the ensemble.
     noise
         One noise (log sd, 0.01 to 0.10) for all readings in place of the one stated with each.
-    segment_sd
-        Log sd of the free factor of each MN segment beyond the first.
-    starts
-        Starts of each fit, 8 or more.
-    chi_square_limit
-        Chi-square per degree of freedom that a model must stay under.
     prior
         In place of the handbook's for the widest AB/2; may carry a measured resistivity of the
         saturated sand.
@@ -141,19 +135,16 @@ def interpret(
     Raises
     ------
     ValueError
-        If a setting lies outside its accepted range, or MN/2 does not lie under AB/2.
+        If the noise lies outside its accepted range, or MN/2 does not lie under AB/2.
     """
-    for setting, value in (
-        (NOISE, NOISE.value if noise is None else noise),
-        (SEGMENT_SD, segment_sd),
-        (STARTS, starts),
-        (CHI_SQUARE, chi_square_limit),
-    ):
-        if not setting.low <= value <= setting.high:
-            raise ValueError(
-                f"{setting.words}: {value:g}, accepted {setting.low:g} to {setting.high:g}"
-            )
-    readings = curve(sounding, noise=noise, segment_sd=segment_sd)
+    if noise is not None and not NOISE.low <= noise <= NOISE.high:
+        raise ValueError(f"{NOISE.words}: {noise:g}, accepted {NOISE.low:g} to {NOISE.high:g}")
+    readings = curve(
+        sounding,
+        noise=noise,
+        unstated_noise=practice.sounding_noise,
+        segment_sd=practice.sounding_segment_sd,
+    )
     known = {
         "offset_m": sounding.offset_m,
         "label": sounding.label,
@@ -164,19 +155,20 @@ def interpret(
     if unfit is not None:
         return Interpretation(**known, refusal=unfit)
     rng = np.random.default_rng(seed)
-    prior = prior or prior_for(float(readings.ab2_m.max()))
-    fits = _fits(readings, chi_square_limit, starts=starts, rng=rng)
-    fit = fewest_layers(fits, limit=chi_square_limit)
+    prior = prior or prior_for(float(readings.ab2_m.max()), rock=rock_rule(practice))
+    limit = practice.sounding_chi_square
+    fits = _fits(readings, limit, starts=practice.sounding_starts, rng=rng)
+    fit = fewest_layers(fits, limit=limit)
     known["prior"] = prior
     if fit is None:
-        return Interpretation(**known, refusal=_no_model(fits, chi_square_limit))
+        return Interpretation(**known, refusal=_no_model(fits, limit))
     known |= _shown(readings, fit)
     refusal = _too_deep(float(fit.thickness_m.sum()), prior)
     if refusal is not None:
         return Interpretation(**known, refusal=refusal)
     floors = {one.resistivity_ohm_m.size: one.chi_square for one in fits}
     ensemble = sample_ensemble(readings, prior, rng=rng, floors=floors)
-    fitting = _fitting(ensemble, readings, chi_square_limit)
+    fitting = _fitting(ensemble, readings, limit)
     known |= {
         "rock_share": ensemble.rock_share,
         "layer_weight": ensemble.layer_weight,

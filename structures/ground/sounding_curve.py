@@ -79,7 +79,11 @@ class Curve:
 
 
 def curve(
-    sounding: Sounding, *, noise: float | None = None, segment_sd: float = SEGMENT_SD.value
+    sounding: Sounding,
+    *,
+    noise: float | None = None,
+    unstated_noise: float = NOISE.value,
+    segment_sd: float = SEGMENT_SD.value,
 ) -> Curve:
     """Make a sounding ready to be fitted.
 
@@ -92,6 +96,8 @@ def curve(
         As the pack gives it, readings in the order of the sheet.
     noise
         One noise (log sd) for all readings in place of the noise stated with each.
+    unstated_noise
+        Noise (log sd) of a reading that states none.
     segment_sd
         Log sd of the free factor of each segment beyond the first.
 
@@ -105,7 +111,7 @@ def curve(
         raise ValueError("a curve needs readings")
     apparent = np.array([reading.apparent_resistivity_ohm_m for reading in readings])
     log_sd = np.array(
-        [reading.sd_percent / 100 if noise is None else noise for reading in readings]
+        [reading.log_sd(unstated_noise) if noise is None else noise for reading in readings]
     )
     if not ((apparent > 0).all() and (log_sd > 0).all() and segment_sd > 0):
         raise ValueError("readings, their noise and the sd of a segment must be positive")

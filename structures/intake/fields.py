@@ -149,7 +149,11 @@ _RESISTIVITY: Final = Field(
     ),
 )
 _SD: Final = Field(
-    "sd_percent", "standard deviation of the reading, 3 where left out", unit="%", low=1, high=10
+    "sd_percent",
+    "standard deviation of the reading; where left out the setting counts, 3 unless changed",
+    unit="%",
+    low=1,
+    high=10,
 )
 SCHLUMBERGER: Final = (
     Field(

@@ -9,7 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Literal
 
-from structures.intake.defaults import WALL
+from structures.intake.defaults import GROUND, WALL
 
 if TYPE_CHECKING:
     from structures.errors import Finding
@@ -69,12 +69,19 @@ class Probe:
 
 @dataclass(frozen=True, slots=True)
 class SoundingReading:
-    """One reading; a Wenner reading of spacing a stands as AB/2 = 1.5 a, MN/2 = 0.5 a."""
+    """One reading; a Wenner reading of spacing a stands as AB/2 = 1.5 a, MN/2 = 0.5 a.
+
+    `sd_percent` is None where the sheet states none: then the setting counts.
+    """
 
     ab2_m: float
     mn2_m: float
     apparent_resistivity_ohm_m: float
-    sd_percent: float = 3.0
+    sd_percent: float | None = None
+
+    def log_sd(self, unstated: float = GROUND["sounding_noise"].value) -> float:
+        """Noise of the reading as sd of its logarithm; `unstated` where none is stated."""
+        return unstated if self.sd_percent is None else self.sd_percent / 100
 
 
 @dataclass(frozen=True, slots=True)

@@ -34,7 +34,6 @@ if TYPE_CHECKING:
     from structures.intake.pack import Sounding, SurveyPack, WallSettings
 
 FORMULA_SIGNS: Final = ("=", "+", "-", "@", "'")  # a spreadsheet would run or swallow these
-PLAIN_SD_PERCENT: Final = 3.0  # what a reading without sd_percent is read as
 READING_COLUMNS: Final = (
     "ab2_m",
     "mn2_m",
@@ -119,8 +118,6 @@ def _readings(sounding: Sounding) -> list[dict[str, float]]:
         if sounding.array == "wenner":
             del row["ab2_m"]
             row = {"a_m": 2.0 * row.pop("mn2_m"), **row}  # MN = a
-        if row["sd_percent"] == PLAIN_SD_PERCENT:
-            del row["sd_percent"]
         rows.append(row)
     return rows
 

@@ -108,7 +108,7 @@ def _check_slope(segment: Readings, ledger: Ledger) -> None:
             continue
         step = math.log(later.ab2_m / one.ab2_m)
         rise = math.log(later.apparent_resistivity_ohm_m / one.apparent_resistivity_ohm_m)
-        noise = math.hypot(one.sd_percent, later.sd_percent) / 100.0
+        noise = math.hypot(one.log_sd(), later.log_sd())
         if rise > STEEPEST * step + SDS_OF_SLOPE * noise:
             what = f"The curve climbs steeper than layered ground allows at AB/2 {later.ab2_m:g}."
             remedy = "Check cable leak or a wrong factor."

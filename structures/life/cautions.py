@@ -196,10 +196,7 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     ),
     "default-changed": (
         "warn",
-        (
-            "{words}: {value:g}{unit} instead of {default:g} (accepted {low:g} to {high:g}). A licensed "
-            "engineer's name, licence number, date and reason are asked for."
-        ),
+        ("{words}: {value:g}{unit} instead of {default:g} (accepted {low:g} to {high:g}). {who}"),
     ),
     "default-used": (
         "note",
@@ -224,13 +221,13 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     "trench-collapse": (
         "warn",
         "Sand stands only while damp; a wet or drying face fails without warning, in seconds. From "
-        "1.2 m on nobody enters a cut without slope or support; nobody goes in alone, or where the "
+        "{entry_m:g} m on nobody enters a cut without slope or support; nobody goes in alone, or where the "
         "day's look says stop. " + CLOSING_SENTENCE,
     ),
     "edge": (
         "warn",
         "Spoil and machines stay {distance_m:.2f} m or more from the edge: nobody goes in until "
-        "they are moved. A ladder within 7.6 m from 1.2 m depth; fence and light at night. "
+        "they are moved. A ladder within 7.6 m from {entry_m:g} m depth; fence and light at night. "
         + CLOSING_SENTENCE,
     ),
     "pumping": (

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 
 from structures.intake.defaults import WATER
+from structures.intake.practice import HANDBOOK, Practice
 from structures.units import HOURS_PER_DAY, SECONDS_PER_DAY, SECONDS_PER_HOUR
 
 if TYPE_CHECKING:
@@ -23,6 +24,7 @@ if TYPE_CHECKING:
 WATER_WEIGHT_KN_PER_M3: Final = 9.81  # handbook 6.10
 FOOT_WATER_M: Final = 0.30  # water left over the rock at the foot of the sides, handbook 6.c
 STANDBY_PUMPS: Final = 1  # handbook 6.10
+SICHARDT: Final = WATER["sichardt_c"]  # both ends of its range are run beside the middle
 
 
 def sichardt_reach_m(
@@ -81,7 +83,9 @@ def slot_storage_m3_per_m(
     return 2.0 * specific_yield * np.asarray(reach_m) * (head - mean)
 
 
-def pump_power_kw(flow_m3_per_s: float, head_m: float, efficiency: float) -> float:
+def pump_power_kw(
+    flow_m3_per_s: float, head_m: float, efficiency: float = WATER["pump_efficiency"].value
+) -> float:
     """Power that a pump draws. Source: handbook 6.10.
 
     Raises
@@ -117,8 +121,7 @@ def trench_inflow(
     k_m_per_s: float,
     specific_yield: float,
     foot_m: float = FOOT_WATER_M,
-    drawdown_hours: float = WATER["drawdown_hours"].value,
-    first_stage_factor: float = WATER["first_stage_factor"].value,
+    practice: Practice = HANDBOOK,
 ) -> Inflow:
     """Steady inflow and first stage of a trench. Source: handbook 6.8 and 6.9.
 
@@ -130,32 +133,31 @@ def trench_inflow(
         Of the bed's sand.
     foot_m
         Water left over the rock at the trench.
-    drawdown_hours
-        Time allowed to pull the water down first.
-    first_stage_factor
-        First-stage pumping over the steady inflow, at least.
+    practice
+        Time allowed to pull the water down first, least first stage over the steady inflow, and
+        Sichardt's factor of the middle figure.
     """
     head = np.asarray(head_m, dtype=np.float64)
     length = np.asarray(length_m, dtype=np.float64)
-    factor = WATER["sichardt_c"]
-    reaches = {
-        c: sichardt_reach_m(head, foot_m, k_m_per_s, c)
-        for c in (factor.low, factor.value, factor.high)
-    }
+    low, middle, high = SICHARDT.low, practice.sichardt_c, SICHARDT.high
+    reaches = {c: sichardt_reach_m(head, foot_m, k_m_per_s, c) for c in (low, middle, high)}
     steady = {
         c: slot_inflow_m2_per_s(head, foot_m, k_m_per_s, reach) * length * SECONDS_PER_HOUR
         for c, reach in reaches.items()
     }
     stages = []
-    for c in (factor.low, factor.high):
+    for c in (low, high):
         stored = slot_storage_m3_per_m(head, foot_m, reaches[c], specific_yield) * length
-        stages += [first_stage_factor * steady[c], steady[c] + stored / drawdown_hours]
+        stages += [
+            practice.first_stage_factor * steady[c],
+            steady[c] + stored / practice.drawdown_hours,
+        ]
     return Inflow(
         head_m=head,
-        reach_m=reaches[factor.high],
-        steady_m3_per_h=steady[factor.value],
-        steady_least_m3_per_h=steady[factor.high],
-        steady_most_m3_per_h=steady[factor.low],
+        reach_m=reaches[high],
+        steady_m3_per_h=steady[middle],
+        steady_least_m3_per_h=steady[high],
+        steady_most_m3_per_h=steady[low],
         first_stage_m3_per_h=np.max(stages, axis=0),
     )
 
@@ -180,13 +182,24 @@ class Pumping:
     pumps: NDArray[np.float64] | None
 
 
-def plan_pumping(cutoff: Cutoff, water: GroundWater, works: Works) -> Pumping:
+def plan_pumping(
+    cutoff: Cutoff, water: GroundWater, works: Works, *, practice: Practice = HANDBOOK
+) -> Pumping:
     """Pump hours as planned, or from the days below water and the inflow.
 
     Source: handbook 6.8 to 6.11. Hours that were planned are taken as they are.
+
+    Parameters
+    ----------
+    cutoff
+        The wall of every draw.
+    water, works
+        What was measured and planned; they go before the practice.
+    practice
+        Specific yield, capacity of a pump, first stage and Sichardt's factor.
     """
-    inflow, lacking = _inflow(cutoff, water)
-    capacity = WATER["pump_m3_per_hour"].value
+    inflow, lacking = _inflow(cutoff, water, practice)
+    capacity = practice.pump_m3_per_hour
     if works.pump_m3_per_hour is not None:
         capacity = works.pump_m3_per_hour
     pumps = None if inflow is None else count_pumps(inflow.first_stage_m3_per_h, capacity)
@@ -207,7 +220,9 @@ def plan_pumping(cutoff: Cutoff, water: GroundWater, works: Works) -> Pumping:
     return Pumping(hours, working, "", inflow, pumps)
 
 
-def _inflow(cutoff: Cutoff, water: GroundWater) -> tuple[Inflow | None, tuple[str, ...]]:
+def _inflow(
+    cutoff: Cutoff, water: GroundWater, practice: Practice
+) -> tuple[Inflow | None, tuple[str, ...]]:
     """Inflow of every draw, or None and what was not given."""
     k, level = water.hydraulic_conductivity_m_per_day, water.water_level_m
     if k is None or level is None:
@@ -218,11 +233,12 @@ def _inflow(cutoff: Cutoff, water: GroundWater) -> tuple[Inflow | None, tuple[st
         return None, tuple(key for key, value in given.items() if value is None)
     specific_yield = water.specific_yield
     if specific_yield is None:
-        specific_yield = WATER["specific_yield"].value
+        specific_yield = practice.specific_yield
     inflow = trench_inflow(
         level - cutoff.lowest_rock_m,
         cutoff.length_m,
         k_m_per_s=k / SECONDS_PER_DAY,
         specific_yield=specific_yield,
+        practice=practice,
     )
     return inflow, ()

@@ -5,8 +5,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from structures.intake.defaults import LEAST_SLOPE, LICENSED_DEPTH_M, WALL
+from structures.intake.defaults import LEAST_SLOPE, WALL
+from structures.intake.practice import HANDBOOK, Practice
 from structures.life.cautions import Caution, caution
+from structures.life.changed import changed_default
 from structures.wall.cutoff import Cutoff, cut
 from structures.wall.section import make_section
 from structures.wall.stretch import LowGround, Stretch, find_bars, find_low_ground
@@ -119,7 +121,9 @@ def describe_wall(cutoff: Cutoff) -> Wall:
     )
 
 
-def wall_cautions(wall: Wall, settings: WallSettings, works: Works) -> tuple[Caution, ...]:
+def wall_cautions(
+    wall: Wall, settings: WallSettings, works: Works, *, practice: Practice = HANDBOOK
+) -> tuple[Caution, ...]:
     """List what must be said beside a wall, in the order of the handbook.
 
     Source: handbook 5.4 to 5.6 (flanks, low ground, rock bars), 11 and 12 (depth, slopes,
@@ -132,9 +136,9 @@ def wall_cautions(wall: Wall, settings: WallSettings, works: Works) -> tuple[Cau
             for low in wall.low_ground
         ),
         *_bar_cautions(wall),
-        *_depth_cautions(wall),
+        *_depth_cautions(wall, practice.licensed_depth_m),
         *_slope_cautions(wall, works),
-        *_default_cautions(settings),
+        *_default_cautions(settings, practice),
     )
 
 
@@ -158,11 +162,11 @@ def _bar_cautions(wall: Wall) -> list[Caution]:
     return [caution("rock-bar", from_m=bar.from_m, to_m=bar.to_m) for bar in wall.bars]
 
 
-def _depth_cautions(wall: Wall) -> list[Caution]:
+def _depth_cautions(wall: Wall, limit_m: float) -> list[Caution]:
     # Six decimals, so that levels booked to the centimetre meet the limit exactly (handbook 8.4).
-    if round(wall.greatest_depth_to_key_m, 6) <= LICENSED_DEPTH_M:
+    if round(wall.greatest_depth_to_key_m, 6) <= limit_m:
         return []
-    return [caution("trench-deep", depth_m=wall.greatest_depth_to_key_m, limit_m=LICENSED_DEPTH_M)]
+    return [caution("trench-deep", depth_m=wall.greatest_depth_to_key_m, limit_m=limit_m)]
 
 
 def _slope_cautions(wall: Wall, works: Works) -> list[Caution]:
@@ -176,18 +180,10 @@ def _slope_cautions(wall: Wall, works: Works) -> list[Caution]:
     return [caution("side-steep", slope=slope, limit=LEAST_SLOPE)]
 
 
-def _default_cautions(settings: WallSettings) -> list[Caution]:
+def _default_cautions(settings: WallSettings, practice: Practice) -> list[Caution]:
     changed = [WALL[key] for key in settings.changed if WALL[key].owner == "E"]
     return [
-        caution(
-            "default-changed",
-            words=default.words.capitalize(),
-            value=_value(settings, default.key),
-            unit="" if default.unit == "-" else f" {default.unit}",
-            default=default.value,
-            low=default.low,
-            high=default.high,
-        )
+        changed_default(default, _value(settings, default.key), practice.decision(default.key))
         for default in changed
     ]
 

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final, NamedTuple
 
 from structures.intake.defaults import WATER
+from structures.intake.practice import HANDBOOK, Practice
 from structures.life.cautions import Caution, caution
 from structures.units import SECONDS_PER_DAY
 from structures.water.leakage import clay_leakage_m3_per_day, face_of
@@ -50,7 +51,7 @@ def judge_water(
     rock: RockLine,
     cutoff: Cutoff | None,
     *,
-    clay_k_m_per_s: float = WATER["clay_k_m_per_s"].value,
+    practice: Practice = HANDBOOK,
 ) -> Water:
     """Compute what the survey allows of underflow, storage and leakage.
 
@@ -64,8 +65,9 @@ def judge_water(
         The rock line; of an estimated one the 50 % line.
     cutoff
         The wall of that line; None where no rock line is known.
-    clay_k_m_per_s
-        Conductivity of the clay; the limit of acceptance without a test of the clay in place.
+    practice
+        Specific yield where none was measured, and conductivity of the clay: the limit of
+        acceptance, since nobody has tested the clay in place yet.
     """
     section = None
     if rock.source != "none":
@@ -74,14 +76,17 @@ def judge_water(
     answers = {
         "section_area_m2": area,
         "underflow_m3_per_day": _underflow(pack, area),
-        "storage_m3": _storage(pack, section, cutoff),
-        "leakage_m3_per_day": _leakage(pack, cutoff, clay_k_m_per_s * SECONDS_PER_DAY),
+        "storage_m3": _storage(pack, section, cutoff, practice.specific_yield),
+        "leakage_m3_per_day": _leakage(pack, cutoff, practice.clay_k_m_per_s * SECONDS_PER_DAY),
     }
     reasons = {name: one.why for name, one in answers.items() if one.value is None}
     return Water(
         **{name: one.value for name, one in answers.items()},
         reasons=reasons,
-        cautions=(*_not_known(reasons), *_storage_cautions(pack, cutoff, answers["storage_m3"])),
+        cautions=(
+            *_not_known(reasons),
+            *_storage_cautions(pack, cutoff, answers["storage_m3"], practice.specific_yield),
+        ),
     )
 
 
@@ -122,7 +127,9 @@ def _underflow(pack: SurveyPack, area: _Answer) -> _Answer:
     return _Answer(underflow_m3_per_day(conductivity, area.value, gradient))
 
 
-def _storage(pack: SurveyPack, section: Bands | None, cutoff: Cutoff | None) -> _Answer:
+def _storage(
+    pack: SurveyPack, section: Bands | None, cutoff: Cutoff | None, unmeasured_yield: float
+) -> _Answer:
     level_m, bed_slope = pack.ground_water.water_level_m, pack.site.bed_slope
     if section is None or cutoff is None:
         return _Answer(None, NO_ROCK)
@@ -130,7 +137,7 @@ def _storage(pack: SurveyPack, section: Bands | None, cutoff: Cutoff | None) -> 
         return _not_given({LEVEL: level_m, "site.bed_slope": bed_slope})
     specific_yield = pack.ground_water.specific_yield
     if specific_yield is None:
-        specific_yield = WATER["specific_yield"].value
+        specific_yield = unmeasured_yield
     return _Answer(
         storage_m3(
             section,
@@ -173,7 +180,9 @@ def _not_known(reasons: dict[str, str]) -> list[Caution]:
     ]
 
 
-def _storage_cautions(pack: SurveyPack, cutoff: Cutoff | None, storage: _Answer) -> list[Caution]:
+def _storage_cautions(
+    pack: SurveyPack, cutoff: Cutoff | None, storage: _Answer, unmeasured_yield: float
+) -> list[Caution]:
     """Say what a storage rests on that nobody measured, or why it is nothing."""
     level_m = pack.ground_water.water_level_m
     if storage.value is None or cutoff is None or level_m is None:
@@ -185,9 +194,9 @@ def _storage_cautions(pack: SurveyPack, cutoff: Cutoff | None, storage: _Answer)
             caution(
                 "default-used",
                 words=default.words.capitalize(),
-                value=default.value,
+                value=unmeasured_yield,
                 unit="of the volume",
-                source="handbook 12",
+                source="handbook 12" if unmeasured_yield == default.value else "setting",
             )
         )
     crest_m = cutoff.section.crest_level_m

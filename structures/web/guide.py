@@ -6,6 +6,7 @@ from django.shortcuts import render
 from django.views.decorators.http import require_GET
 
 from structures.access import MAY, Act
+from structures.intake.practice import HANDBOOK
 from structures.life.cautions import ALWAYS, CATALOGUE, CLOSING_SENTENCE, caution
 from structures.takeoff.spoil import spoil_distance_m
 
@@ -19,7 +20,11 @@ def guide(request):
             for act, roles in MAY.items()
             if act != Act.SEE
         ],
-        "cautions": [caution(code, distance_m=least_m) for code in CATALOGUE if code in ALWAYS],
+        "cautions": [
+            caution(code, distance_m=least_m, entry_m=HANDBOOK.depth_without_entry_m)
+            for code in CATALOGUE
+            if code in ALWAYS
+        ],
         "closing": CLOSING_SENTENCE,
     }
     return render(request, "structures/guide.html", context)

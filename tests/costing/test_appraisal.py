@@ -3,13 +3,15 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from datetime import date
 from math import sqrt
 
 import pytest
 
 from costing.appraisal import appraise
 from costing.price.rates import Rate
-from structures.intake.pack import GroundWater, Works
+from structures.intake.pack import GroundWater, WallSettings, Works
+from structures.intake.practice import Decision, Practice
 from tests.costing.documents.appraisals import ON, estimated, example, pack, rates, unpriced
 
 
@@ -70,7 +72,48 @@ def test_draws_tell_of_open_flanks_even_where_no_total_is_known():
     assert found.spread_note == "the estimate is incomplete"
 
 
-@pytest.mark.parametrize("other", [{"seed": 7}, {"draws": 2001}, {"schedule": None}])
+SIGNED = Decision("sichardt_c", 3000.0, "A. Rao", "L-1", date(2026, 3, 1), "pumped here.")
+
+
+def changed(**values):
+    plain = replace(pack("B"), wall=WallSettings())
+    found = appraise(plain, on=ON, practice=Practice(**values, decisions=(SIGNED,)))
+    return [one.text for one in found.cautions if one.code == "default-changed"]
+
+
+def test_a_changed_default_of_the_engineer_is_said_with_who_decided_it():
+    """Oracle: handbook 12, last sentence; a default of the district is nobody's signature."""
+    assert changed(pump_m3_per_hour=10.0) == []
+    assert changed(sichardt_c=3000.0, specific_yield=0.2) == [
+        (
+            "Specific yield: 0.2 instead of 0.15 (accepted 0.05 to 0.3). A licensed engineer's "
+            "name, licence number, date and reason are asked for."
+        ),
+        (
+            "Sichardt's factor: 3000 s^0.5 m^-0.5 instead of 2000 (accepted 1500 to 3000). Decided "
+            "by A. Rao, licence L-1, on 2026-03-01: pumped here."
+        ),
+    ]
+    (other,) = changed(sichardt_c=2500.0)
+    assert "A. Rao" not in other
+
+
+def test_the_depth_that_nobody_enters_is_the_one_that_is_set():
+    found = appraise(pack("B"), on=ON, practice=Practice(depth_without_entry_m=0.9))
+    assert "From 0.9 m on nobody enters" in said(found)["trench-collapse"].text
+    assert "A ladder within 7.6 m from 0.9 m depth" in said(found)["edge"].text
+    assert "From 1.2 m on nobody enters" in said(unpriced())["trench-collapse"].text
+
+
+@pytest.mark.parametrize(
+    "other",
+    [
+        {"seed": 7},
+        {"draws": 2001},
+        {"schedule": None},
+        {"practice": Practice(rock_range_m=25.0)},
+    ],
+)
 def test_other_inputs_or_other_chance_have_another_digest(other):
     whole = estimated()
     plain = {"schedule": rates(), "on": ON}

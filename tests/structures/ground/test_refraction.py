@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 from structures.ground.refraction import interpret_refraction
 from structures.ground.travel_times import first_arrivals_s, slowness
 from structures.intake.pack import RefractionLine, RefractionPick
+from structures.intake.practice import Practice
 
 STATIONS = np.arange(2.5, 60.1, 2.5)  # handbook section 3, attainable: 24 geophones at 2.5 m
 
@@ -160,3 +161,18 @@ def test_one_direction_and_a_late_trigger_are_told():
     late = (RefractionPick(2.5, 60.0, 40.0), RefractionPick(60.0, 2.5, 43.0))
     read = interpret_refraction(RefractionLine(20.0, (*both.picks, *late), "R1"))
     assert "differ by 3.0 ms" in read.notes[-1]
+    patient = interpret_refraction(
+        RefractionLine(20.0, (*both.picks, *late), "R1"), practice=Practice(reciprocity_ms=3.5)
+    )
+    assert not any("differ by" in note for note in patient.notes)
+
+
+def test_a_set_error_is_the_least_that_is_stated():
+    """Oracle: handbook 4.3, max(least, share of depth)."""
+    both = line((350.0, 3500.0), (3.0,))
+    least = interpret_refraction(both, practice=Practice(se_refraction_m=4.0))
+    assert least.rock_depth_sd_m == 4.0
+    share = interpret_refraction(
+        both, practice=Practice(se_refraction_m=0.5, se_refraction_share=0.5)
+    )
+    assert share.rock_depth_sd_m >= 0.5 * share.rock_depth_m

@@ -23,6 +23,7 @@ from structures.intake.pack import (
     SurveyPack,
     Toes,
 )
+from structures.intake.practice import Practice
 
 PACK = SurveyPack(
     Site("T-1"),
@@ -251,3 +252,34 @@ def test_very_many_bounds_keep_the_deepest_of_each_two_metres():
     probes = tuple(Probe(0.9 * i + 1.0, 0.5 + (i % 3), True) for i in range(60))
     line = line_of(replace(PACK, probes=probes))
     assert "rock-bounds-thinned" in codes(line)
+
+
+def test_errors_of_tests_are_those_that_are_set():
+    """Oracle: handbook 4.3 and 4.4; an outcrop keeps its 0.05 m."""
+    pack = replace(PACK, rock=(*PACK.rock[:2], RockTest(60.0, 0.0, "outcrop", True)))
+    practice = Practice(se_pit_m=0.3, se_core_m=0.4, se_sounding_m=2.0, se_sounding_share=0.5)
+    line = line_of(pack, practice=practice, soundings=[sounding(35.0, 6.0)])
+    assert {one.kind: one.sd_m for one in line.evidence} == {
+        "pit": 0.3,
+        "bore": 0.4,
+        "outcrop": 0.05,
+        "sounding": 3.0,
+    }
+    # An untied sounding is never surer than a tied one is said to be.
+    alone = replace(PACK, rock=(), probes=())
+    both = [sounding(20.0, 4.0), sounding(40.0, 4.0)]
+    untied = line_of(alone, practice=practice, soundings=both)
+    assert [one.sd_m for one in untied.evidence] == [2.0, 2.0]
+
+
+def test_range_and_least_sill_are_those_that_are_set():
+    """Oracle: handbook 4.2 with 4.6, predicted with the covariance that is set."""
+    practice = Practice(rock_range_m=40.0, rock_least_sill_m2=9.0)
+    # Rock so deep that the ground cuts nothing off; the mean depth alone would give a sill of 4 m2.
+    deep = replace(PACK, rock=tuple(replace(test, depth_m=8.0) for test in PACK.rock))
+    line = line_of(deep, practice=practice)
+    seen = Observations([0.0, 25.0, 60.0], [95.0, 92.0, 95.0], [0.05, 0.10, 0.10])
+    wanted = predict(seen, Covariance(9.0, 40.0), [33.0])
+    at = int(np.flatnonzero(line.offset_m == 33.0)[0])
+    assert line.level_m[at] == pytest.approx(wanted.mean_m[0], abs=1e-9)
+    assert line.sd_m[at] == pytest.approx(wanted.sd_m[0], rel=1e-5)

@@ -7,10 +7,12 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from structures.ground.inversion import invert
 from structures.ground.layer_prior import prior_for
 from structures.ground.resistivity import apparent_resistivity, spread
 from structures.ground.sounding import SEED, Interpretation, Refusal, interpret
 from structures.ground.sounding_curve import curve, whitened_residual
+from structures.intake.practice import Practice
 
 DEPTHS = ("rock_depth_m", "rock_depth_low_m", "rock_depth_high_m", "rock_depth_sd_m")
 
@@ -188,19 +190,58 @@ def test_a_model_outside_the_range_is_noted(make_sounding):
     assert note.startswith("The model with the fewest layers has its deepest boundary at")
 
 
-@pytest.mark.parametrize(
-    ("options", "message"),
-    [
-        ({"noise": 0.2}, "noise of a sounding reading: 0.2, accepted 0.01 to 0.1"),
-        ({"segment_sd": 0.5}, "factor of a segment, log sd: 0.5, accepted 0.02 to 0.2"),
-        ({"starts": 4}, "starts of an inversion: 4, accepted 8 to 64"),
-        ({"chi_square_limit": 3.0}, "accepted 1.2 to 2"),
-    ],
-)
-def test_a_setting_out_of_range_is_a_wrong_call(noisy, options, message):
-    """Oracle: handbook 12, accepted ranges."""
-    with pytest.raises(ValueError, match=message):
-        interpret(noisy, **options)
+def test_a_noise_out_of_range_is_a_wrong_call(noisy):
+    """Oracle: handbook 12, accepted range."""
+    words = "noise of a sounding reading: 0.2, accepted 0.01 to 0.1"
+    with pytest.raises(ValueError, match=words):
+        interpret(noisy, noise=0.2)
+
+
+def test_the_set_noise_counts_where_the_sheet_states_none(noisy):
+    """Law: a reading that states 5 % is a reading that states none under a setting of 0.05."""
+    stated = replace(noisy, readings=tuple(replace(one, sd_percent=5.0) for one in noisy.readings))
+    loud = Practice(sounding_noise=0.05)
+    by_sheet, by_setting = interpret(stated), interpret(noisy, practice=loud)
+    assert by_setting.noise.tolist() == [0.05] * 20
+    assert by_setting.rock_depth_m == by_sheet.rock_depth_m
+    assert interpret(stated, practice=Practice(sounding_noise=0.10)).noise.tolist() == [0.05] * 20
+
+
+def test_a_harder_rule_of_rock_is_the_one_that_is_asked(read, noisy):
+    """Oracle: handbook 2.10; the model's deepest layer has 1000 ohm m, 25 times the layer above."""
+    hard, steep = (
+        Practice(rock_least_ohm_m=3000.0),
+        Practice(rock_least_ratio=20.0, rock_share=0.99),
+    )
+    for practice in (hard, steep):
+        rule = interpret(noisy, practice=practice).prior.rock
+        assert (rule.least_ohm_m, rule.least_ratio, rule.share) == (
+            practice.rock_least_ohm_m,
+            practice.rock_least_ratio,
+            practice.rock_share,
+        )
+    _, refusal = refused(noisy, practice=hard)
+    assert refusal.code == "no-rock"
+    assert "the deepest layer has 3000 ohm m" in refusal.sentence
+
+
+def test_limit_segment_factor_and_starts_are_those_that_are_set(noisy, make_sounding):
+    """Oracle: chi-square per degree, the prior of handbook 2.6 and the draws of the starts."""
+    # Three layers with a weathered one between: two layers do not pass, three do at some limit.
+    free = interpret(noisy, practice=Practice(sounding_segment_sd=0.2)).segment_factors
+    held = interpret(noisy, practice=Practice(sounding_segment_sd=0.02)).segment_factors
+    assert all(loose.log_sd > tight.log_sd for loose, tight in zip(free[1:], held[1:], strict=True))
+    error = np.where(np.arange(20) % 2, 0.0345, -0.0345)
+    uneven = make_sounding((200, 40, 1000), (2, 6), log_error=error)
+    wide = interpret(uneven, practice=Practice(sounding_chi_square=2.0))
+    strict = interpret(uneven, practice=Practice(sounding_chi_square=1.2))
+    assert 1.2 < wide.chi_square_per_degree < 2.0
+    assert "under 1.2 is asked" in strict.refusal.sentence
+    rng = np.random.default_rng(SEED)
+    many = invert(curve(noisy), 3, rng=rng, starts=16)
+    assert many.chi_square <= invert(
+        curve(noisy), 3, rng=np.random.default_rng(SEED)
+    ).chi_square * (1 + 1e-6)
 
 
 def test_a_result_has_a_depth_or_a_refusal():

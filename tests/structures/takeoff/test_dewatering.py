@@ -1,5 +1,7 @@
 """Inflow to the trench and pump hours."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from hypothesis import given
@@ -7,6 +9,7 @@ from hypothesis import strategies as st
 from scipy.integrate import quad
 
 from structures.intake.pack import GroundWater, Works
+from structures.intake.practice import Practice
 from structures.takeoff.dewatering import (
     count_pumps,
     plan_pumping,
@@ -73,7 +76,7 @@ def test_water_stored_above_the_parabola():
 
 def test_first_stage_with_the_stored_water():
     """Oracle: check value 6.i; 2 pumps of 20 m3/h run."""
-    inflow = trench_inflow(HEAD_M, 54.0, k_m_per_s=K, specific_yield=0.15, drawdown_hours=240.0)
+    inflow = trench_inflow(HEAD_M, 54.0, k_m_per_s=K, specific_yield=0.15)
     assert inflow.first_stage_m3_per_h == printed("31.90853")
     assert count_pumps(inflow.first_stage_m3_per_h, 20.0) == 2
 
@@ -142,6 +145,49 @@ def test_specific_yield_falls_back_to_the_default():
     pumping = plan_pumping(cutoff_b(), water, Works())
     assert pumping.inflow.first_stage_m3_per_h[0] == printed("31.90853")
     assert pumping.hours is None
+
+
+@pytest.mark.parametrize(("c", "steady"), [(1500.0, "10.53872"), (3000.0, "5.26936")])
+def test_the_middle_figure_is_that_of_the_set_factor(c, steady):
+    """Oracle: check value 6.f; the first stage keeps both ends of the range (6.i)."""
+    practice = Practice(sichardt_c=c)
+    inflow = plan_pumping(cutoff_b(), MEASURED, Works(), practice=practice).inflow
+    assert inflow.steady_m3_per_h[0] == printed(steady)
+    assert inflow.steady_most_m3_per_h[0] == printed("10.53872")
+    assert inflow.steady_least_m3_per_h[0] == printed("5.26936")
+    assert inflow.first_stage_m3_per_h[0] == printed("31.90853")
+
+
+STORED_M3_PER_M = 78.93089  # check value 6.h, with C = 2000; in proportion to the factor
+
+
+@pytest.mark.parametrize(
+    ("practice", "first_stage"),
+    [
+        # Longer for the drawdown: C = 3000, its steady inflow and what is stored over 480 h.
+        (Practice(drawdown_hours=480.0), 5.26936 + 1.5 * STORED_M3_PER_M * 54 / 480),
+        # So long that the factor on the steady inflow of C = 1500 is the larger.
+        (Practice(drawdown_hours=1000.0, first_stage_factor=2.0), 2.0 * 10.53872),
+        # Twice the specific yield: twice what is stored.
+        (Practice(specific_yield=0.30), 5.26936 + 2.0 * 1.5 * STORED_M3_PER_M * 54 / 240),
+    ],
+)
+def test_first_stage_follows_what_is_set(practice, first_stage):
+    """Oracle: handbook 6.8 and 6.9 by hand from check values 6.f and 6.h, 54 m."""
+    water = GroundWater(hydraulic_conductivity_m_per_day=K * 86400, water_level_m=249.35)
+    pumping = plan_pumping(cutoff_b(), water, Works(), practice=practice)
+    assert pumping.inflow.first_stage_m3_per_h[0] == pytest.approx(first_stage, rel=1e-6)
+
+
+def test_smaller_pumps_run_longer_hours_and_the_plan_goes_before_the_setting():
+    """Oracle: handbook 6.11 with 6.i: 31.9 over 10 is 4 pumps, 24 h x 10 days x 4."""
+    practice = Practice(pump_m3_per_hour=10.0)
+    days = Works(days_below_water=10.0)
+    pumping = plan_pumping(cutoff_b(), MEASURED, days, practice=practice)
+    assert pumping.hours.tolist() == [960.0]
+    assert "4 pumps running at 10 m3/h" in pumping.working
+    planned = replace(days, pump_m3_per_hour=20.0)
+    assert plan_pumping(cutoff_b(), MEASURED, planned, practice=practice).hours.tolist() == [480.0]
 
 
 @pytest.mark.parametrize(

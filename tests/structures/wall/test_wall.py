@@ -5,6 +5,7 @@ from dataclasses import replace
 import pytest
 
 from structures.intake.pack import GroundPoint, SlopeStation, Toes, WallSettings, Works
+from structures.intake.practice import Practice
 from structures.wall.wall import design_wall, wall_cautions
 from tests.structures.wall.examples import example, expected, printed, rock_bar
 
@@ -88,6 +89,12 @@ def test_a_deep_trench_asks_for_a_licensed_design():
     exactly = case.with_rock(z + 0.1 for z in case.rock_z)
     assert wall_of(exactly).greatest_depth_to_key_m == pytest.approx(6.1)
     assert "trench-deep" not in dict(codes(exactly))
+    # Example A goes 4.15 m down to the bottom of the key: a local code may ask for less.
+    case = example("A")
+    strict = Practice(licensed_depth_m=4.0)
+    (asked, *_) = wall_cautions(wall_of(case), case.wall, Works(), practice=strict)
+    assert asked.code == "trench-deep"
+    assert "4.15 m down to the bottom of the key, over 4 m" in asked.text
 
 
 @pytest.mark.parametrize(

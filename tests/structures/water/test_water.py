@@ -1,9 +1,12 @@
 """The water of one site: values, or the reason why there is none."""
 
+from dataclasses import replace
+
 import pytest
 
 from structures.ground.rock_line import RockLine
 from structures.intake.pack import GroundWater, Site, SurveyPack
+from structures.intake.practice import Practice
 from structures.life.cautions import caution
 from structures.wall.cutoff import cut
 from structures.wall.section import make_section
@@ -55,7 +58,7 @@ def test_water_of_example_b():
 
 def test_better_clay_leaks_less():
     """Oracle: handbook 9.3 is proportional to the clay's conductivity."""
-    tested = judged("B", clay_k_m_per_s=1e-9)
+    tested = judged("B", practice=Practice(clay_k_m_per_s=1e-9))
     assert tested.leakage_m3_per_day == pytest.approx(0.1 * judged("B").leakage_m3_per_day)
 
 
@@ -131,3 +134,14 @@ def test_without_a_rock_line_nothing_is_known():
     assert set(found.reasons.values()) == {NO_ROCK}
     assert len(found.reasons) == 4
     assert [one.code for one in found.cautions] == ["water-not-known"]
+
+
+def test_a_set_specific_yield_counts_where_none_was_measured():
+    """Oracle: handbook 9.9, in proportion to Sy; what was measured goes before it."""
+    water = replace(MEASURED, specific_yield=None)
+    plain, set_ = judged("B", water), judged("B", water, practice=Practice(specific_yield=0.30))
+    assert set_.storage_m3 == pytest.approx(2.0 * plain.storage_m3)
+    assert [one.text for one in set_.cautions] == [
+        "Specific yield was not measured: 0.3 of the volume is taken (setting)."
+    ]
+    assert judged("B", practice=Practice(specific_yield=0.30)).storage_m3 == judged("B").storage_m3
