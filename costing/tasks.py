@@ -14,6 +14,7 @@ from costing.documents.result import as_json
 from costing.price.rates import read_rates
 from costing.queries.estimates import price_inputs
 from structures.errors import Refused
+from structures.intake.practice import practice_of
 from structures.intake.survey_pack import read_pack_bytes
 from structures.queries.runs import day_asked
 from structures.queries.survey_reading import READ, read_inputs
@@ -53,7 +54,8 @@ def read_survey(work: Work) -> Outcome:
     work.progress(0.1, "reading soundings, drawing the rock line and the wall")
     day = day_asked(work.held.run_id, survey.site.watershed.district)
     draws = work.params["draws"]
-    found = appraise(pack, on=day, draws=draws)
+    practice = practice_of(work.params["practice"])
+    found = appraise(pack, on=day, draws=draws, practice=practice)
     work.progress(0.8, "drawing the section")
     return Outcome(reading_json(found, draws=draws, seed=SEED))
 
@@ -70,6 +72,7 @@ def price_estimate(work: Work) -> Outcome:
         on=day_asked(work.held.run_id, inputs.design.survey.site.watershed.district),
         draws=work.params["draws"],
         seed=work.params["seed"],
+        practice=practice_of(work.params["practice"]),
     )
     if found.estimate is None:
         silent = next(one for one in found.cautions if one.level == "block")

@@ -10,17 +10,14 @@ from django.core.exceptions import ValidationError
 
 from structures.errors import Refused
 from structures.ground.angle import LATITUDE_MOST, LONGITUDE_MOST
-from structures.intake.defaults import EFFECT, GROUND, OFFICE, RATES, WALL, WORKS
+from structures.intake.defaults import EVERY
 
 if TYPE_CHECKING:
     from structures.intake.defaults import Default
 
 CURRENCY: Final = re.compile(r"[A-Z]{3}")  # letters of ISO 4217
 DRAWS: Final = "risk_draws"
-# Defaults that an office may change: those that a calculation takes from it.
-CHANGEABLE: Final[dict[str, Default]] = (
-    WALL | {DRAWS: GROUND[DRAWS]} | WORKS | RATES | OFFICE | EFFECT
-)
+CHANGEABLE: Final[dict[str, Default]] = EVERY  # defaults that an office may change
 
 
 def validate_latitude(lat: float | None) -> None:

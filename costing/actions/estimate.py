@@ -14,10 +14,11 @@ from costing.queries.schedules import schedules_valid_on
 from structures.access import Act, insist
 from structures.actions.design import draw_design, freeze_design, settled_line
 from structures.errors import Refused
+from structures.intake.practice import practice_document
 from structures.models import Run, Site, Survey
 from structures.queries.districts import today_of
 from structures.queries.runs import site_subject
-from structures.queries.settings import draws_in_force
+from structures.queries.settings import counted_in
 from structures.queries.sites import newest_survey
 from structures.runs.book import input_digest
 from structures.runs.queue import start_run
@@ -64,13 +65,16 @@ def request_estimate(
     schedule = _schedule(site, schedule_id)
     line = settled_line(survey, rock_line_id)
     design = draw_design(survey=survey, rock_line=line, wall=wall or {}, by=by)
+    counted = counted_in(site.watershed.district)
     params = {
         "site": site.code,
         "design_id": design.pk,
         "design": design.digest,
         "schedule_id": schedule.pk,
         "schedule": schedule.digest,
-        "draws": draws_in_force(site.watershed.district),
+        "wall": dict(wall or {}),
+        "draws": counted.draws,
+        "practice": practice_document(counted.practice),
         "seed": SEED,
     }
     return start_run(kind=PRICE, params=params, subject=site_subject(site.code), asked_by=by)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from rest_framework import serializers
 
 from costing.queries.estimates import stale_reasons
+from structures.queries.settings import counted_in
 from structures.api.serializers import FindingSerializer
 
 
@@ -100,7 +101,12 @@ class EstimateSerializer(serializers.Serializer):
     frozen_at = serializers.DateTimeField()
 
     def get_stale(self, estimate) -> list[str]:
-        return list(stale_reasons(estimate))
+        # A page of a list is judged by what counts in its districts, each asked once.
+        district = estimate.site.watershed.district
+        asked = self.context.setdefault("counted", {})
+        if district.pk not in asked:
+            asked[district.pk] = counted_in(district)
+        return list(stale_reasons(estimate, asked[district.pk]))
 
 
 class EstimateWholeSerializer(EstimateSerializer):

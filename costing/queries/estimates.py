@@ -13,9 +13,13 @@ from costing.appraisal import METHOD
 from costing.models import Estimate, EstimateLine, RateSchedule
 from costing.queries.schedules import schedule_record
 from structures import access
+from structures.intake.defaults import EVERY, WALL
+from structures.intake.practice import KEYS, practice_of
 from structures.models import Design, RockLine, Survey
+from structures.queries.settings import counted_in
 from structures.queries.sites import SiteSheet, site_sheet
 from structures.queries.surveys import pack_of
+from structures.validators import DRAWS
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -26,12 +30,13 @@ if TYPE_CHECKING:
     from costing.price import rates
     from structures.intake.pack import SurveyPack
     from structures.models import User
+    from structures.queries.settings import Counted
 
 
 def visible_estimates(user: User) -> QuerySet[Estimate]:
     """Estimates of all sites the user may see, newest first, with what they are judged stale by."""
     found = Estimate.objects.filter(site__in=access.sites(user, access.Act.SEE_MONEY)).defer(
-        "result"
+        "result", "run__result"
     )
     return _judged(found).order_by("-frozen_at", "-pk")
 
@@ -48,8 +53,14 @@ def lines_of(estimate: Estimate) -> QuerySet[EstimateLine]:
     return estimate.lines.order_by("order")
 
 
-def stale_reasons(estimate: Estimate) -> tuple[str, ...]:
-    """Say why an estimate is stale; empty where it is not. For rows of `visible_estimates`."""
+def stale_reasons(estimate: Estimate, counted: Counted | None = None) -> tuple[str, ...]:
+    """Say why an estimate is stale; empty where it is not. For rows of `visible_estimates`.
+
+    Parameters
+    ----------
+    counted
+        Settings in force in its district, where the caller has asked for them already.
+    """
     reasons = []
     if estimate.newest_survey != estimate.survey.version:
         reasons.append(
@@ -63,6 +74,10 @@ def stale_reasons(estimate: Estimate) -> tuple[str, ...]:
         reasons.append(_ended(estimate))
     elif estimate.valid_schedule_id != estimate.schedule_id:
         reasons.append(f"Other rates hold today: {estimate.valid_schedule_code}.")
+    counted = counted or counted_in(estimate.site.watershed.district)
+    settings = _changed_settings(estimate, counted)
+    if settings:
+        reasons.append(f"Settings were changed since: {', '.join(settings)}.")
     if estimate.method != METHOD:
         reasons.append(f"The method is {METHOD} now; this was computed by {estimate.method}.")
     return tuple(reasons)
@@ -126,7 +141,13 @@ def _judged(found: QuerySet[Estimate]) -> QuerySet[Estimate]:
     ).order_by("-at", "-pk")
     today = Value(timezone.localdate())
     return found.select_related(
-        "site__watershed__district", "survey", "rock_line", "schedule", "design", "asked_by"
+        "site__watershed__district",
+        "survey",
+        "rock_line",
+        "schedule",
+        "design",
+        "run",
+        "asked_by",
     ).annotate(
         day=Coalesce(F("site__watershed__district__as_of"), today, output_field=DateField()),
         newest_survey=Subquery(surveys.values("version")[:1]),
@@ -134,6 +155,30 @@ def _judged(found: QuerySet[Estimate]) -> QuerySet[Estimate]:
         valid_schedule_id=Subquery(valid.values("pk")[:1]),
         valid_schedule_code=Subquery(valid.values("code")[:1]),
     )
+
+
+def _changed_settings(estimate: Estimate, counted: Counted) -> list[str]:
+    """Name the settings that count now and did not then, or counted with another value.
+
+    What the survey says of its wall, and what was asked for with the estimate, goes before any
+    setting; what changes below it changes nothing.
+    """
+    params = estimate.run.params
+    own = {*estimate.survey.pack.get("wall", {}), *params["wall"]}
+    then, now = estimate.wall, counted.wall
+    pairs = [
+        (WALL[key], then.get(key, WALL[key].value), now.get(key, WALL[key].value))
+        for key in WALL
+        if key not in own
+    ]
+    before = practice_of(params["practice"])
+    pairs += [(EVERY[key], getattr(before, key), getattr(counted.practice, key)) for key in KEYS]
+    pairs.append((EVERY[DRAWS], params["draws"], counted.draws))
+    return [
+        f"{default.words} {default.written(now)}, was {default.written(then)}"
+        for default, then, now in pairs
+        if then != now
+    ]
 
 
 def _ended(estimate: Estimate) -> str:

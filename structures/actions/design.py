@@ -9,7 +9,7 @@ from django.db.models import Max
 
 from structures.errors import Refused
 from structures.models import Design, Structure
-from structures.queries.settings import wall_in_force
+from structures.queries.settings import counted_in
 from structures.queries.sites import newest_rock_line
 from structures.queries.surveys import pack_of
 from structures.runs.book import input_digest
@@ -38,8 +38,7 @@ def draw_design(
     # The structure row locks its versions.
     structure = Structure.objects.select_for_update().get(site=survey.site)
     own = survey.pack.get("wall", {})
-    district = wall_in_force(survey.site.watershed.district)
-    chosen = {**district, **own, **wall}
+    chosen = {**counted_in(survey.site.watershed.district).wall, **own, **wall}
     pack_of(survey, points=None if rock_line is None else rock_line.points, wall=chosen)
     digest = input_digest(
         {

@@ -28,6 +28,7 @@ from structures.models import (
     Survey,
     Upload,
 )
+from structures.queries.settings import counted_in
 from structures.queries.sites import bed_on_profile_m
 from structures.runs.book import input_digest
 
@@ -175,8 +176,14 @@ def _keep_soundings(survey: Survey, pack: SurveyPack) -> None:
         )
         for order, one in enumerate(pack.soundings, start=1)
     )
+    # Of a reading that states no noise the table keeps what counts on the day it came in.
+    unstated = counted_in(survey.site.watershed.district).practice.sounding_noise * 100
     SoundingReading.objects.bulk_create(
-        SoundingReading(sounding=row, order=order, **asdict(reading))
+        SoundingReading(
+            sounding=row,
+            order=order,
+            **asdict(reading) | {"sd_percent": reading.sd_percent or unstated},
+        )
         for row, one in zip(rows, pack.soundings, strict=True)
         for order, reading in enumerate(one.readings, start=1)
     )

@@ -9,6 +9,7 @@ from django.db.models import Q
 
 from structures import access
 from structures.intake.defaults import WALL
+from structures.intake.practice import KEYS, Decision, Practice, make_practice
 from structures.models import Setting
 from structures.validators import CHANGEABLE, DRAWS
 
@@ -42,14 +43,46 @@ def settings_in_force(district: District) -> dict[str, SettingLine]:
     return {key: SettingLine(default, chosen.get(key)) for key, default in CHANGEABLE.items()}
 
 
-def wall_in_force(district: District) -> dict[str, float]:
-    """Wall settings that differ from the defaults, as the `wall` of a survey pack."""
-    lines = settings_in_force(district).items()
-    return {key: line.value for key, line in lines if key in WALL and line.value != WALL[key].value}
+@dataclass(frozen=True, slots=True)
+class Counted:
+    """What counts in a district for an appraisal, by its three ways in.
+
+    `wall` holds what differs from the defaults, as the `wall` of a survey pack.
+    """
+
+    wall: dict[str, float]
+    draws: int
+    practice: Practice
 
 
-def draws_in_force(district: District) -> int:
-    return int(settings_in_force(district)[DRAWS].value)
+def counted_in(district: District) -> Counted:
+    """What an appraisal of a site of the district is computed with."""
+    lines = settings_in_force(district)
+    changed = {key: line.value for key, line in lines.items() if line.value != line.default.value}
+    taken = {key for key in changed if key in WALL or key in KEYS}
+    return Counted(
+        wall={key: changed[key] for key in changed if key in WALL},
+        draws=int(lines[DRAWS].value),
+        practice=make_practice(
+            changed,
+            tuple(
+                _decision(lines[key].setting)
+                for key in lines
+                if key in taken and lines[key].default.owner == Setting.Owner.ENGINEER
+            ),
+        ),
+    )
+
+
+def _decision(setting: Setting) -> Decision:
+    return Decision(
+        key=setting.key,
+        value=setting.value,
+        name=setting.decided_by,
+        licence=setting.licence_number,
+        on=setting.decided_on,
+        reason=setting.reason,
+    )
 
 
 def visible_settings(user: User) -> QuerySet[Setting]:

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any, Final
 
+from structures.intake.practice import practice_document
 from structures.models import RockLine, Run, Survey
 from structures.queries.runs import runs_of_kind
-from structures.queries.settings import draws_in_force, wall_in_force
+from structures.queries.settings import counted_in
 from structures.queries.sites import newest_rock_line
 from structures.queries.surveys import pack_of
 
@@ -19,14 +20,15 @@ READ: Final = "survey.read"
 
 
 def reading_params(survey: Survey) -> dict[str, Any]:
-    """What a reading depends on: survey, line settled on it, wall and draws that count there."""
+    """What a reading depends on: survey, line settled on it, and the settings that count there."""
     line = newest_rock_line(survey)
-    district = survey.site.watershed.district
+    counted = counted_in(survey.site.watershed.district)
     return {
         "survey": survey.pk,
         "rock_line": None if line is None else line.pk,
-        "wall": {**wall_in_force(district), **survey.pack.get("wall", {})},
-        "draws": draws_in_force(district),
+        "wall": {**counted.wall, **survey.pack.get("wall", {})},
+        "draws": counted.draws,
+        "practice": practice_document(counted.practice),
     }
 
 

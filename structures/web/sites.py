@@ -16,6 +16,7 @@ from structures.actions import sites as site_actions
 from structures.documents.trial import try_wall
 from structures.drawing.map import draw_map
 from structures.errors import Refused
+from structures.intake.practice import practice_of
 from structures.life.cautions import CLOSING_SENTENCE
 from structures.life.stages import STAGES
 from structures.queries.districts import visible_districts, visible_watersheds
@@ -185,7 +186,12 @@ def try_other_wall(request, code):
         try:
             points = context["appraisal"]["rock"]["line"] if params["rock_line"] else None
             pack = pack_of(survey, points=points, wall={**params["wall"], **changed})
-            context["trial"] = try_wall(pack, run.result["appraisal"]["rock"], run.result["tests"])
+            context["trial"] = try_wall(
+                pack,
+                run.result["appraisal"]["rock"],
+                run.result["tests"],
+                practice=practice_of(params["practice"]),
+            )
         except Refused as refused:
             refuse(form, _named(refused, {f"wall.{key}": key for key in form.fields}))
     trial = context.get("trial")

@@ -44,7 +44,9 @@ def test_what_cannot_be_is_said_in_words(gate, wrong, words):
     [
         ("thickness_m", 1.6, "1.6 m is outside 0.6 to 1.5."),
         ("film_faces", 1.5, "1.5 is not a whole number."),
-        ("sounding_noise", 0.03, "There is no setting sounding_noise."),
+        ("sounding_noise", 0.2, "0.2 is outside 0.01 to 0.1."),
+        ("licensed_depth_m", 7.0, "7 m is outside 1.5 to 6.1."),
+        ("sounding", 0.03, "There is no setting sounding."),
     ],
 )
 def test_a_setting_stays_in_its_range(key, value, words):

@@ -13,8 +13,10 @@ from costing.models import Estimate
 from costing.queries import estimates
 from costing.queries.estimates import priced_sheet, stale_reasons, visible_estimates
 from structures.actions.rock import settle_rock_line
-from structures.actions.settings import edit_district
+from structures.actions.settings import change_setting, edit_district
+from structures.intake.defaults import EVERY
 from structures.models import Role, Site
+from structures.queries.settings import counted_in
 from structures.runs.queue import execute
 from tests.factories import (
     a_district,
@@ -99,6 +101,48 @@ def test_rates_that_ended(site, engineer):
     assert reasons(engineer) == ("Its rates RS-1 ended on 2026-06-30 and no others hold today.",)
 
 
+SIGNED = ("A. Rao", "L-1", date(2026, 3, 1))
+
+
+def change(site, key, value):
+    admin = a_user(Role.ADMIN, site.watershed.district)
+    where = {"district": site.watershed.district, "by": admin}
+    change_setting(key=key, value=value, reason="measured here", decided=SIGNED, **where)
+
+
+@pytest.mark.usefixtures("priced")
+@pytest.mark.parametrize(
+    ("key", "value", "told"),
+    [
+        ("film_lap_m", 0.4, "film lap 0.4 m, was 0.3 m"),
+        ("risk_draws", 4000, "draws of the rock line 4000, was 2000"),
+        ("clay_k_m_per_s", 1e-9, "clay in place, at most 1e-09 m/s, was 1e-08 m/s"),
+    ],
+)
+def test_a_changed_setting_makes_it_stale_until_it_is_priced_again(
+    site, engineer, key, value, told
+):
+    change(site, key, value)
+    assert reasons(engineer) == (f"Settings were changed since: {told}.",)
+    price(site, engineer)
+    assert reasons(engineer) == ()
+    assert Estimate.objects.count() == 2
+    change(site, key, EVERY[key].value)
+    (reason,) = reasons(engineer)
+    assert told.partition(", was ")[2] in reason
+
+
+@pytest.mark.usefixtures("priced")
+def test_what_goes_before_a_setting_is_not_touched_by_it(site, engineer):
+    """The survey says a side slope of 1.5 itself, the estimate was asked for with its own key."""
+    run = request_estimate(site_id=site.pk, by=engineer, wall={"key_m": 0.2})
+    execute(str(run.pk))
+    change(site, "side_slope", 2.5)
+    change(site, "key_m", 0.3)
+    change(site, "strip_m", 8.0)  # no part of an appraisal
+    assert stale_reasons(visible_estimates(engineer).get(run=run)) == ()
+
+
 @pytest.mark.usefixtures("priced")
 def test_another_method(engineer, monkeypatch):
     monkeypatch.setattr(estimates, "METHOD", "2027.1-1")
@@ -144,14 +188,17 @@ def test_a_bare_site_has_a_sheet_too(site, engineer):
 
 
 @pytest.mark.usefixtures("priced")
-def test_a_list_with_reasons_costs_one_query(site, engineer, django_assert_num_queries):
+def test_a_list_with_reasons_costs_one_query_and_one_a_district(
+    site, engineer, django_assert_num_queries
+):
     for code in ("EX-B", "EX-C"):
         place = a_site(site.watershed, code, lat=15.72)
         a_survey(place, engineer)
         price(place, engineer)
-    with django_assert_num_queries(1):
+    with django_assert_num_queries(2):
+        counted = counted_in(site.watershed.district)
         shown = [
-            (one.site.code, one.survey.version, one.schedule.code, stale_reasons(one))
+            (one.site.code, one.survey.version, one.schedule.code, stale_reasons(one, counted))
             for one in visible_estimates(engineer)
         ]
     assert len(shown) == 3

@@ -10,12 +10,7 @@ from structures.actions.settings import change_setting, edit_district, enter_dis
 from structures.errors import Refused
 from structures.models import Role, Setting
 from structures.queries.districts import administered_districts, today_of, visible_districts
-from structures.queries.settings import (
-    draws_in_force,
-    settings_in_force,
-    visible_settings,
-    wall_in_force,
-)
+from structures.queries.settings import counted_in, settings_in_force, visible_settings
 from tests.factories import a_district, a_user, an_engineer
 
 pytestmark = pytest.mark.django_db
@@ -96,9 +91,9 @@ def test_a_district_goes_before_the_office_and_the_office_before_the_handbook(di
     change(None, office, value=1.1)
     change(None, office, "risk_draws", 4000)
     change(district, admin, value=1.2)
-    assert wall_in_force(district) == {"thickness_m": 1.2}
-    assert wall_in_force(other) == {"thickness_m": 1.1}
-    assert draws_in_force(district) == 4000
+    assert counted_in(district).wall == {"thickness_m": 1.2}
+    assert counted_in(other).wall == {"thickness_m": 1.1}
+    assert counted_in(district).draws == 4000
     line = settings_in_force(other)["key_m"]
     assert (line.value, line.default.source, line.setting) == (0.15, "A", None)
 
