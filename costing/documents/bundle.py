@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any, Final
 from costing.documents.drawings import appraised_section, appraised_soundings
 from costing.documents.estimate_workbook import estimate_xlsx
 from costing.documents.report import report_pdf
+from costing.documents.result import refraction_json
 from structures.documents.sounding_result import depth_lines, sounding_json
 from structures.drawing.numbers import section_numbers
 from structures.drawing.section import draw_section
@@ -57,6 +58,10 @@ def figures_of(found: Appraisal) -> dict[str, Any]:
                 "words": " ".join(depth_lines(sounding_json(said))),
             }
             for said, wide, narrow in drawn
+        ],
+        "refraction": [
+            {"label": said.label, "words": " ".join(depth_lines(refraction_json(said)))}
+            for said in found.refraction
         ],
     }
 

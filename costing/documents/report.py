@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any, Final
 
 from costing.documents.drawings import appraised_section, appraised_soundings
+from costing.documents.result import refraction_json
 from costing.documents.screen import NOT_KNOWN, SOURCES, WALL_ROWS, WATER_ROWS
 from costing.documents.wording import (
     amount_words,
@@ -89,6 +90,7 @@ def report_data(found: Appraisal, view: SectionView) -> dict[str, Any]:
         "money": _with_length(_money(found)),
         "water": _water(found),
         "soundings": _soundings(found),
+        "refraction": _refraction(found),
         "rests_on": rests_on(found),
     }
 
@@ -235,4 +237,16 @@ def _soundings(found: Appraisal) -> list[dict[str, str]]:
             "prior": " ".join(() if one.prior is None else one.prior.sentences()),
         }
         for place, one in enumerate(found.soundings, 1)
+    ]
+
+
+def _refraction(found: Appraisal) -> list[list[str]]:
+    return [
+        [
+            one.label,
+            f"{one.offset_m:.2f}",
+            ", ".join(f"{velocity:.0f}" for velocity in one.velocities_m_per_s) or NOT_KNOWN,
+            " ".join(depth_lines(refraction_json(one))),
+        ]
+        for one in found.refraction
     ]

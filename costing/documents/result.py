@@ -60,7 +60,7 @@ def as_json(appraisal: Appraisal) -> dict[str, Any]:
             "source": appraisal.rock.source,
             "line": _line(appraisal.rock),
             "soundings": [sounding_json(one) for one in appraisal.soundings],
-            "refraction": [_refraction(one) for one in appraisal.refraction],
+            "refraction": [refraction_json(one) for one in appraisal.refraction],
             "evidence": [asdict(one) for one in appraisal.rock.evidence],
             "seed": appraisal.rock.seed,
         },
@@ -87,7 +87,8 @@ def _line(rock: RockLine) -> list[dict[str, float | None]]:
     return [dict(zip(names, row, strict=True)) for row in zip(*lists, strict=True)]
 
 
-def _refraction(read: RefractionReading) -> dict[str, Any]:
+def refraction_json(read: RefractionReading) -> dict[str, Any]:
+    """Give one element of `rock.refraction`; a refused line has null depths and says why."""
     return asdict(read) | {"refusal": refusal_json(read.refusal)}
 
 

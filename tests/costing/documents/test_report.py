@@ -1,9 +1,13 @@
 import re
+from dataclasses import replace
 
 import pytest
 
+from costing.documents.bundle import figures_of
 from costing.documents.drawings import appraised_section
 from costing.documents.report import report_data, report_pdf
+from structures.ground.refraction import RefractionReading
+from structures.ground.sounding import Refusal
 from structures.life.cautions import CLOSING_SENTENCE
 from tests.costing.documents.appraisals import (
     estimated,
@@ -94,6 +98,27 @@ def test_an_open_flank_is_no_and_incomplete():
     assert "337716.02" in words
     assert "figures of the surveyed part only" in words
     assert "open: rock not reached" in letters
+
+
+def test_refraction_lines_are_listed_with_depth_or_reason():
+    read = RefractionReading(40.0, "R1", (500.0, 3500.0), 6.4, 5.5, 7.9, 0.6)
+    refused = RefractionReading(50.0, "R2", refusal=Refusal("no-branches", "it has no branches."))
+    found = replace(example("B"), refraction=(read, refused))
+    words, _ = printed(found)
+    for said in (
+        "Refraction lines",
+        "R1 40.00 500, 3500 rock at 6.4 m, 8 times in 10 between 5.5 and 7.9 m",
+        "R2 50.00 not known no depth of rock: it has no branches.",
+    ):
+        assert said in words
+    assert figures_of(found)["refraction"][1] == {
+        "label": "R2",
+        "words": "no depth of rock: it has no branches.",
+    }
+
+
+def test_without_refraction_lines_none_are_named(report_b):
+    assert "Refraction lines" not in report_b[0]
 
 
 def test_what_is_not_known_is_said_and_never_zero():
