@@ -168,7 +168,11 @@ def _read_rows(node: Node, field: PaperField, ledger: Ledger) -> list[Content]:
 def _read_one(node: Node, field: PaperField, ledger: Ledger) -> object:
     if field.kind == "date":
         return _read_day(node, ledger)
-    value = read_value(node, _as_intake(field), ledger)
+    try:
+        value = read_value(node, _as_intake(field), ledger)
+    except OverflowError:  # a whole number of hundreds of digits
+        ledger.add(node, "The number is too large.", "Leave out what was not measured.")
+        return None
     if field.usual and isinstance(value, float | int):
         low, high = field.usual
         if not low <= value <= high:
