@@ -8,10 +8,14 @@ from decimal import Decimal
 from functools import cache
 from pathlib import Path
 
+from costing.forecast import Sums
 from costing.price.billing import Billed, BillLineAsked, HoldSeen, Measured
 from costing.price.contract import ContractTerms
 from costing.price.payable import BillAsked
 from costing.price.rates import read_rates
+from structures.ground.found import FoundLevel
+from structures.ground.found_lines import DrawnRange
+from structures.intake.district import read_district
 
 DEMO = Path(__file__).parents[2] / "fixtures" / "demo"
 
@@ -91,3 +95,36 @@ def bill(site, bill_id, **changes):
     total = sum((Decimal(row["amount"]) for row in taken), start=Decimal(0))
     said = {"kind": taken[0]["kind"], "currency": taken[0]["currency"], "total": total}
     return BillAsked(bill_id, **said | {"lines": lines} | changes)
+
+
+@cache
+def survey(site):
+    return read_district(DEMO)[site]
+
+
+def found(site):
+    """Rock as the hold points H2 have it: at the start, the middle and the end of a strip."""
+    strips = {row["strip_no"]: row for row in rows("strips", site)}
+    levels = []
+    for row in rows("hold_points", site):
+        if row["hold"] == "H2":
+            first, last = (float(strips[row["strip_no"]][key]) for key in ("from_m", "to_m"))
+            offsets = (first, round((first + last) / 2, 6), last)
+            seen = map(float, row["reading_m"].split(";"))
+            levels += [
+                FoundLevel(offset, level, int(row["strip_no"]))
+                for offset, level in zip(offsets, seen, strict=True)
+            ]
+    return tuple(levels)
+
+
+def ranges(site):
+    columns = ("offset_m", "rock_low_m", "rock_likely_m", "rock_high_m")
+    return tuple(
+        DrawnRange(*(float(row[key]) for key in columns)) for row in rows("drawings", site)
+    )
+
+
+def sums(site):
+    amounts = {row["kind"]: Decimal(row["amount"]) for row in rows("sanctions", site)}
+    return Sums(amounts["technical"], amounts["administrative"])
