@@ -39,10 +39,21 @@ SLIPS: Final = tuple(
         ),
     )
 )
+DECIMAL_COMMA: Final = re.compile(r"\s*([+-]?\d*),(\d+)\s*")
+# Three digits behind one comma may be thousands: such a number stays as it is and is asked about.
+EITHER: Final = re.compile(r"\s*[+-]?0*[^\D0]\d{0,2},\d{3}\s*")
 MEMBERS_MOST: Final = 200  # fields of one object; a pack's have a dozen
 KEY_MOST: Final = 60  # characters of a key that are compared with known ones
 FORMULA_SIGNS: Final = ("=", "+", "-", "@")
 YES: Final = {"yes": True, "true": True, "1": True, "no": False, "false": False, "0": False}
+
+
+def with_point(text: str) -> str:
+    """Give a number with a plain decimal comma its point; any other text stays."""
+    matched = DECIMAL_COMMA.fullmatch(text)
+    if matched is None or EITHER.fullmatch(text):
+        return text
+    return f"{matched[1]}.{matched[2]}"
 
 
 def read_value(node: Node, field: Field, ledger: Ledger) -> object:

@@ -2,26 +2,11 @@
 
 from __future__ import annotations
 
-import re
-from typing import Final
-
 from django import forms
 
 from structures.intake.fields import Field
 from structures.intake.tree import Ledger, Node
-from structures.intake.values import read_value
-
-DECIMAL_COMMA: Final = re.compile(r"\s*([+-]?\d*),(\d+)\s*")
-# Three digits behind one comma may be thousands: such a number stays as it is and is asked about.
-EITHER: Final = re.compile(r"\s*[+-]?0*[^\D0]\d{0,2},\d{3}\s*")
-
-
-def with_point(text: str) -> str:
-    """Give a number with a plain decimal comma its point; any other text stays."""
-    matched = DECIMAL_COMMA.fullmatch(text)
-    if matched is None or EITHER.fullmatch(text):
-        return text
-    return f"{matched[1]}.{matched[2]}"
+from structures.intake.values import read_value, with_point
 
 
 class NumberField(forms.CharField):
