@@ -5,8 +5,8 @@ from __future__ import annotations
 from rest_framework import serializers
 
 from costing.queries.estimates import stale_reasons
-from structures.queries.settings import counted_in
 from structures.api.serializers import FindingSerializer
+from structures.queries.settings import counted_in
 
 
 def _money(**more):
