@@ -12,6 +12,7 @@ from structures.errors import Finding, Refused
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
+    from decimal import Decimal
 
     from costing.plan.season import Season, SeasonSite
 
@@ -73,7 +74,7 @@ def _weekly(season: Season, fixed: list[SeasonSite], name: str) -> Iterator[Clas
             if site.open_week <= week <= site.close_week(site.open_week)
         }
         if sum(uses.values()) > limit:
-            by_set.setdefault(tuple(smallest_excess(uses, limit)), []).append(week)
+            by_set.setdefault(_fewest(uses, limit), []).append(week)
     if by_set:
         sites = min(by_set, key=lambda names: (len(names), by_set[names]))
         together = sum(getattr(site, use) for site in fixed if site.site in sites)
@@ -89,13 +90,19 @@ def _seasonal(season: Season, fixed: list[SeasonSite], name: str) -> Iterator[Cl
     limit, use = season.seasonal[name], SEASONAL[name]
     uses = {site.site: getattr(site, use) for site in fixed}
     if sum(uses.values()) > limit:
-        sites = tuple(smallest_excess(uses, limit))
+        sites = _fewest(uses, limit)
         together = asked(name, sum(uses[code] for code in sites))
         verb = "need" if len(sites) > 1 else "needs"
         what = f"{names_of(sites)} {verb} {together} together; {at_hand(name, limit)}."
         if len(sites) == 1:
             what = f"{sites[0]} {verb} {together}; {at_hand(name, limit)}."
         yield Clash(sites, name, (), what)
+
+
+def _fewest(uses: dict[str, int | Decimal], limit: int | Decimal) -> tuple[str, ...]:
+    """Give the fewest sites that exceed a limit, in the order of the season."""
+    fewest = smallest_excess(uses, limit)
+    return tuple(code for code in uses if code in fewest)
 
 
 def _opened(fixed: list[SeasonSite], codes: tuple[str, ...]) -> str:
