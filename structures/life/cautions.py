@@ -273,6 +273,96 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
             "their wells are read before."
         ),
     ),
+    # wells after the wall
+    "effect-no-affected": (
+        "block",
+        (
+            "No affected well was read in {months} of 12 months of a water year before completion. The "
+            "verdict is not known."
+        ),
+    ),
+    "effect-no-control": (
+        "block",
+        (
+            "No control well was read in {months} of 12 months of a water year before completion. "
+            "Without one rain and wall cannot be told apart: the verdict is not known."
+        ),
+    ),
+    "effect-too-short": (
+        "block",
+        (
+            "{before} full water years before completion and {after} after; {least} are needed on each "
+            "side, each with pairs in {months} of 12 months. The verdict is not known: read on."
+        ),
+    ),
+    "effect-few-pairs": (
+        "block",
+        (
+            "{before} pairs before completion and {after} after; {least} are needed on each side. The "
+            "verdict is not known: read affected and control wells in the same half months."
+        ),
+    ),
+    "effect-serial-not-judged": (
+        "warn",
+        (
+            "Only {count} pairs: serial correlation is not judged below {least}, and the interval is "
+            "likely too narrow."
+        ),
+    ),
+    "effect-dry-left-out": (
+        "note",
+        "{count} pairs with dry wells are only bounds and were left out, under 1 in 20.",
+    ),
+    "effect-dry-fitted": (
+        "warn",
+        (
+            "Dry wells make {percent:.0f} % of the pairs only bounds. They were fitted as such; plain "
+            "means would hide a gain and are not shown."
+        ),
+    ),
+    "effect-one-control": (
+        "warn",
+        "{well} alone stands for what happened without the wall. Name a second control well.",
+    ),
+    "effect-mark-moved": (
+        "note",
+        (
+            "The measuring point of {well} stands {change_m:+.2f} m from the reading of {day} on; levels "
+            "follow it."
+        ),
+    ),
+    "effect-jump": (
+        "hold",
+        (
+            "From {day} affected wells stand {size_m:+.2f} m against control wells, in one step that is "
+            "not at completion. Measuring point moved, tape cut, a pump begun? Decide before a verdict."
+        ),
+    ),
+    "effect-trend-before": (
+        "warn",
+        (
+            "Affected wells already moved {m_per_year:+.2f} m a year against control wells before "
+            "completion; going on like that makes {drift_m:+.2f} m of the change."
+        ),
+    ),
+    "effect-rain-not-given": (
+        "note",
+        "No rain was given: its share in the change is not known. Control wells felt the same rain.",
+    ),
+    "effect-rain-too-short": (
+        "note",
+        (
+            "Too short to judge the share of rain: {before} and {after} full water years, 2 are needed "
+            "on each side, and the rain of the twelve months before in 10 months of each."
+        ),
+    ),
+    "effect-rain-unlike": (
+        "warn",
+        (
+            "Rain {before_mm:.0f} mm a year before and {after_mm:.0f} mm after: not alike. Control wells "
+            "allow for it only as far as they swing like the affected ones."
+        ),
+    ),
     "water-not-known": ("note", "{what} cannot be computed: {why}."),
     "storage-none": (
         "note",
