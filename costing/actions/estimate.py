@@ -13,6 +13,7 @@ from costing.models import Estimate, EstimateLine, RateSchedule
 from costing.queries.schedules import schedules_valid_on
 from structures.access import Act, insist
 from structures.actions.design import draw_design, freeze_design, settled_line
+from structures.actions.register import append
 from structures.errors import Refused
 from structures.intake.practice import practice_document
 from structures.models import Run, Site, Survey
@@ -128,7 +129,32 @@ def freeze_estimate(run_id: UUID, inputs: PriceInputs, found: Appraisal) -> Esti
         for order, line in enumerate(abstract.lines, start=1)
     )
     freeze_design(design.pk)
+    if run.asked_by is not None:
+        append(
+            district=site.watershed.district,
+            by=run.asked_by,
+            act="estimate frozen",
+            subject=f"estimate {estimate.version} of {site.code}",
+            structure=design.structure,
+            content=frozen_content(estimate),
+        )
     return estimate
+
+
+def frozen_content(estimate: Estimate) -> dict[str, Any]:
+    """Give an estimate as the register freezes it."""
+    return {
+        "currency": estimate.currency,
+        "estimate": estimate.input_digest,
+        "estimate_version": estimate.version,
+        "design": estimate.design.digest,
+        "design_version": estimate.design.version,
+        "schedule": estimate.schedule.code,
+        "method": estimate.method,
+        "complete": estimate.complete,
+        "total": f"{estimate.total:f}",
+        "for_sanction": None if estimate.sanction is None else f"{estimate.sanction:f}",
+    }
 
 
 def _survey(site: Site, survey_id: int | None) -> Survey:

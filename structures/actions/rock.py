@@ -10,9 +10,10 @@ from django.db.models import Max
 
 from structures.access import Act, insist
 from structures.actions.refusals import as_documents, blocking, refusal
+from structures.actions.register import append
 from structures.actions.survey_reading import start_reading
 from structures.errors import Finding, Refused
-from structures.models import RockLine, Site, Survey
+from structures.models import RockLine, Site, Structure, Survey
 from structures.queries.surveys import names_of_tests, pack_of
 from structures.runs.book import input_digest
 
@@ -42,7 +43,7 @@ def settle_rock_line(
         If a newer survey is there, the reason is missing, a test is not one of this survey, or the
         line cannot be: out of order, outside or above the ground, above the foot of a probe.
     """
-    survey = Survey.objects.select_related("site__watershed").get(pk=survey_id)
+    survey = Survey.objects.select_related("site__watershed__district").get(pk=survey_id)
     insist(by, Act.SETTLE_ROCK, survey)
     # The site row locks its versions: no newer survey comes in between.
     Site.objects.select_for_update().get(pk=survey.site_id)
@@ -68,8 +69,27 @@ def settle_rock_line(
         findings=as_documents(findings),
         by=by,
     )
+    _enter(survey, settled, by)
     start_reading(survey=survey, by=by)
     return settled
+
+
+def _enter(survey: Survey, settled: RockLine, by: User) -> None:
+    structure = Structure.objects.get(site=survey.site_id)
+    append(
+        district=survey.site.watershed.district,
+        by=by,
+        act="rock line settled",
+        subject=f"rock line {settled.version} on survey {survey.version} of {survey.site.code}",
+        structure=structure,
+        content={
+            "survey": survey.digest,
+            "rock_line": settled.digest,
+            "points": settled.points,
+            "reason": settled.reason,
+            "rests_on": settled.rests_on,
+        },
+    )
 
 
 def _check_newest(survey: Survey) -> None:

@@ -9,6 +9,7 @@ from django.db import transaction
 
 from structures.access import Act, insist
 from structures.actions.refusals import field_findings, refusal
+from structures.actions.register import append
 from structures.errors import Finding, Refused
 from structures.models import District, Setting
 from structures.validators import CHANGEABLE, validate_setting
@@ -96,6 +97,20 @@ def change_setting(
     setting.decided_on = on
     setting._history_user = by
     setting.save()
+    append(
+        district=district,
+        by=by,
+        act="default changed",
+        subject=default.words,
+        content={
+            "key": key,
+            "value": value,
+            "unit": default.unit,
+            "owner": default.owner,
+            "reason": setting.reason,
+            "decided_by": None if on is None else [name.strip(), licence.strip(), on.isoformat()],
+        },
+    )
     return setting
 
 
