@@ -68,7 +68,7 @@ def _cautions(cautions: list[dict[str, str]]) -> list[str]:
     for one in cautions:
         head = f"  {WORDS[one['level']]:<6}"
         lines += wrap(one["text"], WIDTH, initial_indent=head, subsequent_indent=" " * len(head))
-    return lines
+    return [*lines, f"  {CLOSING_SENTENCE}"] if lines else []
 
 
 def _rock(rock: dict[str, Any]) -> list[str]:

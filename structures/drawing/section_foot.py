@@ -210,8 +210,9 @@ def caution_words(view: SectionView) -> str:
     Source: handbook section 11; each time it ends with the closing sentence.
     """
     said = [one.text for one in view.cautions if one.code in DRAWN]
-    said.append(CLOSING_SENTENCE if view.wall is None else caution("sides-drawn").text)
-    return " ".join(said)
+    if view.wall is not None:
+        said.append(caution("sides-drawn").text)
+    return " ".join([*said, CLOSING_SENTENCE])
 
 
 def notice(board: Board, y: float) -> float:

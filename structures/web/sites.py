@@ -196,7 +196,12 @@ def try_other_wall(request, code):
             refuse(form, _named(refused, {f"wall.{key}": key for key in form.fields}))
     trial = context.get("trial")
     tried = trial and {"wall": trial.wall, "quantities": trial.quantities}
-    context |= {"form": form, "changed": changed, "rows": figure_rows(context["appraisal"], tried)}
+    context |= {
+        "form": form,
+        "changed": changed,
+        "rows": figure_rows(context["appraisal"], tried),
+        "closing": CLOSING_SENTENCE,
+    }
     # A swapped part has to arrive even when it says what is wrong with a setting.
     status = 200 if request.headers.get("HX-Request") else _status(form)
     return render(request, "structures/try.html", context, status=status)

@@ -172,7 +172,7 @@ def test_the_same_seed_gives_the_same_digits():
 
 def test_defaults_are_said_and_follow_the_mean_depth():
     """Oracle: handbook 4.6: sill (0.25 x mean depth)^2, at least 1 m2; depths 1, 6 and 1.5 m."""
-    assert "sill 1.00 m2" in next(
+    assert "sill 1.00 m² " in next(
         one.text for one in line_of(PACK).cautions if one.code == "rock-default-spread"
     )
     deep = replace(PACK, rock=tuple(replace(test, depth_m=8.0) for test in PACK.rock))
