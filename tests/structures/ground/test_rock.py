@@ -176,7 +176,7 @@ def test_defaults_are_said_and_follow_the_mean_depth():
         one.text for one in line_of(PACK).cautions if one.code == "rock-default-spread"
     )
     deep = replace(PACK, rock=tuple(replace(test, depth_m=8.0) for test in PACK.rock))
-    assert "sill 4.00 m2" in next(
+    assert "sill 4.00 m² " in next(
         one.text for one in line_of(deep).cautions if one.code == "rock-default-spread"
     )
 
