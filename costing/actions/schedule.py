@@ -9,17 +9,22 @@ from django.db import transaction
 from django.db.models import Max
 
 from costing.models import Rate, RateComponent, RateSchedule
-from costing.price.analysis import analyse_rate
+from costing.price.analysis import OVERHEAD_PROFIT, analyse_rate
+from costing.price.money import gated
 from costing.price.rates import read_rates
 from costing.queries.schedules import RateChange, differences, schedule_record
 from structures.access import Act, insist
 from structures.actions.inbox import mark_kept, receive_file, refuse_same_file, told_of
 from structures.actions.refusals import as_documents, refusal
 from structures.errors import Finding, Refused
+from structures.intake.defaults import MONEY
 from structures.models import District, Upload
+from structures.queries.settings import settings_in_force
 from structures.runs.book import input_digest
 
 if TYPE_CHECKING:
+    from decimal import Decimal
+
     from costing.price import rates
     from structures.models import User
 
@@ -84,14 +89,19 @@ def import_schedule(
                 where=upload.name,
                 remedy="Send the schedule that is new.",
             )
-        _check_analyses(read.schedule, components or {})
+        if components:
+            set_percent = settings_in_force(district)[OVERHEAD_PROFIT.key].value
+            _check_analyses(read.schedule, components, gated(set_percent))
         rows = len(read.schedule.rates)
         mark_kept(upload, rows=rows, findings=read.schedule.findings)
         return _keep(read, upload, components or {}, by)
 
 
 def _read(district: District, name: str, data: bytes) -> ScheduleRead:
-    schedule = read_rates(name, data, currency_default=district.currency)
+    percents = {
+        key: line.value for key, line in settings_in_force(district).items() if key in MONEY
+    }
+    schedule = read_rates(name, data, currency_default=district.currency, percents_set=percents)
     if schedule.currency != district.currency:
         what = f"The rates are in {schedule.currency}, the district counts in {district.currency}."
         finding = Finding(
@@ -123,12 +133,14 @@ def _plain(schedule: rates.RateSchedule) -> dict[str, Any]:
     }
 
 
-def _check_analyses(schedule: rates.RateSchedule, components: Components) -> None:
+def _check_analyses(
+    schedule: rates.RateSchedule, components: Components, overhead_profit_percent: Decimal
+) -> None:
     priced = {(one.item, one.from_m): one.rate for one in schedule.rates}
     found = []
     for (item, from_m), parts in components.items():
         rate = priced.get((item, from_m))
-        made = analyse_rate(parts).rate
+        made = analyse_rate(parts, overhead_profit_percent=overhead_profit_percent).rate
         if rate is None:
             what, remedy = (
                 "There is no such rate in the schedule.",

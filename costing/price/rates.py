@@ -7,6 +7,7 @@ import difflib
 from dataclasses import dataclass, field
 from decimal import Decimal
 from pathlib import PurePosixPath
+from types import MappingProxyType
 from typing import TYPE_CHECKING, Final
 
 from costing.price.money import gated, to_cents
@@ -14,6 +15,7 @@ from costing.price.rate_cells import (
     BY_LIFTS,
     DOUBT,
     PERCENT,
+    PERCENT_DECIMALS,
     check_unit,
     read_currency,
     read_date,
@@ -31,7 +33,7 @@ from structures.intake.tree import Ledger, Node, shown
 from structures.takeoff.quantity import ITEMS
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Iterable, Mapping
     from datetime import date
 
     from structures.errors import Finding
@@ -132,7 +134,13 @@ def serving_rate(rates: Iterable[Rate], item: str, from_m: float | None = None) 
     return general if from_m is None else served.get(gated(from_m), general)
 
 
-def read_rates(name: str, data: bytes, *, currency_default: str = CURRENCY) -> RateSchedule:
+def read_rates(
+    name: str,
+    data: bytes,
+    *,
+    currency_default: str = CURRENCY,
+    percents_set: Mapping[str, float] = MappingProxyType({}),
+) -> RateSchedule:
     """Read a rate schedule from CSV, or from JSON of the same rows.
 
     Source: the interface of rate schedules. JSON is a list of rows, or an object with the rows in
@@ -146,6 +154,9 @@ def read_rates(name: str, data: bytes, *, currency_default: str = CURRENCY) -> R
         CSV with the columns `item,from_m,unit,rate,currency` or JSON rows of these keys.
     currency_default
         The currency where the file names none.
+    percents_set
+        What an office has set in place of the default percentages, which count where the file
+        lacks one.
 
     Returns
     -------
@@ -165,7 +176,7 @@ def read_rates(name: str, data: bytes, *, currency_default: str = CURRENCY) -> R
     sheet = _Sheet(ledger)
     for row in _rows(name, data, sheet):
         sheet.read_row(row)
-    percents = {key: sheet.percent(key, name) for key in MONEY}
+    percents = {key: sheet.percent(key, name, percents_set) for key in MONEY}
     if not sheet.rates and not ledger.blocks:
         ledger.add(Node(None, name), "No item has a rate here.", f"Head the columns {HEADING}.")
     said = {key: sheet.agreed(key) for key in WHOLE}
@@ -236,17 +247,19 @@ class _Sheet:
         else:
             self.rates.append(Rate(item, ITEMS[item], rate, from_m, words))
 
-    def percent(self, key: str, name: str) -> Decimal:
-        """Percentage of the schedule, or the default with a note that it was taken."""
+    def percent(self, key: str, name: str, percents_set: Mapping[str, float]) -> Decimal:
+        """Percentage of the schedule, or what counts without it with a note that it was taken."""
         if key in self.percents:
             return self.percents[key]
         default = MONEY[key]
+        value = percents_set.get(key, default.value)
         if not self.ledger.blocks:
-            what = f"Not given: {default.value:g} % is taken ({default.source})."
+            source = default.source if value == default.value else "setting"
+            what = f"Not given: {value:g} % is taken ({source})."
             remedy = f"Give it as a row with the unit {PERCENT}."
             node = Node(None, name, key)
             self.ledger.add(node, what, remedy, level="note", rule="default-used")
-        return Decimal(repr(default.value))
+        return Decimal(repr(round(value, PERCENT_DECIMALS)))
 
     def agreed(self, key: str) -> object:
         """Give what all rows say of the whole schedule; None where none says anything."""

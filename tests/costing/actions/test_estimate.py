@@ -15,10 +15,12 @@ from costing.documents.result import as_json
 from costing.models import Estimate
 from costing.price.rates import read_rates
 from costing.queries.estimates import estimate_of_run, lines_of, visible_estimates
+from costing.queries.schedules import schedule_record
 from structures.actions.settings import change_setting
 from structures.actions.surveys import accept_survey
 from structures.errors import Refused
-from structures.intake.survey_pack import read_pack
+from structures.intake.practice import Decision, Practice
+from structures.intake.survey_pack import read_pack, read_pack_bytes
 from structures.models import Role, Run
 from structures.queries.runs import runs_of_site, visible_runs
 from structures.runs.queue import execute
@@ -31,6 +33,7 @@ from tests.factories import (
     a_user,
     a_watershed,
     an_engineer,
+    pack_bytes,
 )
 
 pytestmark = pytest.mark.django_db
@@ -96,6 +99,35 @@ def test_the_office_and_the_command_give_the_same_answer(site, engineer, schedul
     estimate = estimate_of_run(engineer, computed(site, engineer).pk)
     assert estimate.result == command
     assert estimate.schedule == schedule
+
+
+def test_the_settings_of_the_district_are_what_it_is_priced_by(site, engineer, schedule):
+    """Oracle: the spine with the same record; 24 h x 10 days x 4 pumps (handbook 6.11, 6.i)."""
+    district = site.watershed.district
+    admin, signed = a_user(Role.ADMIN, district), ("A. Rao", "L-1", date(2026, 3, 1))
+    for key, value in (("pump_m3_per_hour", 10.0), ("clay_k_m_per_s", 1e-9)):
+        words = {"reason": "measured here", "decided": signed}
+        change_setting(key=key, value=value, district=district, by=admin, **words)
+    wet = {
+        "works": {"days_below_water": 10},
+        "ground_water": {"hydraulic_conductivity_m_per_day": 17.28, "water_level_m": 249.35},
+    }
+    place = a_site(site.watershed, "EX-B8", lat=15.71)
+    a_survey(place, engineer, letter="b", **wet)
+    run = computed(place, engineer)
+    estimate = estimate_of_run(engineer, run.pk)
+    (pumping,) = [line for line in lines_of(estimate) if line.item == "dewatering"]
+    assert pumping.quantity == Decimal("960.00")
+    decision = Decision("clay_k_m_per_s", 1e-9, *signed, "measured here")
+    practice = Practice(pump_m3_per_hour=10.0, clay_k_m_per_s=1e-9, decisions=(decision,))
+    data = pack_bytes("EX-B8", "b", **wet)
+    plain = read_pack_bytes("EX-B8.json", data)
+    spine = appraise(plain, schedule=schedule_record(schedule), on=DAY, practice=practice)
+    assert estimate.result == as_json(spine)
+    told = [one["text"] for one in estimate.result["cautions"] if one["code"] == "default-changed"]
+    assert any(
+        "Decided by A. Rao, licence L-1, on 2026-03-01: measured here." in one for one in told
+    )
 
 
 def test_inputs_are_frozen_with_their_digest(site, engineer, schedule):

@@ -17,6 +17,7 @@ from costing.queries.schedules import (
     schedules_valid_on,
     visible_schedules,
 )
+from structures.actions.settings import change_setting
 from structures.errors import Refused
 from structures.models import Role, Upload
 from tests.factories import FIXTURES, a_district, a_schedule, a_user, an_engineer, rates_bytes
@@ -211,3 +212,33 @@ def test_schedules_are_seen_where_one_serves(district, engineer):
     a_schedule(district, engineer)
     assert [one.rate_count for one in visible_schedules(engineer)] == [14]
     assert visible_schedules(an_engineer(a_district("ZZ"))).count() == 0
+
+
+def set_by_admin(district, key, value):
+    admin = a_user(Role.ADMIN, district)
+    words = {"reason": "as decided", "decided": ("P. Manager", "", date(2026, 3, 1))}
+    change_setting(key=key, value=value, district=district, by=admin, **words)
+
+
+def test_percentages_that_a_file_lacks_are_those_of_the_office(district, engineer):
+    """Oracle: handbook 12 and 8.4; what the file says itself goes before."""
+    set_by_admin(district, "contingency_percent", 4.0)
+    set_by_admin(district, "overhead_percent", 3.5)
+    rows = [one for one in rates_bytes().decode().splitlines() if "contingency" not in one]
+    kept = import_schedule(
+        district_id=district.pk, name="RS-1.csv", data="\n".join(rows).encode(), by=engineer
+    )
+    assert (kept.contingency_percent, kept.overhead_percent) == (Decimal(4), Decimal(2))
+    assert "Not given: 4 % is taken (setting)." in [one["what"] for one in kept.findings]
+    other = read_rates("RS-1.csv", "\n".join(rows).encode())
+    assert other.contingency_percent == Decimal(5)
+
+
+def test_overhead_and_profit_of_an_analysis_are_those_of_the_office(district, engineer):
+    """Oracle: handbook 8.3 by hand, 100.00 with 20 % is 120.00, not the 110.00 of 10 %."""
+    set_by_admin(district, "rate_overhead_profit_percent", 20.0)
+    part = (Component("all of it", "labour", Decimal(1), Decimal("100.00")),)
+    whole = {"district_id": district.pk, "by": engineer, "components": {("clay", None): part}}
+    with pytest.raises(Refused, match=r"The analysis gives 120.00, the schedule says 110.00"):
+        import_schedule(name="RS-1.csv", data=rates_bytes(clay="110.00"), **whole)
+    assert import_schedule(name="RS-1.csv", data=rates_bytes(clay="120.00"), **whole).version == 1
