@@ -19,7 +19,7 @@ from structures.ground.gaussian import (
 )
 from structures.ground.rock_line import RockLine
 from structures.ground.rock_tests import Gathered, gather, ground_level_m
-from structures.intake.defaults import GROUND
+from structures.intake.defaults import FIXED, GROUND
 from structures.intake.line_checks import FOOT_ABOVE_M
 from structures.intake.practice import HANDBOOK, Practice
 from structures.life.cautions import caution
@@ -34,7 +34,9 @@ if TYPE_CHECKING:
     from structures.intake.pack import SurveyPack
     from structures.life.cautions import Caution
 
-LOW, HALF, HIGH = 0.10, 0.50, 0.90  # points of the level that are printed, handbook 4.8
+# Points of the level that are printed, handbook 4.8: a tenth of the draws lies deeper than LOW.
+LOW, HALF = FIXED["risk_line_percent"].value / 100, FIXED["design_line_percent"].value / 100
+HIGH: Final = 1.0 - LOW
 FIT_FROM: Final = 15  # observations, handbook 4.6
 DEPTH_SHARE: Final = 0.25  # of the mean depth, default root of the sill, handbook 4.6
 LEAST_LEVELS: Final = 2  # tests that give a level, handbook 4.7

@@ -240,6 +240,35 @@ EFFECT: Final = _table(
     ),
 )
 
+# Figures of the handbook that no office changes; `LEAST_SLOPE` below is one of them.
+FIXED: Final = _table(
+    Default(
+        "design_line_percent", 50.0, "%", 50.0, 50.0, "A", "P", "rock deeper than the design line"
+    ),
+    Default("risk_line_percent", 10.0, "%", 10.0, 10.0, "A", "P", "rock deeper than the risk line"),
+    Default(
+        "least_side_slope",
+        1.5,
+        "across per 1 up",
+        1.5,
+        1.5,
+        "C",
+        "E",
+        "steepest side slope without a signed support design",
+    ),
+    Default("spoil_least_m", 1.5, "m", 1.5, 1.5, "A", "E", "spoil from the edge, at least"),
+    Default(
+        "spoil_depth_share",
+        0.5,
+        "of depth",
+        0.5,
+        0.5,
+        "A",
+        "E",
+        "spoil from the edge, where farther",
+    ),
+)
+
 GROUPS: Final[dict[str, dict[str, Default]]] = {
     "Wall and trench": WALL,
     "Rock and soundings": GROUND,
@@ -254,5 +283,6 @@ EVERY: Final[dict[str, Default]] = {
     key: default for table in GROUPS.values() for key, default in table.items()
 }
 
-LEAST_SLOPE: Final = 1.5  # across per 1 up; under it a signed support design is named (handbook 12)
-LICENSED_DEPTH_M: Final = WORKS["licensed_depth_m"].value  # to the bottom of the key [P 13]
+LEAST_SLOPE: Final = FIXED[
+    "least_side_slope"
+].value  # across per 1 up; under it a signed support design is named (handbook 12)

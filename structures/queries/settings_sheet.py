@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Final
 from django.db.models import Q
 
 from structures import access
-from structures.intake.defaults import GROUPS
+from structures.intake.defaults import FIXED, GROUPS
 from structures.models import District, Setting
 from structures.queries.settings import settings_in_force
 from structures.validators import CHANGEABLE
@@ -19,19 +19,13 @@ if TYPE_CHECKING:
     from structures.models import User
     from structures.queries.settings import SettingLine
 
-FIXED: Final[tuple[Default, ...]] = tuple(
-    default for table in GROUPS.values() for key, default in table.items() if key not in CHANGEABLE
-)
+FIGURES: Final = tuple(FIXED.values())  # those that no office changes
 
 
 def settings_by_group(district: District) -> dict[str, list[SettingLine]]:
     """What counts in a district, in the groups in which the handbook's table is read."""
     lines = settings_in_force(district)
-    return {
-        words: [lines[key] for key in table if key in lines]
-        for words, table in GROUPS.items()
-        if not lines.keys().isdisjoint(table)
-    }
+    return {words: [lines[key] for key in table] for words, table in GROUPS.items()}
 
 
 def settings_districts(user: User) -> QuerySet[District]:

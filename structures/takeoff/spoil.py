@@ -5,9 +5,11 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Final
 
+from structures.intake.defaults import FIXED
+
 REST_SLOPE: Final = 1.5  # across per 1 up of a loose heap, handbook 6.7
-LEAST_DISTANCE_M: Final = 1.5  # from the edge of the trench, handbook 12
-DEPTH_SHARE: Final = 0.5  # of the depth, where that is farther, handbook 12
+LEAST_DISTANCE_M: Final = FIXED["spoil_least_m"].value  # from the edge of the trench
+DEPTH_SHARE: Final = FIXED["spoil_depth_share"].value  # of the depth, where that is farther
 
 
 @dataclass(frozen=True, slots=True)

@@ -15,7 +15,7 @@ from structures.errors import Refused
 from structures.queries.districts import administered_districts
 from structures.queries.settings import settings_in_force
 from structures.queries.settings_sheet import (
-    FIXED,
+    FIGURES,
     changeable_default,
     setting_history,
     setting_of,
@@ -41,7 +41,7 @@ def settings(request):
         "district": district,
         "groups": settings_by_group(district) if district else {},
         "allowed": _allowed(request.user, district),
-        "fixed": FIXED,
+        "fixed": FIGURES,
         "keeps": administered_districts(request.user),
         "keeps_office": keeps_office(request.user),
     }

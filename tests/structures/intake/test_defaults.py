@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 
-from structures.intake.defaults import EVERY, LEAST_SLOPE, LICENSED_DEPTH_M, WALL
+from structures.intake.defaults import EVERY, FIXED, LEAST_SLOPE, WALL
 from structures.intake.pack import WallSettings
 
 # key: value, lowest and highest accepted, source mark, who may change it
@@ -113,4 +113,16 @@ def test_a_wall_without_overrides_is_the_table():
 
 def test_the_two_limits_of_safety():
     """Oracle: handbook section 12: side slope blocked under 1.5, licensed design over 6.1 m."""
-    assert (LEAST_SLOPE, LICENSED_DEPTH_M) == (1.5, 6.1)
+    assert (LEAST_SLOPE, EVERY["licensed_depth_m"].value) == (1.5, 6.1)
+
+
+def test_what_no_office_changes():
+    """Oracle: handbook section 12, rows of the two lines and of the spoil; "never less"."""
+    assert [(one.key, one.value, one.low, one.high) for one in FIXED.values()] == [
+        ("design_line_percent", 50.0, 50.0, 50.0),
+        ("risk_line_percent", 10.0, 10.0, 10.0),
+        ("least_side_slope", 1.5, 1.5, 1.5),
+        ("spoil_least_m", 1.5, 1.5, 1.5),
+        ("spoil_depth_share", 0.5, 0.5, 0.5),
+    ]
+    assert not FIXED.keys() & EVERY.keys()
