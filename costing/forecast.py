@@ -7,21 +7,14 @@ walk is gone again with the levels seen, at the same rates.
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from decimal import Decimal
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
 from costing.appraisal import DRAWS, SEED, appraise
-from costing.price.money import HUNDRED, to_cents
-from costing.price.revision import (
-    APPROVAL_EXCESS_PERCENT,
-    TECHNICAL_EXCESS_PERCENT,
-    exceeds,
-)
+from costing.price.sanctioned import Sums
 from costing.price.settlement import Worth, worth_of
 from costing.risk import price_draws
-from structures.errors import Finding
 from structures.ground.found import take_in
 from structures.ground.found_lines import draw_around
 from structures.intake.practice import HANDBOOK, Practice
@@ -33,11 +26,13 @@ from structures.wall.section import make_section
 if TYPE_CHECKING:
     from collections.abc import Iterable
     from datetime import date
+    from decimal import Decimal
 
     from costing.appraisal import Appraisal
     from costing.price.billing import Measured
     from costing.price.rates import RateSchedule
     from costing.risk import Spread
+    from structures.errors import Finding
     from structures.ground.found import AsFound, FoundLevel
     from structures.ground.found_lines import DrawnLines, DrawnRange
     from structures.intake.pack import SurveyPack
@@ -45,16 +40,6 @@ if TYPE_CHECKING:
 NO_BOOK: Final = (
     "Rock was found and nothing stands in the measurement book: what is done is not known."
 )
-
-
-@dataclass(frozen=True, slots=True)
-class Sums:
-    """What was sanctioned and approved, None where nothing was, and the office's two limits."""
-
-    technical: Decimal | None = None
-    administrative: Decimal | None = None
-    technical_percent: Decimal = TECHNICAL_EXCESS_PERCENT
-    administrative_percent: Decimal = APPROVAL_EXCESS_PERCENT
 
 
 @dataclass(frozen=True, slots=True)
@@ -93,7 +78,7 @@ class Forecast:
     """The cost with the rock as found; None is "not known", and `reasons` say why in words.
 
     `appraisal` is the walk along the as-found line, `spread` its P10 to P90 where a range exists.
-    Percentages are over the two sums, to hundredths; `findings` say what they ask for.
+    `findings` say what its excess over the two sums asks for.
     `to_complete` is the total less the worth of what was measured, at the same rates.
     """
 
@@ -102,12 +87,21 @@ class Forecast:
     surprises: tuple[Surprise, ...]
     total: Decimal | None
     spread: Spread | None
-    over_technical_percent: Decimal | None
-    over_administrative_percent: Decimal | None
+    sums: Sums
     measured: Worth | None
     to_complete: Decimal | None
     findings: tuple[Finding, ...]
     reasons: tuple[str, ...]
+
+    @property
+    def over_technical_percent(self) -> Decimal | None:
+        """Excess over technical sanction; below zero where the total is less."""
+        return self.sums.over_technical(self.total)
+
+    @property
+    def over_administrative_percent(self) -> Decimal | None:
+        """Excess over administrative approval."""
+        return self.sums.over_administrative(self.total)
 
     @property
     def asks_for_paper(self) -> bool:
@@ -162,23 +156,21 @@ def forecast(
     total = walk.estimate.total if walk.complete else None
     surprises = _surprises(as_found, drawn.ranges)
     measured, why_not = _measured(books, as_found)
-    compared = _Compared(total, books.sums)
     return Forecast(
         appraisal=walk,
         as_found=as_found,
         surprises=surprises,
         total=total,
         spread=spread,
-        over_technical_percent=compared.percent(books.sums.technical),
-        over_administrative_percent=compared.percent(books.sums.administrative),
+        sums=books.sums,
         measured=measured,
         to_complete=None if total is None or measured is None else total - measured.amount,
-        findings=tuple(compared.findings()),
+        findings=books.sums.findings(total),
         reasons=(
             *_why_no_total(walk),
             *_of_the_line(as_found, lines),
             *_of_the_range(surprises, len(as_found.found)),
-            *compared.reasons(),
+            *books.sums.lacking,
             *why_not,
         ),
     )
@@ -253,51 +245,3 @@ def _of_the_range(surprises: tuple[Surprise, ...], count: int) -> Iterable[str]:
             f"{worst.high_m:.2f}. Where nothing is dug it is taken as drawn and may be too narrow: "
             "probe there before the paper is decided."
         )
-
-
-@dataclass(frozen=True, slots=True)
-class _Compared:
-    """A total beside what was sanctioned and approved."""
-
-    total: Decimal | None
-    sums: Sums
-
-    def percent(self, sanctioned: Decimal | None) -> Decimal | None:
-        """Excess in per cent, below zero where the total is less."""
-        if self.total is None or sanctioned is None:
-            return None
-        return to_cents((self.total - sanctioned) * HUNDRED / sanctioned)
-
-    def findings(self) -> Iterable[Finding]:
-        """Say which sum is exceeded. Source: rules ES-03 and ES-04, handbook 8.6."""
-        for name, sanctioned, limit, rule, words, remedy in (
-            (
-                "technical",
-                self.sums.technical,
-                self.sums.technical_percent,
-                "ES-03",
-                "technical sanction",
-                "Revised technical sanction needed before going on.",
-            ),
-            (
-                "administrative",
-                self.sums.administrative,
-                self.sums.administrative_percent,
-                "ES-04",
-                "administrative approval",
-                "Revised approval needed.",
-            ),
-        ):
-            if self.total is None or sanctioned is None:
-                continue
-            if exceeds(sanctioned, self.total, limit):
-                more = self.total - sanctioned
-                what = f"New cost is {self.percent(sanctioned):f} % ({more:f}) over {words}."
-                yield Finding("forecast", name, what, remedy, "block", rule)
-
-    def reasons(self) -> Iterable[str]:
-        """Say which comparison cannot be made."""
-        if self.sums.technical is None:
-            yield "No technical sanction to compare with."
-        if self.sums.administrative is None:
-            yield "No administrative approval to compare with."

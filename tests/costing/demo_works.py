@@ -8,11 +8,11 @@ from decimal import Decimal
 from functools import cache
 from pathlib import Path
 
-from costing.forecast import Sums
 from costing.price.billing import Billed, BillLineAsked, HoldSeen, Measured
 from costing.price.contract import ContractTerms
 from costing.price.payable import BillAsked
 from costing.price.rates import read_rates
+from costing.price.sanctioned import Sums
 from structures.ground.found import FoundLevel
 from structures.ground.found_lines import DrawnRange
 from structures.intake.district import read_district

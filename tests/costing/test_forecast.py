@@ -8,7 +8,8 @@ from math import ceil
 
 import pytest
 
-from costing.forecast import Books, Drawn, Sums, Surprise, forecast
+from costing.forecast import Books, Drawn, Surprise, forecast
+from costing.price.sanctioned import Sums
 from structures.ground.found import FoundLevel
 from structures.ground.found_lines import DrawnRange
 from structures.intake.pack import Works
