@@ -21,9 +21,9 @@ from structures.intake.defaults import GROUND
 from structures.intake.practice import HANDBOOK, Practice
 from structures.life.cautions import Caution, caution
 from structures.life.changed import changed_default
+from structures.life.trench import spoil_distance_m
 from structures.takeoff.dewatering import plan_pumping
 from structures.takeoff.sheet import measure, measurement_sheet, quantities
-from structures.takeoff.spoil import spoil_distance_m
 from structures.wall.cutoff import cut
 from structures.wall.section import make_section
 from structures.wall.wall import design_wall, wall_cautions

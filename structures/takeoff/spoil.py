@@ -5,11 +5,9 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Final
 
-from structures.intake.defaults import FIXED
+from structures.life.trench import spoil_distance_m
 
 REST_SLOPE: Final = 1.5  # across per 1 up of a loose heap, handbook 6.7
-LEAST_DISTANCE_M: Final = FIXED["spoil_least_m"].value  # from the edge of the trench
-DEPTH_SHARE: Final = FIXED["spoil_depth_share"].value  # of the depth, where that is farther
 
 
 @dataclass(frozen=True, slots=True)
@@ -19,11 +17,6 @@ class SpoilHeap:
     distance_m: float
     height_m: float
     base_m: float
-
-
-def spoil_distance_m(depth_m: float) -> float:
-    """Least distance of spoil and machines from the edge. Source: handbook 11 and 12."""
-    return max(LEAST_DISTANCE_M, DEPTH_SHARE * depth_m)
 
 
 def spoil_heap(loose_area_m2: float, depth_m: float) -> SpoilHeap:

@@ -8,7 +8,7 @@ from django.views.decorators.http import require_GET
 from structures.access import MAY, Act
 from structures.intake.practice import HANDBOOK
 from structures.life.cautions import ALWAYS, CATALOGUE, CLOSING_SENTENCE, caution
-from structures.takeoff.spoil import spoil_distance_m
+from structures.life.trench import spoil_distance_m
 
 
 @require_GET

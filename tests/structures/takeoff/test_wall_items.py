@@ -4,12 +4,13 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from structures.life.trench import spoil_distance_m
 from structures.takeoff.centering import centering_m2
 from structures.takeoff.clay import clay_of_wall, rock_key_m3
 from structures.takeoff.film import film_net_m2, film_with_laps_m2
 from structures.takeoff.markers import count_markers
 from structures.takeoff.quantity import ITEMS, Quantity
-from structures.takeoff.spoil import spoil_distance_m, spoil_heap
+from structures.takeoff.spoil import spoil_heap
 from tests.structures.wall.examples import expected, printed
 
 
