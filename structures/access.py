@@ -32,6 +32,7 @@ class Act(StrEnum):
     ENTER_PROFILE = "enter a long profile"
     ACCEPT_SURVEY = "hand in a survey"
     SETTLE_ROCK = "settle a rock line"
+    DRAW = "draw a wall"
     IMPORT_SCHEDULE = "bring in a rate schedule"
     REQUEST_ESTIMATE = "ask for an estimate"
     MANAGE_PEOPLE = "manage people"
@@ -72,6 +73,7 @@ MAY: Final[dict[Act, frozenset[Role]]] = {
     Act.ENTER_PROFILE: frozenset({Role.FIELD, Role.ENGINEER}),
     Act.ACCEPT_SURVEY: frozenset({Role.FIELD, Role.ENGINEER}),
     Act.SETTLE_ROCK: frozenset({Role.ENGINEER}),
+    Act.DRAW: frozenset({Role.ENGINEER}),
     Act.IMPORT_SCHEDULE: frozenset({Role.ENGINEER, Role.DISTRICT}),
     Act.REQUEST_ESTIMATE: frozenset({Role.ENGINEER}),
     Act.MANAGE_PEOPLE: frozenset({Role.ADMIN}),
@@ -114,13 +116,26 @@ class Place(NamedTuple):
 
 
 def postings(user: User | AnonymousUser) -> QuerySet[Posting]:
-    """Postings in force, of an account in force."""
+    """Postings in force, of an account in force; one that was lent, while its lender serves so."""
     if not user.is_authenticated or not user.is_active or account_over(user):
         return Posting.objects.none()
     today = Coalesce("district__as_of", Value(timezone.localdate()), output_field=DateField())
     held = Posting.objects.filter(user=user).annotate(day=today)
+    lender = Posting.objects.filter(
+        Q(valid_to__isnull=True) | Q(valid_to__gte=OuterRef("day")),
+        Q(user__account_ends_on__isnull=True)
+        | Q(user__account_ends_on__gte=Value(timezone.localdate())),
+        user=OuterRef("delegated_by"),
+        user__is_active=True,
+        role=OuterRef("role"),
+        district=OuterRef("district"),
+        valid_from__lte=OuterRef("day"),
+        delegated_by__isnull=True,
+    )
     return held.filter(
-        Q(valid_to__isnull=True) | Q(valid_to__gte=F("day")), valid_from__lte=F("day")
+        Q(valid_to__isnull=True) | Q(valid_to__gte=F("day")),
+        Q(delegated_by__isnull=True) | Exists(lender),
+        valid_from__lte=F("day"),
     )
 
 
