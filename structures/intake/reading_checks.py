@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from collections import defaultdict
 from dataclasses import replace
-from statistics import median
+from itertools import pairwise
+from statistics import median, quantiles
 from typing import TYPE_CHECKING, Final
 
 from structures.intake.tree import Node
@@ -15,18 +16,28 @@ if TYPE_CHECKING:
     from structures.intake.readings import WellReading
     from structures.intake.tree import Ledger
 
+JUMP_FROM: Final = 12  # readings of a well from which on a usual move is known (project choice)
+JUMP_TIMES: Final = 3.0  # rule LV-08; usual is what nine moves in ten stay under
+JUMP_LEAST_M: Final = (
+    0.5  # quiet wells are not held for less than three times this (project choice)
+)
+SLIPS: Final = (
+    (10.0, "a decimal slip"),
+    (0.1, "a decimal slip"),
+    (0.3048, "feet"),  # exact, international foot
+)
 ZERO_BESIDE_M: Final = 1.0  # a well that is mostly deeper than this hardly stands at its mark
 
 
 def check_readings(readings: Iterable[WellReading], ledger: Ledger) -> list[WellReading]:
     """Give the readings again, with a reason on those that must wait for a decision.
 
-    A well of two roles blocks; the same row twice counts once; two values at one time and a zero
-    in a deep well are held (rules LV-13 and LV-07).
+    A well of two roles blocks; the same row twice counts once; two values at one time, a zero in a
+    deep well and a lone jump there and back are held (rules LV-13, LV-07 and LV-08).
     """
     ordered = list(readings)
     _check_roles(ordered, ledger)
-    return _hold_zeros(_hold_doubles(ordered, ledger), ledger)
+    return _hold_jumps(_hold_zeros(_hold_doubles(ordered, ledger), ledger), ledger)
 
 
 def _check_roles(readings: list[WellReading], ledger: Ledger) -> None:
@@ -93,6 +104,45 @@ def _hold_zeros(readings: list[WellReading], ledger: Ledger) -> list[WellReading
         replace(one, left_out=reason) if place in held else one
         for place, one in enumerate(readings)
     ]
+
+
+def _hold_jumps(readings: list[WellReading], ledger: Ledger) -> list[WellReading]:
+    """Hold a reading that leaves both its neighbours the same way by far more than is usual."""
+    by_well: dict[str, list[int]] = defaultdict(list)
+    for place, one in enumerate(readings):
+        if not (one.left_out or one.dry):
+            by_well[one.well].append(place)
+    kept = list(readings)
+    for places in by_well.values():
+        places.sort(key=lambda place: readings[place].read_at)
+        rows = [readings[place] for place in places]
+        if len(rows) < JUMP_FROM:
+            continue
+        jumps_m = [later.level_m - earlier.level_m for earlier, later in pairwise(rows)]
+        usual_m = quantiles([abs(jump) for jump in jumps_m], n=10)[-1]
+        most_m = JUMP_TIMES * max(usual_m, JUMP_LEAST_M)
+        for place, (there_m, back_m) in zip(places[1:], pairwise(jumps_m), strict=False):
+            if there_m * back_m < 0.0 and min(abs(there_m), abs(back_m)) > most_m:
+                kept[place] = replace(kept[place], left_out="jump, waits for a decision")
+                _tell_jump(readings[place], there_m, usual_m, ledger)
+    return kept
+
+
+def _tell_jump(reading: WellReading, jump_m: float, usual_m: float, ledger: Ledger) -> None:
+    expected_m = reading.depth_m + jump_m
+    fitting = [
+        f"{words} ({reading.depth_m * factor:.2f} m)"
+        for factor, words in SLIPS
+        if abs(reading.depth_m * factor - expected_m) <= max(usual_m, JUMP_LEAST_M)
+    ]
+    guess = f" It fits as {' or '.join(fitting)}." if fitting else ""
+    what = (
+        f"{reading.well} moved {jump_m:+.2f} m and back in one reading; {usual_m:.2f} m is a great "
+        f"move for it.{guess}"
+    )
+    remedy = "It is not used. Decimal slip, feet, wrong well? Decide."
+    node = Node(None, reading.where, "depth_m")
+    ledger.add(node, what, remedy, level="hold", rule="LV-08")
 
 
 def _what(reading: WellReading) -> tuple[object, ...]:

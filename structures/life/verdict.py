@@ -172,7 +172,10 @@ def _forecast_words(forecast: Forecast, wells: Measured | None) -> str:
 
 
 def _range(gain: Measured) -> str:
-    return f"{gain.gain_m:.2f} m ({gain.low_m:.2f} to {gain.high_m:.2f})"
+    middle, low, high = (
+        f"{round(one, 2) + 0.0:.2f}" for one in (gain.gain_m, gain.low_m, gain.high_m)
+    )
+    return f"{middle} m ({low} to {high})"
 
 
 def _nothing(reason: str) -> Suggestion:

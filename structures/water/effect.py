@@ -16,6 +16,7 @@ from structures.life.verdict import Limits, Measured
 from structures.water.contrast import pooled_contrast, unequal_contrast
 from structures.water.dry import Bounded, bounded_mixture
 from structures.water.effect_cautions import doubts, shortages
+from structures.water.filling import filling_until, find_filling
 from structures.water.pairs import make_pairs
 from structures.water.power import smallest_seen_m, widening
 from structures.water.regression import regress
@@ -40,8 +41,17 @@ if TYPE_CHECKING:
 SERIAL_FROM: Final = 24  # pairs; with fewer, serial correlation is not judged (handbook 10.2)
 SEASON_FROM: Final = 2  # full water years a side for annual terms (handbook 10.5)
 DRY_MOST: Final = 1 / 20  # share of dry pairs up to which they are left out (handbook 10.1)
+DRY_REASON: Final = "dry, in 1 of 20 pairs or fewer"
 MORE_YEARS: Final = 2  # of readings, for what they would show
 SEED: Final = 20261201  # of the draws of dry pairs; any whole number, it stands in the result
+
+
+def used_pairs(pairs: Pairs) -> NDArray[np.bool_]:
+    """Mark the pairs that count; dry ones are left out where they are 1 in 20 or fewer.
+
+    Source: handbook 10.1.
+    """
+    return ~pairs.bounded if pairs.dry_share <= DRY_MOST else np.ones_like(pairs.bounded)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -74,10 +84,27 @@ class Effect:
     seed: int
 
     @property
+    def used(self) -> NDArray[np.bool_]:
+        """Which pairs count: without the dry ones where those are few; shape (n,)."""
+        return used_pairs(self.pairs)
+
+    @property
     def counts(self) -> tuple[int, int]:
-        """Pairs before and after."""
-        after = int(self.pairs.after.sum())
-        return self.pairs.after.size - after, after
+        """Pairs that count, before and after."""
+        after = self.pairs.after
+        return int((self.used & ~after).sum()), int((self.used & after).sum())
+
+    @property
+    def taken(self) -> int:
+        """Readings behind the pairs that count."""
+        return int(self.pairs.readings[self.used].sum())
+
+    @property
+    def left_out(self) -> tuple[tuple[str, int], ...]:
+        """Why the other readings do not count, the most frequent reason first."""
+        dry = int(self.pairs.readings[~self.used].sum())
+        reasons = [*self.pairs.left_out, *([(DRY_REASON, dry)] if dry else [])]
+        return tuple(sorted(reasons, key=lambda item: (-item[1], item[0])))
 
     @property
     def is_effect(self) -> bool:
@@ -135,38 +162,54 @@ def measure_effect(
     if short:
         return Effect(pairs, rules, None, None, short, seed)
     told: list[Caution] = []
-    estimate = _estimate(pairs, rules, np.random.default_rng(seed), told)
+    estimate = _estimate(pairs, completed, rules, np.random.default_rng(seed), told)
     rivals = find_rivals(readings, pairs, completed, rain, rules)
     told += doubts(pairs, rivals, rain, rules)
     return Effect(pairs, rules, estimate, rivals, tuple(told), seed)
 
 
 def _estimate(
-    pairs: Pairs, rules: EffectRules, rng: np.random.Generator, told: list[Caution]
+    pairs: Pairs,
+    completed: date,
+    rules: EffectRules,
+    rng: np.random.Generator,
+    told: list[Caution],
 ) -> Estimate:
-    share = pairs.dry_share
-    if share > DRY_MOST:
+    used, share = used_pairs(pairs), pairs.dry_share
+    fitted = share > DRY_MOST
+    if fitted:
         told.append(caution("effect-dry-fitted", percent=100 * share))
-        return _serial(pairs, np.ones(pairs.after.size, dtype=bool), rules, rng)
-    if share:
+    elif share:
         told.append(caution("effect-dry-left-out", count=int(pairs.bounded.sum())))
-    wet = ~pairs.bounded
-    if wet.sum() >= SERIAL_FROM:
-        return _serial(pairs, wet, rules, None)
-    told.append(caution("effect-serial-not-judged", count=int(wet.sum()), least=SERIAL_FROM))
-    return _plain(pairs, wet, rules)
+    if not fitted and used.sum() < SERIAL_FROM:
+        told.append(caution("effect-serial-not-judged", count=int(used.sum()), least=SERIAL_FROM))
+        return _plain(pairs, used, rules)
+    seasons = min(len(pairs.full_before), len(pairs.full_after)) >= SEASON_FROM
+    columns = np.column_stack(
+        [np.ones(used.size), pairs.after, *(pairs.season().T if seasons else ())]
+    )
+    filling = find_filling(pairs, columns, completed, rules)
+    if filling is not None:
+        columns = np.column_stack([columns, filling])
+        until = filling_until(completed, rules).isoformat()
+        told.append(caution("effect-first-filling", until=until, count=int(filling.sum())))
+    words = _words(
+        pairs.middle_day[used], rules, seasons=seasons, dry=fitted, filling=filling is not None
+    )
+    return _serial(pairs, used, columns[used], rules, rng if fitted else None, words)
 
 
 def _serial(
-    pairs: Pairs, used: NDArray[np.bool_], rules: EffectRules, rng: np.random.Generator | None
+    pairs: Pairs,
+    used: NDArray[np.bool_],
+    columns: NDArray[np.float64],
+    rules: EffectRules,
+    rng: np.random.Generator | None,
+    words: str,
 ) -> Estimate:
     """Give the interval of 10.5; with a generator, dry pairs count as bounds."""
-    days, after = pairs.middle_day[used], pairs.after[used].astype(float)
-    seasons = min(len(pairs.full_before), len(pairs.full_after)) >= SEASON_FROM
-    season = pairs.season()[used] if seasons else np.empty((days.size, 0))
-    columns = np.column_stack([np.ones(days.size), after, season])
+    days, values = pairs.middle_day[used], pairs.difference_m[used]
     design = SerialDesign(in_median_gaps(days), columns)
-    values = pairs.difference_m[used]
     law: Mixture
     if rng is None:
         law = design.mixture(values, 1)
@@ -174,17 +217,9 @@ def _serial(
         law = bounded_mixture(design, Bounded(values, pairs.below, pairs.above), 1, rng)
     low, high = law.interval(rules.confidence)
     smallest = smallest_seen_m((high - low) / 2.0, law.degrees, rules.confidence)
-    factor = widening(design, days, after, values, seasons=seasons, years=MORE_YEARS)
-    beside = _beside(values, after, columns) if rng is None else {}
-    return Estimate(
-        law.quantile(0.5),
-        low,
-        high,
-        _words(days, rules, seasons=seasons, dry=rng is not None),
-        smallest,
-        factor * smallest,
-        **beside,
-    )
+    factor = widening(design, days, values, years=MORE_YEARS)
+    beside = _beside(values, columns[:, 1], columns) if rng is None else {}
+    return Estimate(law.quantile(0.5), low, high, words, smallest, factor * smallest, **beside)
 
 
 def _plain(pairs: Pairs, used: NDArray[np.bool_], rules: EffectRules) -> Estimate:
@@ -216,7 +251,9 @@ def _beside(
     }
 
 
-def _words(days: NDArray[np.float64], rules: EffectRules, *, seasons: bool, dry: bool) -> str:
+def _words(
+    days: NDArray[np.float64], rules: EffectRules, *, seasons: bool, dry: bool, filling: bool
+) -> str:
     gap = float(np.median(np.diff(days)))
     weighed = (
         "Difference of half-month pairs, after less before, weighed over serial correlations of "
@@ -225,6 +262,7 @@ def _words(days: NDArray[np.float64], rules: EffectRules, *, seasons: bool, dry:
     parts = [
         weighed,
         "annual cosine and sine beside the step" if seasons else "no seasonal terms",
+        "the first filling with a level of its own" if filling else "",
         "dry pairs drawn below their bounds" if dry else "",
     ]
     return f"{'; '.join(filter(None, parts))}; {rules.confidence:.0%} interval."

@@ -35,7 +35,8 @@ class Pairs:
 
     `below`: affected wells were dry, the true difference lies lower; `above`: control wells were,
     it lies higher. `after` counts the day of completion. `full_before` and `full_after` are the
-    starting years of full water years.
+    starting years of full water years; `readings` how many stand behind a pair, `left_out` why the
+    others do not.
     """
 
     days: tuple[date, ...]
@@ -49,7 +50,7 @@ class Pairs:
     control_wells: tuple[str, ...]
     full_before: tuple[int, ...]
     full_after: tuple[int, ...]
-    taken: int
+    readings: NDArray[np.int_]
     left_out: tuple[tuple[str, int], ...]
 
     def __post_init__(self) -> None:
@@ -126,7 +127,7 @@ def make_pairs(readings: Sequence[WellReading], completed: date, rules: EffectRu
         control_wells=control.wells,
         full_before=full[0],
         full_after=full[1],
-        taken=sum(_count(side, one) for side in sides for one in used),
+        readings=np.array([sum(_count(side, row[0]) for side in sides) for row in kept], dtype=int),
         left_out=tuple(sorted((+left_out).items(), key=lambda item: (-item[1], item[0]))),
     )
 

@@ -32,23 +32,18 @@ def smallest_seen_m(half_width_m: float, degrees: float, confidence: float) -> f
 
 
 def widening(
-    design: SerialDesign,
-    days: NDArray[np.float64],
-    after: NDArray[np.float64],
-    values: NDArray[np.float64],
-    *,
-    seasons: bool,
-    years: int,
+    design: SerialDesign, days: NDArray[np.float64], values: NDArray[np.float64], *, years: int
 ) -> float:
     """Error of the step with more years of readings, as a share of the error now.
 
-    The after side goes on at its own median gap; scatter and weights of the correlations stay
+    The after side goes on at its own median gap, each pair with the columns of the pair that stood
+    nearest to its time of the year in the last year; scatter and weights of the correlations stay
     those of the readings.
 
     Parameters
     ----------
     design
-        That of the readings: ones, step and, with `seasons`, annual cosine and sine.
+        That of the readings; column 1 is the step.
     days
         Day numbers of the pairs, shape (n,).
     years
@@ -56,12 +51,13 @@ def widening(
     """
     gap = float(np.median(np.diff(days)))
     more = days[-1] + np.arange(gap, years * DAYS_OF_YEAR, gap)
+    last = np.flatnonzero(days > days[-1] - DAYS_OF_YEAR)
+    apart = np.abs(
+        (more[:, None] - days[None, last] + DAYS_OF_YEAR / 2) % DAYS_OF_YEAR - DAYS_OF_YEAR / 2
+    )
+    rows = design.columns[last[np.argmin(apart, axis=1)]]
     longer = np.concatenate([days, more])
-    columns = [np.ones(longer.size), np.concatenate([after, np.ones(more.size)])]
-    if seasons:
-        angle = 2.0 * np.pi * longer / DAYS_OF_YEAR
-        columns += [np.cos(angle), np.sin(angle)]
-    then = SerialDesign((longer - longer[0]) / gap, np.column_stack(columns))
+    then = SerialDesign((longer - longer[0]) / gap, np.concatenate([design.columns, rows]))
     weight = design.weigh(values).weight
     now, later = (weight @ one.inverse[:, 1, 1] for one in (design, then))
     return float((later / now) ** 0.5)

@@ -34,7 +34,10 @@ if TYPE_CHECKING:
     from structures.water.rules import EffectRules
 
 MARK_MOVED_M: Final = 0.001  # less is rounding of the same mark
-NEAR_COMPLETION_DAYS: Final = 90  # a step so near is the wall's own (project choice)
+# A step from so long before to so long after completion is the works or the first filling, which
+# comes with the first rains and not in a day (project choice).
+WORKS_DAYS: Final = 90
+FILLING_DAYS: Final = 366
 DAYS_OF_YEAR: Final = 365.25
 TREND_LEAST: Final = 12  # pairs before completion for a word on their trend (project choice)
 
@@ -170,6 +173,12 @@ def _change_m(pairs: Pairs, side: NDArray[np.float64]) -> float:
     return float(side[pairs.after].mean() - side[~pairs.after].mean())
 
 
+def near_completion(days: NDArray[np.float64], completed: date) -> NDArray[np.bool_]:
+    """Mark the day numbers at which a step would be the works' or the first filling's."""
+    since = days - completed.toordinal()
+    return (since > -WORKS_DAYS) & (since < FILLING_DAYS)
+
+
 def _jump(pairs: Pairs, completed: date) -> JumpOfPairs | None:
     """Look for a step of the pairs elsewhere than at completion."""
     wet = ~pairs.bounded
@@ -177,8 +186,12 @@ def _jump(pairs: Pairs, completed: date) -> JumpOfPairs | None:
     if days.size < 2 or np.ptp(after) == 0.0:
         return None
     columns = np.column_stack([np.ones(days.size), after, pairs.season()[wet]])
-    near = np.abs(days - completed.toordinal()) < NEAR_COMPLETION_DAYS
-    step = find_step(in_median_gaps(days), columns, pairs.difference_m[wet], barred=near)
+    step = find_step(
+        in_median_gaps(days),
+        columns,
+        pairs.difference_m[wet],
+        barred=near_completion(days, completed),
+    )
     if step is None:
         return None
     return JumpOfPairs(pairs.days[int(np.flatnonzero(wet)[step.first])], step.size_m)
