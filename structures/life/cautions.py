@@ -6,6 +6,7 @@ The program never declares a trench, a slope, a pit or a water safe. Source: han
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
@@ -31,12 +32,14 @@ WORDS: Final[dict[Level, str]] = {  # of the levels, as they are printed
     "warn": "CARE",
     "note": "NOTE",
 }
+SQUARES: Final = re.compile(r"\bm([23])\b")  # units of settings and reasons that stand in the words
+RAISED: Final = {"2": "²", "3": "³"}
 CLOSING_SENTENCE: Final = "Local codes and licensed practice decide; this sheet does not."
 
 
 @dataclass(frozen=True, slots=True)
 class Caution:
-    """One caution as it is printed."""
+    """One caution as it is printed; a list of them ends with CLOSING_SENTENCE, once."""
 
     code: str
     level: Level
@@ -191,8 +194,10 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     ),
     "sides-drawn": (
         "warn",
-        "The sides drawn are the least asked for by this program, not a proof of safety. Nobody "
-        "goes in where the day's look says stop. " + CLOSING_SENTENCE,
+        (
+            "The sides drawn are the least asked for by this program, not a proof of safety. Nobody "
+            "goes in where the day's look says stop."
+        ),
     ),
     "default-changed": (
         "warn",
@@ -220,37 +225,46 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     # works and water
     "trench-collapse": (
         "warn",
-        "Sand stands only while damp; a wet or drying face fails without warning, in seconds. From "
-        "{entry_m:g} m on nobody enters a cut without slope or support; nobody goes in alone, or where the "
-        "day's look says stop. " + CLOSING_SENTENCE,
+        (
+            "Sand stands only while damp; a wet or drying face fails without warning, in seconds. From "
+            "{entry_m:g} m on nobody enters a cut without slope or support; nobody goes in alone, or where the "
+            "day's look says stop."
+        ),
     ),
     "edge": (
         "warn",
-        "Spoil and machines stay {distance_m:.2f} m or more from the edge: nobody goes in until "
-        "they are moved. A ladder within 7.6 m from {entry_m:g} m depth; fence and light at night. "
-        + CLOSING_SENTENCE,
+        (
+            "Spoil and machines stay {distance_m:.2f} m or more from the edge: nobody goes in until "
+            "they are moved. A ladder within 7.6 m from {entry_m:g} m depth; fence and light at night."
+        ),
     ),
     "pumping": (
         "warn",
-        "Pumping from inside the trench pulls sand from the sides: sump off the wall line. If the "
-        "pump stops, people leave. Nearby wells and footings can suffer: tell their owners first. "
-        + CLOSING_SENTENCE,
+        (
+            "Pumping from inside the trench pulls sand from the sides: sump off the wall line. If the "
+            "pump stops, people leave. Nearby wells and footings can suffer: tell their owners first."
+        ),
     ),
     "neighbours": (
         "warn",
-        "Pumping can draw the water down as far as {reach_m:.0f} m from the trench: it lowers wells "
-        "and can settle footings. List wells and buildings within it and tell the owners first. "
-        + CLOSING_SENTENCE,
+        (
+            "Pumping can draw the water down as far as {reach_m:.0f} m from the trench: it lowers wells "
+            "and can settle footings. List wells and buildings within it and tell the owners first."
+        ),
     ),
     "uplift": (
         "warn",
-        "A clay layer can hold water under pressure beneath it. A licensed engineer checks the cover "
-        "against uplift before each lift; this program gives no pass for it. " + CLOSING_SENTENCE,
+        (
+            "A clay layer can hold water under pressure beneath it. A licensed engineer checks the cover "
+            "against uplift before each lift; this program gives no pass for it."
+        ),
     ),
     "flood": (
         "warn",
-        "A stream can come from rain nobody saw: dry season only, a watch upstream with an agreed "
-        "signal, no tools worth going back for. " + CLOSING_SENTENCE,
+        (
+            "A stream can come from rain nobody saw: dry season only, a watch upstream with an agreed "
+            "signal, no tools worth going back for."
+        ),
     ),
     "geophysics": (
         "note",
@@ -390,4 +404,8 @@ def caution(code: str, **values: object) -> Caution:
         If the code is not in the list, or a value for its words is missing.
     """
     level, words = CATALOGUE[code]
-    return Caution(code, level, words.format(**values))
+    return Caution(code, level, SQUARES.sub(_raised, words.format(**values)))
+
+
+def _raised(unit: re.Match[str]) -> str:
+    return f"m{RAISED[unit[1]]}"
