@@ -14,6 +14,8 @@ from structures.water.bounds import insist_positive
 from structures.water.leakage import slot_flow
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from numpy.typing import NDArray
 
     from structures.wall.cutoff import Cutoff
@@ -38,7 +40,14 @@ class ShelfLeak:
     reach_over_width: float
 
 
-def shelf_leak(cutoff: Cutoff, *, shelf_m: float, water_m: float, reach_m: float) -> ShelfLeak:
+def shelf_leak(
+    cutoff: Cutoff,
+    *,
+    shelf_m: float,
+    water_m: float,
+    reach_m: float,
+    down_to_rock: Sequence[tuple[float, float]] = (),
+) -> ShelfLeak:
     """Tell how much passes under a wall whose bottom is raised to a shelf.
 
     Source: handbook 9.4 (b), 9.5 and 9.6. [A] The least takes the flow in upright slices that give
@@ -57,6 +66,8 @@ def shelf_leak(cutoff: Cutoff, *, shelf_m: float, water_m: float, reach_m: float
         Water level before there was a wall; the layer lies between it and the rock.
     reach_m
         Length L along the flow over which the head drop is fixed.
+    down_to_rock
+        From and to offset of stretches where the wall reaches rock all the same.
 
     Raises
     ------
@@ -68,10 +79,11 @@ def shelf_leak(cutoff: Cutoff, *, shelf_m: float, water_m: float, reach_m: float
     if cutoff.section.draws != 1:
         raise ValueError(f"one rock line is asked for, got {cutoff.section.draws} draws")
     x, rock = cutoff.section.offset_m, cutoff.section.rock_m[0]
-    x, rock = _with_crossings(x, rock, (shelf_m, water_m))
-    middle = 0.5 * (rock[:-1] + rock[1:])
-    width = np.diff(x)
-    wet, below = middle < water_m, middle < min(shelf_m, water_m)
+    closed = np.array(down_to_rock, dtype=np.float64).reshape(-1, 2)
+    x, rock = _cut_at(x, rock, (shelf_m, water_m), closed.ravel())
+    middle, width, at = 0.5 * (rock[:-1] + rock[1:]), np.diff(x), 0.5 * (x[:-1] + x[1:])
+    inside = ((at[:, None] > closed[:, 0]) & (at[:, None] < closed[:, 1])).any(axis=1)
+    wet, below = middle < water_m, (middle < min(shelf_m, water_m)) & ~inside
     if not below.any():
         raise ValueError(f"no rock under the water lies deeper than {shelf_m:g} m")
     whole = float(((water_m - middle) * width)[wet].sum())
@@ -108,11 +120,11 @@ def _slices(
     return 0.5 * width_m * float(weights @ flows)
 
 
-def _with_crossings(
-    x: NDArray, z: NDArray, levels_m: tuple[float, ...]
+def _cut_at(
+    x: NDArray, z: NDArray, levels_m: tuple[float, ...], offsets_m: NDArray
 ) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
-    """Add to a line the places where it passes through levels."""
-    places = [x]
+    """Add to a line some offsets within it, and the places where it passes through levels."""
+    places = [x, offsets_m[(offsets_m > x[0]) & (offsets_m < x[-1])]]
     for level in levels_m:
         above = z - level
         i = np.flatnonzero(above[:-1] * above[1:] < 0.0)

@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import csv
 from datetime import date, datetime
-from decimal import Decimal
+from decimal import ROUND_HALF_UP, Decimal
+from fractions import Fraction
 from functools import cache
+from math import ceil
 from pathlib import Path
 
 from costing.price.billing import Billed, BillLineAsked, HoldSeen, Measured
@@ -128,3 +130,41 @@ def ranges(site):
 def sums(site):
     amounts = {row["kind"]: Decimal(row["amount"]) for row in rows("sanctions", site)}
     return Sums(amounts["technical"], amounts["administrative"])
+
+
+def cents(value):
+    return Decimal(value.numerator) / Decimal(value.denominator)
+
+
+def hundredths(value):
+    six = cents(value).quantize(Decimal("0.000001"), ROUND_HALF_UP)
+    return six.quantize(Decimal("0.01"), ROUND_HALF_UP)
+
+
+def by_hand(wall, settings, hours):
+    """Total of an exact wall by the conventions of the demo: in fractions, priced line by line."""
+    t, key = Fraction(str(settings.thickness_m)), Fraction(str(settings.key_m))
+    clay = t * wall.face_area_m2
+    dug = sum(wall.lifts_m3)
+    folds = Fraction("0.6") * wall.length_m
+    film = 2 * (wall.face_area_m2 + folds) * Fraction(6) / Fraction("5.7")
+    quantities = [
+        *(("excavation", lift) for lift in wall.lifts_m3),
+        ("rock_key", t * key * wall.length_m),
+        ("dewatering", Fraction(hours)),
+        ("clay", clay),
+        ("film", film),
+        ("centering", 2 * wall.face_above_rock_m2),
+        ("backfill", dug - t * wall.face_above_rock_m2),
+        ("surplus", clay * Fraction("1.25")),
+        ("marker", Fraction(1 + ceil((wall.right_m - wall.left_m) / 10))),
+        ("observation_pipe", Fraction(2)),
+    ]
+    price = {one.item: one.rate for one in demo_rates().rates}
+    cent = Decimal("0.01")
+    subtotal = sum(
+        (hundredths(amount) * price[item]).quantize(cent, ROUND_HALF_UP)
+        for item, amount in quantities
+    )
+    added = [(subtotal * p / 100).quantize(cent, ROUND_HALF_UP) for p in (5, 2)]
+    return subtotal + sum(added)

@@ -2,9 +2,7 @@
 
 from dataclasses import replace
 from datetime import date
-from decimal import ROUND_HALF_UP, Decimal
-from fractions import Fraction
-from math import ceil
+from decimal import Decimal
 
 import pytest
 
@@ -13,7 +11,7 @@ from costing.price.sanctioned import Sums
 from structures.ground.found import FoundLevel
 from structures.ground.found_lines import DrawnRange
 from structures.intake.pack import Works
-from tests.costing.demo_works import book, demo_rates, found, ranges, sums, survey
+from tests.costing.demo_works import book, by_hand, demo_rates, found, ranges, sums, survey
 from tests.costing.documents.appraisals import ON, estimated, pack, rates
 from tests.structures.wall.exact import exact_wall
 from tests.structures.wall.examples import Case
@@ -120,44 +118,6 @@ def test_without_a_settled_line_levels_found_narrow_the_estimate():
     assert before.total == estimated().estimate.total
     assert after.spread.p90 - after.spread.p10 < before.spread.p90 - before.spread.p10
     assert float(after.total) == pytest.approx(float(before.total), rel=0.01)
-
-
-def cents(value):
-    return Decimal(value.numerator) / Decimal(value.denominator)
-
-
-def hundredths(value):
-    six = cents(value).quantize(Decimal("0.000001"), ROUND_HALF_UP)
-    return six.quantize(Decimal("0.01"), ROUND_HALF_UP)
-
-
-def by_hand(wall, settings, hours):
-    """Quantities by the conventions of the demo, in fractions, priced line by line."""
-    t, key = Fraction(str(settings.thickness_m)), Fraction(str(settings.key_m))
-    clay = t * wall.face_area_m2
-    dug = sum(wall.lifts_m3)
-    folds = Fraction("0.6") * wall.length_m
-    film = 2 * (wall.face_area_m2 + folds) * Fraction(6) / Fraction("5.7")
-    quantities = [
-        *(("excavation", lift) for lift in wall.lifts_m3),
-        ("rock_key", t * key * wall.length_m),
-        ("dewatering", Fraction(hours)),
-        ("clay", clay),
-        ("film", film),
-        ("centering", 2 * wall.face_above_rock_m2),
-        ("backfill", dug - t * wall.face_above_rock_m2),
-        ("surplus", clay * Fraction("1.25")),
-        ("marker", Fraction(1 + ceil((wall.right_m - wall.left_m) / 10))),
-        ("observation_pipe", Fraction(2)),
-    ]
-    price = {one.item: one.rate for one in demo_rates().rates}
-    cent = Decimal("0.01")
-    subtotal = sum(
-        (hundredths(amount) * price[item]).quantize(cent, ROUND_HALF_UP)
-        for item, amount in quantities
-    )
-    added = [(subtotal * p / 100).quantize(cent, ROUND_HALF_UP) for p in (5, 2)]
-    return subtotal + sum(added)
 
 
 def test_rock_runs_deeper_in_the_demo():

@@ -72,6 +72,15 @@ def test_two_gullies_share_the_width():
     assert leak.least_share < leak.most_share
 
 
+def test_where_the_wall_reaches_rock_nothing_is_open():
+    """Oracle: half of the box taken down to rock passes half of what the whole box passes."""
+    known = {"shelf_m": 91.0, "water_m": WATER, "reach_m": 200.0}
+    whole = shelf_leak(wall(BOX), **known)
+    half = shelf_leak(wall(BOX), **known, down_to_rock=[(5.0, 60.0)])
+    assert half.least_share == pytest.approx(whole.least_share / 2, abs=1e-4)
+    assert half.open_width_m == pytest.approx(50.0, abs=1e-3)
+
+
 def test_a_shelf_above_the_water_keeps_nothing_back_there():
     """Law: where the wall does not reach into the water every slice passes whole."""
     leak = shelf_leak(wall(BOX), shelf_m=100.5, water_m=WATER, reach_m=100.0)

@@ -1,0 +1,109 @@
+"""Where the works stand when an option paper is written, and what is left to do on a wall."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from itertools import pairwise
+from typing import TYPE_CHECKING
+
+from structures.takeoff.quantity import ITEMS, Quantity
+from structures.takeoff.sheet import measure
+from structures.wall.part import part_of
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+    from decimal import Decimal
+
+    from costing.appraisal import Appraisal
+    from structures.intake.pack import WallSettings
+    from structures.wall.cutoff import Cutoff
+
+Reach = tuple[float, float]
+
+
+@dataclass(frozen=True, slots=True)
+class OnSite:
+    """What is done and what stands open: reaches of strips that are covered, and of open ones.
+
+    `spent` is the worth of all work done so far; None is "not known", never zero.
+
+    Raises
+    ------
+    ValueError
+        If a reach ends before it begins, or two overlap.
+    """
+
+    covered: tuple[Reach, ...]
+    open: tuple[Reach, ...]
+    spent: Decimal | None
+
+    def __post_init__(self) -> None:
+        reaches = sorted((*self.covered, *self.open))
+        if any(stop <= start for start, stop in reaches):
+            raise ValueError("a strip ends before it begins")
+        if any(start < stop for (_, stop), (start, _) in pairwise(reaches)):
+            raise ValueError("two strips overlap")
+
+    def left(self, first_m: float, last_m: float) -> tuple[Reach, ...]:
+        """Give the reaches between two offsets that are not covered."""
+        gaps, at = [], first_m
+        for start, stop in sorted(self.covered):
+            if start > at:
+                gaps.append((at, min(start, last_m)))
+            at = max(at, stop)
+        if at < last_m:
+            gaps.append((at, last_m))
+        return tuple((start, stop) for start, stop in gaps if stop > start)
+
+
+@dataclass(frozen=True, slots=True)
+class Season:
+    """How long work takes and how long is left, as the season's rules have it.
+
+    `days_of` gives the days that quantities need, None where it cannot say; `days_left` are those
+    until the early date of first flow less the reserve. `why` says what is not known.
+    """
+
+    days_of: Callable[[tuple[Quantity, ...]], float | None]
+    days_left: float | None
+    why: str = ""
+
+
+def left_of(walk: Appraisal, site: OnSite) -> Cutoff | None:
+    """Cut the part of a wall that is not covered; None where all of it is.
+
+    Raises
+    ------
+    ValueError
+        If the walk has no wall.
+    """
+    if walk.design is None:
+        raise ValueError("without a wall nothing is left of it")
+    wall = walk.design.wall
+    reaches = site.left(wall.left_end_m, wall.right_end_m)
+    return part_of(walk.design.cutoff, reaches) if reaches else None
+
+
+def work_of(part: Cutoff | None, settings: WallSettings) -> tuple[Quantity, ...]:
+    """Measure what takes days on a part of a wall, in item order, excavation in one sum.
+
+    An open strip counts as not begun: an upper value.
+    """
+    if part is None:
+        return ()
+    takings = measure(part, settings)
+    known = {"excavation": float(takings.excavation_m3.sum())}
+    known |= {
+        item: float(takings.by_item[item][0])
+        for item in ("rock_key", "clay", "film", "centering", "backfill", "surplus")
+    }
+    return tuple(Quantity(item, ITEMS[item], known[item]) for item in ITEMS if item in known)
+
+
+def hole_of(walk: Appraisal, site: OnSite) -> tuple[Quantity, ...]:
+    """Measure what is to be filled where strips stand open, dug to the rock as found."""
+    if walk.design is None or not site.open:
+        return ()
+    part = part_of(walk.design.cutoff, site.open)
+    volume = float(measure(part, walk.pack.wall).excavation_m3.sum())
+    return (Quantity("backfill", ITEMS["backfill"], volume, working="trench of the open strips"),)
