@@ -54,7 +54,7 @@ MIDDLEWARE = [
     "django.middleware.csrf.CsrfViewMiddleware",
     "django.contrib.auth.middleware.AuthenticationMiddleware",
     "django.contrib.messages.middleware.MessageMiddleware",
-    "django.contrib.auth.middleware.LoginRequiredMiddleware",
+    "structures.web.sessions.SessionMiddleware",
     "django.middleware.clickjacking.XFrameOptionsMiddleware",
     "structures.web.refusals.RefusalMiddleware",
     "axes.middleware.AxesMiddleware",  # last, so that nothing rewrites its answer

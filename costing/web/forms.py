@@ -4,30 +4,26 @@ from django import forms
 from django.utils.translation import gettext_lazy as _
 
 from structures.models import District
+from structures.web.sent_files import SentFile
 
-EMPTY = _("This file is empty. Send it again.")
 RATES_HELP = _("CSV with item,from_m,unit,rate,currency, or JSON of the same rows.")
-RATES_FILE = forms.ClearableFileInput(attrs={"accept": ".csv,.json"})
+RATES_ENDINGS = ".csv,.json"
 
 
 class AppraisalForm(forms.Form):
     """A survey pack, and the rates it is to be priced at."""
 
-    pack = forms.FileField(
+    pack = SentFile(
         label=_("Survey pack"),
-        error_messages={
-            "required": _("No survey pack was chosen. Choose one file."),
-            "empty": EMPTY,
-        },
+        missing=_("No survey pack was chosen. Choose one file."),
+        endings=".json,.zip,.xlsx",
         help_text=_("JSON, a zip of CSV files, or XLSX; one site, 20 MB at most."),
-        widget=forms.ClearableFileInput(attrs={"accept": ".json,.zip,.xlsx"}),
     )
-    rates = forms.FileField(
+    rates = SentFile(
         label=_("Rate schedule (may be left out)"),
         required=False,
-        error_messages={"empty": EMPTY},
+        endings=RATES_ENDINGS,
         help_text=RATES_HELP,
-        widget=RATES_FILE,
     )
 
 
@@ -35,14 +31,11 @@ class ScheduleForm(forms.Form):
     """A rate schedule for a district."""
 
     district = forms.ModelChoiceField(District.objects.none(), label=_("District"))
-    rates = forms.FileField(
+    rates = SentFile(
         label=_("Rate schedule"),
-        error_messages={
-            "required": _("No rate schedule was chosen. Choose one file."),
-            "empty": EMPTY,
-        },
+        missing=_("No rate schedule was chosen. Choose one file."),
+        endings=RATES_ENDINGS,
         help_text=RATES_HELP,
-        widget=RATES_FILE,
     )
 
     def __init__(self, districts, *args, **kwargs):

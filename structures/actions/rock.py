@@ -34,13 +34,16 @@ def settle_rock_line(
     reason: str,
     rests_on: Sequence[str],
     by: User,
+    seen_version: int | None = None,
 ) -> RockLine:
     """Settle the rock line of a site's newest survey; a later line is a new version beside it.
+
+    `seen_version` is the line that its hand had before it (0: none); None where nobody looked.
 
     Raises
     ------
     Refused
-        If a newer survey is there, the reason is missing, a test is not one of this survey, or the
+        If a newer survey or a newer line than the one seen is there, the reason is missing, a test is not one of this survey, or the
         line cannot be: out of order, outside or above the ground, above the foot of a probe.
     """
     survey = Survey.objects.select_related("site__watershed__district").get(pk=survey_id)
@@ -48,6 +51,8 @@ def settle_rock_line(
     # The site row locks its versions: no newer survey comes in between.
     Site.objects.select_for_update().get(pk=survey.site_id)
     _check_newest(survey)
+    if seen_version is not None:
+        _check_seen(survey, seen_version)
     if not reason.strip():
         raise Refused("The reason is missing.", where="reason", remedy="Write why the rock is so.")
     line = [{key: float(point[key]) for key in ("offset_m", "level_m")} for point in points]
@@ -100,6 +105,16 @@ def _check_newest(survey: Survey) -> None:
             f"this line is drawn on survey {survey.version}.",
             where="rock line",
             remedy=f"Look at survey {newer.version} and settle the line on it.",
+        )
+
+
+def _check_seen(survey: Survey, version: int) -> None:
+    newer = survey.rock_lines.filter(version__gt=version).select_related("by").first()
+    if newer is not None:
+        raise Refused(
+            f"Line {newer.version} was settled by {newer.by.username} since you opened this.",
+            where="rock line",
+            remedy="Open it again, look at that line, and settle yours where you differ.",
         )
 
 

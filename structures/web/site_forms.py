@@ -12,6 +12,7 @@ from structures.actions.sites import EDITABLE
 from structures.intake.defaults import WALL
 from structures.intake.tree import Ledger
 from structures.life.stages import STAGES
+from structures.web.sent_files import SentFile
 from structures.web.typed import NumberField, with_point
 
 TEXTS: Final = ("name", "benchmark", "village_upstream", "village_downstream", "downstream_users")
@@ -108,20 +109,22 @@ class SiteForm(forms.Form):
 class SurveyForm(forms.Form):
     """A survey pack of one site."""
 
-    pack = forms.FileField(
+    pack = SentFile(
         label=_("Survey pack"),
-        error_messages={
-            "required": _("No survey pack was chosen. Choose one file."),
-            "empty": _("This file is empty. Send it again."),
-        },
+        missing=_("No survey pack was chosen. Choose one file."),
+        endings=".json,.zip,.xlsx",
         help_text=_("JSON, a zip of CSV files, or XLSX; one site, 20 MB at most."),
-        widget=forms.ClearableFileInput(attrs={"accept": ".json,.zip,.xlsx"}),
     )
 
 
 class RockForm(forms.Form):
-    """A rock line point by point, with the reason and the tests it rests on."""
+    """A rock line point by point, with the reason and the tests it rests on.
 
+    The hidden fields say which survey and which settled line (0: none) the page showed.
+    """
+
+    seen_survey = forms.IntegerField(required=False, widget=forms.HiddenInput)
+    seen_line = forms.IntegerField(required=False, widget=forms.HiddenInput)
     reason = forms.CharField(
         label=_("Why the rock is so"),
         required=False,
@@ -132,8 +135,9 @@ class RockForm(forms.Form):
         label=_("Tests it rests on"), required=False, widget=forms.CheckboxSelectMultiple
     )
 
-    def __init__(self, *args, tests, points, **kwargs):
+    def __init__(self, *args, tests, points, seen, **kwargs):
         super().__init__(*args, **kwargs)
+        self.fields["seen_survey"].initial, self.fields["seen_line"].initial = seen
         self.fields["rests_on"].choices = [(test, test) for test in tests]
         self.rows = []
         for place, (offset_m, level_m) in enumerate(points):
@@ -196,14 +200,11 @@ class EntryForm(forms.Form):
 
     kind = forms.ChoiceField(label=_("What is in the file"))
     district = forms.ChoiceField(label=_("District"))
-    file = forms.FileField(
+    file = SentFile(
         label=_("File"),
-        error_messages={
-            "required": _("No file was chosen. Choose one."),
-            "empty": _("This file is empty. Send it again."),
-        },
+        missing=_("No file was chosen. Choose one."),
+        endings=".csv,.xlsx,.geojson,.json",
         help_text=_("CSV or XLSX of sites or of bed points, GeoJSON of watersheds; 20 MB at most."),
-        widget=forms.ClearableFileInput(attrs={"accept": ".csv,.xlsx,.geojson,.json"}),
     )
 
     def __init__(self, *args, kinds, districts, **kwargs):

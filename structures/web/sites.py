@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
 
 from django.contrib import messages
@@ -121,12 +122,16 @@ def edit(request, code):
 @require_http_methods(READ_METHODS)
 def rock(request, code):
     """Settle the rock line: as the tests give it, or with moved points; always with the reason."""
-    found, survey, run = _read_survey(request, code)
+    found, newest, run = _read_survey(request, code)
+    # What was sent is judged on the survey that its page showed; the action tells of a newer one.
+    survey = _seen_survey(request, newest)
+    run = run if survey == newest else reading_of(survey)
     estimated = ((run and run.result) or {}).get("estimated") or []
     settled = newest_rock_line(survey)
     tests = names_of_tests(pack_of(survey))
     points = [*_points(run, settled, estimated), *[(None, None)] * SPARE_POINTS]
-    form = RockForm(request.POST or None, tests=tests, points=points)
+    seen = (survey.version, settled.version if settled else 0)
+    form = RockForm(request.POST or None, tests=tests, points=points, seen=seen)
     if request.method == "POST" and form.is_valid():
         as_estimated = request.POST.get("line") == "estimated"
         try:
@@ -136,6 +141,7 @@ def rock(request, code):
                 reason=form.cleaned_data["reason"],
                 rests_on=form.cleaned_data["rests_on"],
                 by=request.user,
+                seen_version=form.cleaned_data["seen_line"],
             )
         except Refused as refused:
             refuse(form, _named(refused, {"rests on": "rests_on"}))
@@ -154,6 +160,13 @@ def rock(request, code):
         **reading_context(run),
     }
     return render(request, "structures/rock.html", context, status=_status(form))
+
+
+def _seen_survey(request, newest):
+    version = request.POST.get("seen_survey", "")
+    if version == str(newest.version) or not re.fullmatch("[0-9]{1,6}", version):
+        return newest
+    return get_object_or_404(surveys_of(request.user, newest.site.code), version=version)
 
 
 def _points(run, settled, estimated):

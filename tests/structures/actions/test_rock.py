@@ -56,6 +56,17 @@ def test_lines_count_up_a_survey_and_keep_who_and_why(survey, engineer):
     assert [(p.offset_m, p.level_m) for p in pack.rock_line] == [(0, 103), (40, 95), (80, 103)]
 
 
+def test_of_two_who_settle_the_second_is_told_of_the_first(survey, engineer):
+    settle(survey, engineer, seen_version=0)
+    with pytest.raises(Refused) as refused:
+        settle(survey, engineer, seen_version=0)
+    assert refused.value.sentence() == (
+        f"rock line: Line 1 was settled by {engineer.username} since you opened this. "
+        "Open it again, look at that line, and settle yours where you differ."
+    )
+    assert settle(survey, engineer, seen_version=1).version == 2
+
+
 def test_the_tests_of_a_survey_have_names(survey):
     assert names_of_tests(pack_of(survey)) == ("bore@30", "probe@40")
 

@@ -163,6 +163,27 @@ def test_the_estimated_line_is_settled_as_it_is(office, site, engineer):
     assert line.rests_on == ["pit@20", "pit@40"]
 
 
+def test_a_rock_page_opened_before_a_newer_line_or_survey_settles_nothing(office, site, engineer):
+    survey = make.a_survey(site, engineer)
+    path = f"/sites/{site.code}/rock/"
+    sent = {"reason": "the pits agree", "offset_0": "0", "level_0": "98", "offset_1": "80"}
+    sent |= {"level_1": "98", "line": "points", "seen_survey": "1", "seen_line": "0"}
+    page = words(office.get(path))
+    for field, value in (("seen_survey", 1), ("seen_line", 0)):
+        assert f'name="{field}" value="{value}"' in page
+    assert office.post(path, sent).status_code == 302
+    late = office.post(path, sent)
+    assert late.status_code == 422
+    assert "Line 1 was settled by" in words(late)
+    assert 'name="seen_line" value="0"' in words(late)
+    make.a_survey(site, engineer, wall={"key_m": 0.2})
+    late = office.post(path, sent | {"seen_line": "1"})
+    assert late.status_code == 422
+    assert "Survey 2 came in from" in words(late)
+    assert survey.rock_lines.count() == 1
+    assert office.post(path, sent | {"seen_survey": "9"}).status_code == 404
+
+
 def test_points_are_moved_and_a_blank_row_is_left_out(office, site, engineer):
     survey = estimated_survey(site, engineer)
     read(survey)

@@ -63,6 +63,30 @@ def test_a_wrong_list_is_refused_whole_with_every_line(office):
     assert Site.objects.count() == 1
 
 
+def test_a_file_over_the_limit_is_told_before_it_is_read(office, monkeypatch):
+    """Oracle: FI-02, its limit made small here: a sentence at the field, and nothing is kept."""
+    monkeypatch.setattr("structures.web.sent_files.FILE_MOST_BYTES", len(SITES) - 1)
+    page = hand_in(office, "sites", SITES)
+    assert page.status_code == 422
+    assert "The file has 0 MB, limit 20. Nothing was read. Split it." in words(page)
+    assert (Site.objects.count(), Upload.objects.count()) == (1, 0)
+
+
+def test_a_body_with_too_many_fields_gets_a_page_of_its_own(office):
+    answer = office.post("/entry/", {f"field-{place}": "x" for place in range(1001)})
+    assert answer.status_code == 400
+    assert "Why could this not be read?" in words(answer)
+
+
+def test_what_is_sent_after_the_session_ended_is_told_to_be_lost(client, site):
+    answer = client.post(f"/sites/{site.code}/edit/", {"name": "the ford below"}, follow=True)
+    assert answer.redirect_chain == [("/sign-in/?next=/sites/EX-A/edit/", 302)]
+    assert "Your session had ended before this was sent." in words(answer)
+    site.refresh_from_db()
+    assert site.name == "the ford"
+    assert "Your session had ended" not in words(client.get("/sites/", follow=True))
+
+
 def test_outlines_and_bed_points_come_in_by_the_same_door(office, site):
     ring = [[x + 0.2, y] for x, y in make.SQUARE]
     feature = {
