@@ -62,34 +62,41 @@ def edit_district(*, district_id: int, by: User, **changes: Any) -> District:
 def change_setting(
     *,
     key: str,
-    value: float,
+    value: float | None,
     district: District | None,
     reason: str,
     by: User,
     decided: tuple[str, str, date] | None = None,
-) -> Setting:
+) -> Setting | None:
     """Put a value in the place of a default, in one district or (None) everywhere.
 
     Parameters
     ----------
+    value
+        None takes back what stands where the handbook has no value of its own; the answer is then
+        None too.
     decided
         For an engineering default: name and licence number of the engineer, and the day.
 
     Raises
     ------
     Refused
-        If the value is outside its range, the reason or the engineer's word is missing, or the
-        user may not change this default.
+        If the value is missing or outside its range, the reason or the engineer's word is missing,
+        or the user may not change this default.
     """
     try:
         validate_setting(key, value)
     except ValidationError as error:
         raise Refused(error.messages[0], where=key, remedy="Give a value inside it.") from error
     default = CHANGEABLE[key]
+    if value is None and default.value is not None:
+        raise Refused("This is missing.", where=key, remedy="Give a value.")
     insist(by, ACT[default.owner], district)
     name, licence, on = decided or ("", "", None)
     _check_words(key, default.owner, reason, name, licence, on)
     setting = Setting.objects.select_for_update().filter(key=key, district=district).first()
+    if value is None:
+        return _taken_back(setting, reason, by)
     setting = setting or Setting(key=key, district=district)
     setting.value, setting.source, setting.owner = value, default.source, default.owner
     setting.reason, setting.changed_by = reason.strip(), by
@@ -112,6 +119,14 @@ def change_setting(
         },
     )
     return setting
+
+
+def _taken_back(setting: Setting | None, reason: str, by: User) -> None:
+    if setting is None:
+        raise Refused("Nothing was entered here, so nothing is taken back.", where="value")
+    setting.reason = reason.strip()  # the last line of its history says why
+    setting._history_user = by
+    setting.delete()
 
 
 def _check_words(

@@ -167,7 +167,7 @@ OFFICE: Final = _table(
         AMOUNT_MOST,
         "A",
         "P",
-        "technical sanction by the district, up to",
+        "limit of technical sanction by the district",
         unset=NOT_ENTERED,
     ),
     Default(
@@ -178,7 +178,7 @@ OFFICE: Final = _table(
         AMOUNT_MOST,
         "A",
         "P",
-        "administrative approval by the district, up to",
+        "limit of administrative approval by the district",
         unset=NOT_ENTERED,
     ),
     Default(

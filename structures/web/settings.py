@@ -74,7 +74,8 @@ def setting(request, key):
         except Refused as refused:
             refuse(form, refused, fields={key: "value"})
         else:
-            told = {"words": default.words, "value": default.written(kept.value)}
+            value = default.unset if kept is None else default.written(kept.value)
+            told = {"words": default.words, "value": value}
             messages.success(request, _("%(words)s: %(value)s holds now.") % told)
             return redirect(request.get_full_path())
     context = {

@@ -26,6 +26,7 @@ class SettingForm(forms.Form):
         super().__init__(*args, **kwargs)
         signed = default.owner == ENGINEER
         self.fields["value"].label = default.words.capitalize()
+        self.fields["value"].required = default.value is not None
         self.fields["value"].help_text = _("Accepted: %(low)s to %(high)s") % {
             "low": f"{default.low:.15g}",
             "high": default.written(default.high),

@@ -144,6 +144,24 @@ def test_what_it_was_stays_readable(as_role):
     assert text.index("second trial") < text.index("first trial")
 
 
+def test_a_limit_that_nobody_has_entered_is_entered_and_taken_back(as_role, near):
+    """Oracle: handbook 12 has no value for the limit of a sanction; an office says its own."""
+    client = as_role(Role.PROGRAMME)
+    key = "technical_sanction_limit"
+    assert "none entered" in words(client.get("/settings/?district=QU"))
+    assert change(client, key, "").status_code == 422  # nothing stands there yet
+    page = client.get(change(client, key, "2500000,50").url)
+    assert "limit of technical sanction by the district: 2500000.5 holds now" in words(page)
+    assert "2,500,000.5" in words(page)
+    assert Setting.objects.get(district=near).value == 2500000.5
+    page = words(client.get(change(client, key, "", reason="ordered anew").url))
+    assert "none entered holds now" in page
+    assert "taken back" in page
+    assert page.index("ordered anew") < page.index("as measured here")
+    assert not Setting.objects.exists()
+    assert change(as_role(Role.DISTRICT), OF_DISTRICT, "").status_code == 422
+
+
 def test_settings_of_another_district_are_not_there(as_role):
     a_district("ZZ", name="Zedland")
     client = as_role(Role.DISTRICT)
