@@ -13,7 +13,7 @@ from structures.water.shelf import shelf_leak
 if TYPE_CHECKING:
     from costing.appraisal import Appraisal
     from costing.options.site import OnSite
-        from structures.water.shelf import ShelfLeak
+    from structures.water.shelf import ShelfLeak
 
 EDGE_M: Final = 0.001  # [A] over this length the bottom steps up beside a covered strip
 
@@ -69,9 +69,7 @@ def leak_unfinished(walk: Appraisal) -> Leak:
     return Leak(flow, flow, "No wall is finished: reckon with all of the underflow passing.")
 
 
-def leak_under_shelf(
-    walk: Appraisal, shelf_m: float, reach_m: float | None, site: OnSite
-) -> Leak:
+def leak_under_shelf(walk: Appraisal, shelf_m: float, reach_m: float | None, site: OnSite) -> Leak:
     """Say what passes under a wall that ends on a shelf. Source: handbook 9.4 (b) and 9.6.
 
     Parameters
