@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Final, Literal
 
 from costing.price.money import line_amount, money_text, to_cents
 from structures.errors import Finding
+from structures.life.measuring import measured_late, unseen
 from structures.takeoff.quantity import ITEMS
 
 if TYPE_CHECKING:
@@ -20,17 +21,10 @@ if TYPE_CHECKING:
 
     from costing.price.contract import ContractTerms
     from structures.errors import Level
+    from structures.life.measuring import HoldSeen
 
 Status = Literal["paid", "held", "refused"]
 STATUS_OF: Final[dict[Level, Status]] = {"block": "refused", "hold": "held"}  # worst first
-
-
-@dataclass(frozen=True, slots=True)
-class HoldSeen:
-    """One hold point of a strip ("H3", "H7.2"): the day it was seen with leave to go on, or None."""
-
-    hold: str
-    seen_on: date | None
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,17 +77,7 @@ class Measured:
     @property
     def unseen(self) -> tuple[str, ...]:
         """Hold points relied on that nobody saw while they could be seen. Source: BL-06."""
-        return tuple(name for relied in self.relies_on for name in self._unseen_of(relied))
-
-    def _unseen_of(self, relied: str) -> list[str]:
-        """Give what is unseen of one point; of layers each, and the point itself where none is."""
-        there = [one for one in self.holds if f"{one.hold}.".startswith(f"{relied}.")]
-        return [one.hold for one in there if not self._in_time(one)] if there else [relied]
-
-    def _in_time(self, hold: HoldSeen) -> bool:
-        if hold.seen_on is None:
-            return False
-        return self.covered_on is None or hold.seen_on <= self.covered_on
+        return unseen(self.relies_on, self.holds, self.covered_on)
 
 
 @dataclass(frozen=True, slots=True)
@@ -288,7 +272,7 @@ def _checked(asked: BillLineAsked, entry: Measured) -> Iterable[Finding]:
 
 def _seen(asked: BillLineAsked, entry: Measured) -> Iterable[Finding]:
     covered = entry.covered_on
-    if covered is not None and entry.measured_on > covered:
+    if measured_late(entry.measured_on, covered):
         what = (
             f"Entry {entry.entry_id}: measured {entry.measured_on}, covered {covered}. "
             "Nobody could see it."

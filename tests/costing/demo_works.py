@@ -10,7 +10,7 @@ from functools import cache
 from math import ceil
 from pathlib import Path
 
-from costing.price.billing import Billed, BillLineAsked, HoldSeen, Measured
+from costing.price.billing import Billed, BillLineAsked, Measured
 from costing.price.contract import ContractTerms
 from costing.price.payable import BillAsked
 from costing.price.rates import read_rates
@@ -18,6 +18,7 @@ from costing.price.sanctioned import Sums
 from structures.ground.found import FoundLevel
 from structures.ground.found_lines import DrawnRange
 from structures.intake.district import read_district
+from structures.life.measuring import HoldSeen
 
 DEMO = Path(__file__).parents[2] / "fixtures" / "demo"
 

@@ -11,13 +11,13 @@ from hypothesis import strategies as st
 from costing.price.billing import (
     Billed,
     BillLineAsked,
-    HoldSeen,
     Measured,
     Release,
     add_up,
     judge_line,
     judge_lines,
 )
+from structures.life.measuring import HoldSeen
 from tests.costing.demo_works import bill, book, contract
 
 DAY = date(2026, 2, 10)
