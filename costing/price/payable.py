@@ -12,13 +12,13 @@ from costing.price.revision import index_amount
 from structures.errors import Finding
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping
+    from collections.abc import Iterable, Mapping, Sequence
 
     from costing.price.billing import BillLineAsked, JudgedLine, Measured
     from costing.price.contract import ContractTerms, PriceIndex
 
 Kind = Literal["running", "final"]
-Code = Literal["gross", "held", "refused", "retention", "advance", "index", "deduction", "payable"]
+Code = Literal["gross", "released", "held", "refused", "retention", "advance", "index", "deduction"]
 NOTHING: Final = Decimal("0.00")
 
 
@@ -26,7 +26,13 @@ NOTHING: Final = Decimal("0.00")
 class BillAsked:
     """One bill as it came: `total` is its own figure, `indices_now` the indices of its month.
 
-    `recovered_before` is what earlier bills took back of the advance.
+    `recovered_before` is what earlier bills took back of the advance. `released` are lines that
+    earlier bills held and that are paid with this one; its own total does not count them.
+
+    Raises
+    ------
+    ValueError
+        If a released line is not paid, or two of them pay one entry.
     """
 
     bill_id: str
@@ -36,6 +42,12 @@ class BillAsked:
     total: Decimal
     indices_now: Mapping[str, Decimal] = field(default_factory=dict)
     recovered_before: Decimal = NOTHING
+    released: tuple[JudgedLine, ...] = ()
+
+    def __post_init__(self) -> None:
+        names = [line.asked.entry_id for line in self.released]
+        if len(set(names)) < len(names) or any(one.status != "paid" for one in self.released):
+            raise ValueError("a released line is paid, and pays an entry once")
 
 
 @dataclass(frozen=True, slots=True)
@@ -105,41 +117,35 @@ def judge_bill(
     Raises
     ------
     ValueError
-        If two lines have one number.
+        If two lines have one number, or a line asks for what a released one pays.
     """
     lines = judge_lines(asked.bill_id, asked.lines, entries, terms)
+    released = {line.asked.entry_id for line in asked.released}
+    if any(one.asked.entry_id in released and one.status != "refused" for one in lines):
+        raise ValueError(f"a line of bill {asked.bill_id} asks for what a released one pays")
     findings = add_up(asked.lines, asked.total)
     if asked.currency != terms.currency:
         what = f"Bill in {asked.currency}, contract in {terms.currency}."
         remedy = "One currency a contract: bill in that one."
         findings += (Finding("bill", "currency", what, remedy, "block", "ES-05"),)
-    payable = explain(
-        lines, terms, indices_now=asked.indices_now, recovered_before=asked.recovered_before
-    )
+    payable = explain(asked, lines, terms)
     return JudgedBill(asked, lines, payable, findings)
 
 
-def explain(
-    lines: Iterable[JudgedLine],
-    terms: ContractTerms,
-    *,
-    indices_now: Mapping[str, Decimal],
-    recovered_before: Decimal = NOTHING,
-) -> Payable:
+def explain(asked: BillAsked, lines: Iterable[JudgedLine], terms: ContractTerms) -> Payable:
     """Lead from the lines to the amount payable, as the contract states and no further.
 
-    Source: handbook 8.7 (index) and 8.4 (each step rounded once).
+    Source: handbook 8.7 (index) and 8.4 (each step rounded once). Retention, recovery and index
+    are taken on the lines paid and released together.
 
     Parameters
     ----------
+    asked
+        The bill.
     lines
-        Judged lines of one bill.
+        Its lines, judged.
     terms
         The contract.
-    indices_now
-        Indices of the bill's month by name, where the contract follows some.
-    recovered_before
-        What earlier bills took back of the advance.
 
     Raises
     ------
@@ -147,29 +153,30 @@ def explain(
         If more was recovered before than was advanced.
     """
     judged = tuple(lines)
-    sums = {
-        status: sum((one.amount for one in judged if one.status == status), start=NOTHING)
+    of = {
+        status: [line for line in judged if line.status == status]
         for status in ("paid", "held", "refused")
     }
-    counts = {status: sum(one.status == status for one in judged) for status in sums}
-    gross = sums["paid"]
-    steps = [
-        Step("gross", "Lines paid", _lines(counts["paid"]), gross),
-        *(
-            Step(
-                status,
-                f"Lines {status}",
-                f"{_lines(counts[status])}, not in it",
-                sums[status],
-                apart=True,
-            )
-            for status in ("held", "refused")
-            if counts[status]
-        ),
+    paid, freed = _amount(of["paid"]), _amount(asked.released)
+    gross = paid + freed
+    steps = [Step("gross", "Lines paid", _lines(of["paid"]), paid)]
+    if asked.released:
+        working = f"{_lines(asked.released)} of earlier bills"
+        steps.append(Step("released", "Held lines released", working, freed))
+    steps += [
+        Step(
+            status,
+            f"Lines {status}",
+            f"{_lines(of[status])}, not in it",
+            _amount(of[status]),
+            apart=True,
+        )
+        for status in ("held", "refused")
+        if of[status]
     ]
     steps += _retention(gross, terms)
-    steps += _advance(gross, terms, recovered_before)
-    index = _index(gross, terms.price_index, indices_now)
+    steps += _advance(gross, terms, asked.recovered_before)
+    index = _index(gross, terms.price_index, asked.indices_now)
     steps += index
     steps += _deductions(_sum([gross, *(step.amount for step in index)]), terms)
     amount = _sum(step.amount for step in steps if not step.apart)
@@ -248,5 +255,9 @@ def _sum(amounts: Iterable[Decimal | None]) -> Decimal | None:
     return whole
 
 
-def _lines(count: int) -> str:
-    return f"{count} line" if count == 1 else f"{count} lines"
+def _amount(lines: Iterable[JudgedLine]) -> Decimal:
+    return sum((line.amount for line in lines), start=NOTHING)
+
+
+def _lines(lines: Sequence[JudgedLine]) -> str:
+    return "1 line" if len(lines) == 1 else f"{len(lines)} lines"

@@ -8,7 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from costing.price.billing import BillLineAsked, Measured
+from costing.price.billing import BillLineAsked, Measured, Release, judge_line
 from costing.price.contract import Advance, ContractTerms, Deduction, IndexShare, PriceIndex
 from costing.price.payable import BillAsked, judge_bill
 from costing.price.rates import Rate
@@ -125,6 +125,40 @@ def test_the_final_bill_of_the_demo_pays_all_but_what_is_held():
     assert found.payable.steps[1].working == "4 lines, not in it"
     assert found.payable.amount == Decimal("202769.94")
     assert len(found.of("held")) == 4
+
+
+def released():
+    """The four held lines of the demo's final bill, released by the district."""
+    yes = Release("district-1", DAY, "opened again, seen and found good")
+    held = judge_bill(bill("TA-05", "TA-05-FB"), book("TA-05"), contract()).of("held")
+    entries = book("TA-05")
+    return tuple(
+        judge_line(replace(one.asked, release=yes), entries[one.asked.entry_id], contract())
+        for one in held
+    )
+
+
+def test_a_later_bill_pays_what_was_held_and_released():
+    """Oracle: the first running bill has 94364.20; 22127.06 with it is 116491.26, 5 % 5824.56."""
+    asked = bill("TA-05", "TA-05-RB1", released=released())
+    found = judge_bill(asked, book("TA-05"), contract(retention_percent=Decimal(5)))
+    assert found.findings == ()
+    assert told(found.payable) == [
+        ("gross", Decimal("94364.20")),
+        ("released", Decimal("22127.06")),
+        ("retention", Decimal("-5824.56")),
+    ]
+    assert found.payable.amount == Decimal("110666.70")
+
+
+def test_what_was_released_is_not_paid_by_a_line_as_well():
+    with pytest.raises(ValueError, match="released one pays"):
+        judge_bill(bill("TA-05", "TA-05-FB", released=released()), book("TA-05"), contract())
+    with pytest.raises(ValueError, match="once"):
+        bill("TA-05", "TA-05-RB1", released=released() * 2)
+    held = judge_bill(bill("TA-05", "TA-05-FB"), book("TA-05"), contract()).of("held")
+    with pytest.raises(ValueError, match="is paid"):
+        bill("TA-05", "TA-05-RB1", released=held)
 
 
 def test_a_total_of_another_sum_and_another_currency_block_the_bill():
