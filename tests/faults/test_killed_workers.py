@@ -14,26 +14,44 @@ pytestmark = pytest.mark.fault
 
 RUNS = 200
 KILLS = 5
+WORKERS = 2  # at work side by side; the killed one is followed by a new one
 SEED = 20261201
 
 
-def test_two_hundred_runs_outlive_a_worker_killed_five_times(program):
+def test_two_hundred_runs_outlive_five_workers_killed_at_work(program):
     """Oracle: as many effects as runs were asked for, whatever happened on the way."""
     rng = np.random.default_rng(SEED)
     marks = np.sort(rng.choice(np.arange(3, 170), KILLS, replace=False))
     asking = program.begin("queue_trials", "trial.short", "--count", str(RUNS))
-    worker = program.worker()
+    workers = [program.worker() for _ in range(WORKERS)]
     for mark, pause_s in zip(marks, rng.uniform(0.0, 0.1, KILLS), strict=True):
         wait_until(lambda mark=mark: program.states().get("done", 0) >= mark)
         time.sleep(pause_s)
-        worker.kill()
-        worker.wait()
-        worker = program.worker()
+        killed = workers.pop(0)
+        killed.kill()
+        killed.wait()
+        workers.append(program.worker())
     assert asking.wait(PATIENCE_S) == 0, program.said(asking, "err")
     wait_until(lambda: program.states() == {"done": RUNS})
     assert program.effects() == (RUNS, RUNS)
     again = program.sql("SELECT count(*) FROM structures_run WHERE attempts > 1")[0][0]
     assert again > 0, "no kill met a run at work"
+
+
+def test_a_run_that_takes_its_worker_down_is_done_by_the_next(program):
+    """Once while it computes, once when result and effect are written and not yet committed."""
+    program.command("queue_trials", "trial.fatal", "--count", "2")
+    worker = program.worker()
+
+    def all_done():
+        nonlocal worker
+        if worker.poll() is not None:
+            worker = program.worker()
+        return program.states() == {"done": 2}
+
+    wait_until(all_done)
+    assert program.effects() == (2, 2)
+    assert program.sql("SELECT attempts FROM structures_run") == [(2,), (2,)]
 
 
 def test_a_worker_silent_beyond_its_lease_writes_nothing(program, tmp_path):

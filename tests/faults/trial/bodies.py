@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 import os
+import signal
 import time
 from functools import partial
 from pathlib import Path
 
 from django.db import connection
 
+from structures.models.run import Run
 from structures.runs.queue import Outcome, register
 
 STEPS = 4
@@ -40,6 +42,26 @@ def long(work):
         time.sleep(LONG_STEP_S)
         work.progress(step / LONG_STEPS, "at work")
     return ended(work)
+
+
+@register("trial.fatal", version="1")
+def fatal(work):
+    """Take the worker down once: an even run while it computes, an odd one in its open effect."""
+    odd = work.params["number"] % 2
+    if not odd:
+        die_once(work)
+
+    def effect():
+        keep(str(work.held.run_id))
+        if odd:
+            die_once(work)
+
+    return Outcome({"worker": os.getpid()}, effect)
+
+
+def die_once(work):
+    if Run.objects.get(pk=work.held.run_id).attempts == 1:
+        os.kill(os.getpid(), signal.SIGKILL)
 
 
 def ended(work):
