@@ -107,7 +107,9 @@ WORKS: Final = _table(
     Default(
         "depth_without_entry_m", 1.2, "m", 0.9, 1.2, "A", "E", "depth nobody enters unsupported"
     ),
-    Default("licensed_depth_m", 6.1, "m", 1.5, 6.1, "P 13", "E", "depth that asks for a design"),
+    Default(
+        "licensed_depth_m", 6.1, "m", 1.5, 6.1, "P 13", "E", "depth that asks for a licensed design"
+    ),
     Default("film_thickness_micron", 200, "micron", 150, 500, "C", "E", "film thickness"),
     Default("trodden_least_m", 0.15, "m", 0.10, 0.25, "C", "E", "trodden layer of clay, thinnest"),
     Default("trodden_most_m", 0.20, "m", 0.10, 0.25, "C", "E", "trodden layer of clay, thickest"),
@@ -118,14 +120,37 @@ WORKS: Final = _table(
     Default("strip_m", 6.0, "m", 3.0, 15.0, "C", "D", "length of a strip"),
     Default("season_reserve_days", 10, "days", 0, 90, "C", "D", "days kept in reserve", whole=True),
     Default(
-        "progress_excavation_m3_per_day", 80.0, f"m3 {GANG_DAY}", 16.0, 400.0, "A", "D", "digging"
+        "progress_excavation_m3_per_day",
+        80.0,
+        f"m3 {GANG_DAY}",
+        16.0,
+        400.0,
+        "A",
+        "D",
+        "progress in digging",
     ),
     Default(
-        "progress_rock_key_m3_per_day", 1.5, f"m3 {GANG_DAY}", 0.3, 7.5, "A", "D", "cutting the key"
+        "progress_rock_key_m3_per_day",
+        1.5,
+        f"m3 {GANG_DAY}",
+        0.3,
+        7.5,
+        "A",
+        "D",
+        "progress in the key",
     ),
-    Default("progress_clay_m3_per_day", 10.0, f"m3 {GANG_DAY}", 2.0, 50.0, "A", "D", "laying clay"),
     Default(
-        "progress_film_m2_per_day", 100.0, f"m2 {GANG_DAY}", 20.0, 500.0, "A", "D", "laying film"
+        "progress_clay_m3_per_day", 10.0, f"m3 {GANG_DAY}", 2.0, 50.0, "A", "D", "progress in clay"
+    ),
+    Default(
+        "progress_film_m2_per_day",
+        100.0,
+        f"m2 {GANG_DAY}",
+        20.0,
+        500.0,
+        "A",
+        "D",
+        "progress in film",
     ),
     Default(
         "progress_backfill_m3_per_day",
@@ -135,7 +160,7 @@ WORKS: Final = _table(
         600.0,
         "A",
         "D",
-        "backfilling",
+        "progress in backfill",
     ),
 )
 

@@ -61,6 +61,14 @@ def figure_of(default, value):
     return default.unset if value is None else plain(value)
 
 
+@register.filter
+def accepted(default):
+    """The accepted range; of an amount only that it is none below nothing."""
+    if default.unit == "amount":
+        return _("0 or more")
+    return f"{plain(default.low)} \u2013 {plain(default.high)}"
+
+
 UNITS = {
     "-": "",
     "amount": "",

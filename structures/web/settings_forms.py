@@ -10,6 +10,7 @@ from structures.web.typed import NumberField
 
 NAME_MOST = 120  # characters, as the table of settings keeps them
 ENGINEER = "E"
+AMOUNT = "amount"  # of money; any is accepted that is not a slip
 
 
 class SettingForm(forms.Form):
@@ -27,10 +28,11 @@ class SettingForm(forms.Form):
         signed = default.owner == ENGINEER
         self.fields["value"].label = default.words.capitalize()
         self.fields["value"].required = default.value is not None
-        self.fields["value"].help_text = _("Accepted: %(low)s to %(high)s") % {
-            "low": f"{default.low:.15g}",
-            "high": default.written(default.high),
-        }
+        if default.unit != AMOUNT:
+            self.fields["value"].help_text = _("Accepted: %(low)s to %(high)s") % {
+                "low": f"{default.low:.15g}",
+                "high": default.written(default.high),
+            }
         if signed:
             self.fields["decided_by"].label = _("Licensed engineer who decided it")
         else:
