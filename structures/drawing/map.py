@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import TYPE_CHECKING, Final
 
 from structures.drawing.letters import PHONE_SMALL_MM, PHONE_TEXT_MM, SMALL_MM, TEXT_MM, width_mm
@@ -13,7 +15,7 @@ from structures.ground.place import on_grid
 from structures.life.stages import BESIDE_IT, ON_THE_LINE
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterable, Iterator, Sequence
 
     from structures.drawing.svg import Point
 
@@ -23,6 +25,7 @@ EDGE_MM: Final = 6.0  # paper around what is drawn
 LEAST_SPAN_M: Final = 500.0  # [A] a lone site is shown with some land around it
 BAR_SHARE: Final = 0.2  # of the width, that the scale bar takes at least
 MARK_MM: Final = 1.5  # half the size of a site's mark
+BESIDE_MM: Final = 0.6  # room that a stream's line takes
 KM_M: Final = 1000.0  # exact
 FIRST_BUILT: Final = "digging"
 FIRST_STANDING: Final = "handed-over"
@@ -134,14 +137,17 @@ def draw_map(
     for outline in outlines:
         for ring in outline.rings:
             sheet.area(on_paper.points(ring), "gap-wash p3")
+    beside: list[Box] = []
     for run in runs:
         for line in run.lines:
-            sheet.path(on_paper.points(line), "level-a")
-    _spots(sheet, places, on_paper.points([spot.position for spot in spots]), spots)
+            points = on_paper.points(line)
+            sheet.path(points, "level-a")
+            beside += _along(points)
+    _spots(sheet, places, beside, on_paper.points([spot.position for spot in spots]), spots)
     for outline in outlines:
-        _name_outline(sheet, places, on_paper, outline)
+        _name_outline(sheet, places, beside, on_paper, outline)
     for run in runs:
-        _name_run(sheet, places, on_paper, run)
+        _name_run(sheet, places, beside, on_paper, run)
     sheet.height_mm = _foot(sheet, on_paper, spots, streams=bool(runs))
     return sheet.markup()
 
@@ -176,57 +182,99 @@ class _Paper:
         )
 
 
-def _spots(sheet: Sheet, places: Places, at: list[Point], spots: Sequence[Spot]) -> None:
+def _spots(
+    sheet: Sheet, places: Places, beside: list[Box], at: list[Point], spots: Sequence[Spot]
+) -> None:
     for (x, y), spot in zip(at, spots, strict=True):
         _mark(sheet, (x, y), mark_of(spot.stage))
         places.take(Box(x - MARK_MM, y - MARK_MM, x + MARK_MM, y + MARK_MM))
     for (x, y), spot in zip(at, spots, strict=True):
-        label = places.put(
-            Label(x + dx, y + dy, (spot.code,), anchor, strong=True)
-            for dx, dy, anchor in (
-                (2.6, 0.9, "start"),
-                (-2.6, 0.9, "end"),
-                (0.0, -2.6, "mid"),
-                (0.0, 4.6, "mid"),
-                (2.6, -2.2, "start"),
-                (2.6, 4.2, "start"),
-                (-2.6, -2.2, "end"),
-                (-2.6, 4.2, "end"),
-            )
+        label = _put(
+            places,
+            beside,
+            (
+                Label(x + dx, y + dy, (spot.code,), anchor, strong=True)
+                for dx, dy, anchor in (
+                    (2.6, 0.9, "start"),
+                    (-2.6, 0.9, "end"),
+                    (0.0, -2.6, "mid"),
+                    (0.0, 4.6, "mid"),
+                    (2.6, -2.2, "start"),
+                    (2.6, 4.2, "start"),
+                    (-2.6, -2.2, "end"),
+                    (-2.6, 4.2, "end"),
+                )
+            ),
         )
         if label is not None:
             ends = {"start": "", "mid": " mid", "end": " end"}[label.anchor]
             sheet.text((label.x, label.y), spot.code, f"halo strong{ends}")
 
 
-def _name_outline(sheet: Sheet, places: Places, paper: _Paper, outline: Outline) -> None:
+def _name_outline(
+    sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, outline: Outline
+) -> None:
     """Write the name where there is room inside the outline's box, from its middle outwards."""
     xs, ys = zip(*paper.points(outline.rings[0]), strict=True)
     left, right, top, bottom = min(xs), max(xs), min(ys), max(ys)
     shares = (0.5, 0.35, 0.65, 0.2, 0.8)
-    label = places.put(
-        Label(left + u * (right - left), top + v * (bottom - top), (words,), "mid")
-        for words in (f"{outline.name} {outline.code}".strip(), outline.code)
-        for v in shares
-        for u in shares
+    label = _put(
+        places,
+        beside,
+        (
+            Label(left + u * (right - left), top + v * (bottom - top), (words,), "mid")
+            for words in (f"{outline.name} {outline.code}".strip(), outline.code)
+            for v in shares
+            for u in shares
+        ),
     )
     if label is not None:
         sheet.text((label.x, label.y), label.lines[0], "halo quiet mid")
 
 
-def _name_run(sheet: Sheet, places: Places, paper: _Paper, run: Run) -> None:
+def _name_run(sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, run: Run) -> None:
     """Write the stream's name beside its line where there is room, from its middle outwards."""
     points = paper.points(max(run.lines, key=len))
     middle = len(points) // 2
     near = sorted(range(len(points)), key=lambda place: abs(place - middle))
-    label = places.put(
-        Label(points[place][0] + dx, points[place][1] + dy, (run.name,), anchor)
-        for place in near
-        for dx, dy, anchor in ((1.6, -1.0, "start"), (-1.6, 3.0, "end"), (1.6, 3.0, "start"))
+    label = _put(
+        places,
+        beside,
+        (
+            Label(points[place][0] + dx, points[place][1] + dy, (run.name,), anchor)
+            for place in near
+            for dx, dy, anchor in (
+                (2.0, -1.0, "start"),
+                (-2.0, 3.0, "end"),
+                (2.0, 3.0, "start"),
+                (-2.0, -1.0, "end"),
+                (2.0, -3.0, "start"),
+                (-2.0, 5.0, "end"),
+            )
+        ),
     )
     if label is not None:
         end = " end" if label.anchor == "end" else ""
         sheet.text((label.x, label.y), run.name, f"halo t-water{end}")
+
+
+def _put(places: Places, beside: list[Box], candidates: Iterable[Label]) -> Label | None:
+    """Take the first free place, one off the streams before one over them."""
+
+    def over(label: Label) -> bool:
+        box = label.box(places.size_mm, places.step_mm)
+        return any(box.meets(one) for one in beside)
+
+    return places.put(sorted(candidates, key=over))
+
+
+def _along(points: Sequence[Point]) -> Iterator[Box]:
+    """Small boxes along a line, so that words keep off it."""
+    for (x1, y1), (x2, y2) in pairwise(points):
+        steps = max(1, round(math.hypot(x2 - x1, y2 - y1) / BESIDE_MM))
+        for step in range(steps + 1):
+            x, y = (start + (stop - start) * step / steps for start, stop in ((x1, x2), (y1, y2)))
+            yield Box(x - BESIDE_MM / 2, y - BESIDE_MM / 2, x + BESIDE_MM / 2, y + BESIDE_MM / 2)
 
 
 def _mark(sheet: Sheet, centre: Point, kind: str) -> None:

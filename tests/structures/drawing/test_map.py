@@ -9,6 +9,7 @@ import pytest
 from structures.drawing.map import WORDS, Outline, Run, Spot, draw_map, mark_of
 from structures.ground.place import distance_m
 from structures.life.stages import STAGES
+from tests.structures.drawing.paper import read, shapes, words
 
 SQUARE = ((77.4, 15.7), (77.5, 15.7), (77.5, 15.8), (77.4, 15.8), (77.4, 15.7))
 SHED = Outline("OD", "Odremma", (SQUARE,))
@@ -48,6 +49,21 @@ def test_a_stream_runs_through_its_sites_under_its_name(narrow):
     assert course[1] == ",".join(f"{part:.2f}" for part in circles(markup)[0])
     assert re.search(r'<text class="halo t-water[^>]*>Odre</text>', markup)
     assert ">stream</text>" in markup
+
+
+@pytest.mark.parametrize("narrow", [False, True])
+def test_words_keep_off_the_stream_s_line(narrow):
+    """Law: no point of the course lies inside the box of a word."""
+    course = tuple((77.41 + 0.002 * n, 15.75 + 0.0006 * n) for n in range(41))
+    spots = [Spot(f"OD-{n}", "", course[n], "noted") for n in (4, 15, 33)]
+    root = read(draw_map([SHED], spots, [Run("Odre", (course,))], narrow=narrow))
+    (line,) = [one for one in shapes(root, "level-a") if len(one) == len(course)]
+    known = {"Odre", "Odremma OD", *(spot.code for spot in spots)}
+    found = [word for word in words(root) if word.words in known]
+    assert {word.words for word in found} == known
+    for word in found:
+        for x, y in line:
+            assert not (word.left < x < word.right and word.top < y < word.bottom), word
 
 
 def test_a_map_without_streams_explains_none():
