@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import asdict, dataclass
 from typing import TYPE_CHECKING, Any, Final
 
-import numpy as np
 from django.db import transaction
 from django.db.models import Max
 
@@ -14,6 +13,7 @@ from structures.actions.inbox import mark_kept, receive_file, refuse_same_file, 
 from structures.actions.refusals import as_documents
 from structures.actions.survey_reading import start_reading
 from structures.errors import Finding, Refused
+from structures.ground.bed import bed_level_m
 from structures.intake.pack_writer import pack_document
 from structures.intake.survey_pack import read_pack_bytes
 from structures.models import (
@@ -119,11 +119,7 @@ def _bed_agrees(site: Site, pack: SurveyPack, name: str) -> tuple[Finding, ...]:
     if profile_m is None:
         return ()
     offsets, levels = zip(*((one.offset_m, one.level_m) for one in pack.ground), strict=True)
-    at_toes = np.interp((pack.toes.left_m, pack.toes.right_m), offsets, levels)
-    between = [
-        one.level_m for one in pack.ground if pack.toes.left_m <= one.offset_m <= pack.toes.right_m
-    ]
-    bed_m = float(min([*at_toes, *between]))
+    bed_m = bed_level_m(offsets, levels, pack.toes.left_m, pack.toes.right_m)
     if abs(bed_m - profile_m) <= BED_AGREES_M:
         return ()
     what = f"Bed is {bed_m:.2f} m on the cross line and {profile_m:.2f} m on the long line."

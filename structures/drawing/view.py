@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Final, Literal
 import numpy as np
 
 from structures.arrays import frozen, rising
+from structures.ground.bed import bed_level_m
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -157,10 +158,8 @@ class SectionView:
 
     @property
     def bed_m(self) -> float:
-        """Bed level: lowest ground between the toes, toes included (handbook 1.6)."""
-        left, right = self.toes_m
-        inside = self.ground_m[(self.offset_m >= left) & (self.offset_m <= right)]
-        return float(np.concatenate((inside, self.ground(np.array(self.toes_m)))).min())
+        """Level of the bed."""
+        return bed_level_m(self.offset_m, self.ground_m, *self.toes_m)
 
     @property
     def site(self) -> str:

@@ -13,6 +13,7 @@ import numpy as np
 
 from structures.arrays import frozen, rising
 from structures.errors import Refused
+from structures.ground.bed import bed_level_m
 
 if TYPE_CHECKING:
     from numpy.typing import ArrayLike, NDArray
@@ -131,7 +132,7 @@ def make_section(
         raise ValueError(f"rock has {rock_z.shape[1]} levels for {rock_x.size} offsets")
     if not ground_x[0] <= toes.left_m < toes.right_m <= ground_x[-1]:
         raise ValueError("the toes lie inside the ground points, left before right")
-    bed_m = _bed_level_m(ground_x, ground_z, toes)
+    bed_m = bed_level_m(ground_x, ground_z, toes.left_m, toes.right_m)
     slope_x = rising([station.offset_m for station in wall.side_slope])
     slope_m = frozen([station.slope for station in wall.side_slope])
 
@@ -160,13 +161,6 @@ def make_section(
         key_m=wall.key_m,
         floor_m=wall.thickness_m + 2.0 * wall.bottom_margin_m,
     )
-
-
-def _bed_level_m(x: NDArray, z: NDArray, toes: Toes) -> float:
-    """Lowest ground between the toes, toes included (handbook 1.6)."""
-    inside = z[(x >= toes.left_m) & (x <= toes.right_m)]
-    at_toes = np.interp([toes.left_m, toes.right_m], x, z)
-    return float(np.concatenate((inside, at_toes)).min())
 
 
 def _common_reach(ground_x: NDArray, rock_x: NDArray) -> tuple[float, float]:
