@@ -69,11 +69,9 @@ def _start(days: list[int]) -> int:
 
 def _coming(month_day: date, today: date) -> date:
     """Give the first occurrence of a month and day that is not long past."""
-    for year in range(today.year - 1, today.year + 2):
-        day = _in_year(month_day, year)
-        if day >= today - timedelta(days=RUNS_DAYS):
-            return day
-    raise AssertionError("a day of the year comes round within a year")
+    years = range(today.year - 1, today.year + 2)  # one of the three: a day comes round in a year
+    long_past = today - timedelta(days=RUNS_DAYS)
+    return next(day for year in years if (day := _in_year(month_day, year)) >= long_past)
 
 
 def _in_year(month_day: date, year: int) -> date:

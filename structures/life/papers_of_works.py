@@ -9,8 +9,8 @@ from typing import Final
 
 from structures.life.paper import YES_NO_UNKNOWN, Paper, PaperField
 from structures.life.people import DISTRICT, ENGINEER, FIELD, PROGRAMME
+from structures.life.verdict import VERDICTS
 
-VERDICTS: Final = ("not known", "does not hold", "holds in part", "holds")  # this order everywhere
 CAUSES: Final = ("rock deeper", "water", "safety", "objection", "rains", "other")
 
 HALT: Final = Paper(

@@ -24,12 +24,12 @@ from structures.life.chain import (
 from structures.life.short_code import ALPHABET, read_code, short_code
 
 NOON = datetime(2026, 4, 10, 12, 0, tzinfo=UTC)
-TEXT = st.text(st.characters(exclude_categories=("Cs",)), max_size=12)
+TEXT = st.text(st.characters(exclude_categories=("Cs",)), max_size=5)
 NUMBER = st.integers() | st.floats(allow_nan=False, allow_infinity=False)
 JSON = st.recursive(
     st.none() | st.booleans() | NUMBER | TEXT,
     lambda inner: st.lists(inner, max_size=3) | st.dictionaries(TEXT, inner, max_size=3),
-    max_leaves=6,
+    max_leaves=3,
 )
 ENTRY = st.builds(
     Entry,
@@ -51,7 +51,7 @@ def chained(entries):
     return chain
 
 
-CHAIN = st.lists(ENTRY, min_size=1, max_size=5).map(chained)
+CHAIN = st.lists(ENTRY, min_size=1, max_size=4).map(chained)
 
 
 def misfit(chain, like):
