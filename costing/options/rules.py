@@ -95,17 +95,14 @@ def judge_water(walk: Appraisal, before: Appraisal) -> Iterable[Finding]:
         yield Finding("dewatering", "pump_hours", what, remedy, "warn")
 
 
-def judge_season(days: float | None, season: Season) -> Iterable[Finding]:
+def judge_season(days: int | None, season: Season) -> Iterable[Finding]:
     """Say whether a way can be done before the stream is likely to come. Source: SG-01."""
     if days is None or season.days_left is None:
-        why = season.why or "days needed or days left are not known"
+        why = season.why or "the days needed are not known"
         what = f"The season cannot be computed: {why}."
-        remedy = "Give what is missing; a way is not chosen on an unknown season."
+        remedy = "Give what is missing; no way is chosen on an unknown season."
         yield Finding("season", "days", what, remedy, "block", "SG-01")
     elif days > season.days_left:
         late = days - season.days_left
-        what = (
-            f"It needs {days:.1f} days and {season.days_left:.1f} are left: "
-            f"too late by {late:.1f} days."
-        )
-        yield Finding("season", "days", what, "Do not open this season.", "block", "SG-01")
+        what = f"It needs {days} days and {season.days_left} are left: too late by {late} days."
+        yield Finding("season", "days", what, "Do not go this way this season.", "block", "SG-01")

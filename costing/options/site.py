@@ -2,20 +2,25 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
+from structures.life.progress import ITEMS as TIMED
+from structures.life.progress import StripWork, days_needed
+from structures.life.season import read_clock
 from structures.takeoff.quantity import ITEMS, Quantity
 from structures.takeoff.sheet import measure
 from structures.wall.part import part_of
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from datetime import date
     from decimal import Decimal
 
     from costing.appraisal import Appraisal
     from structures.intake.pack import WallSettings
+    from structures.life.progress import Progress
+    from structures.life.season import Plan
     from structures.wall.cutoff import Cutoff
 
 Reach = tuple[float, float]
@@ -58,15 +63,36 @@ class OnSite:
 
 @dataclass(frozen=True, slots=True)
 class Season:
-    """How long work takes and how long is left, as the season's rules have it.
+    """How fast work goes and how long is left.
 
-    `days_of` gives the days that quantities need, None where it cannot say; `days_left` are those
-    until the early date of first flow less the reserve. `why` says what is not known.
+    `days_left` are those until the early date of first flow less the reserve, None where that is
+    not known; `why` says what is missing.
     """
 
-    days_of: Callable[[tuple[Quantity, ...]], float | None]
-    days_left: float | None
+    progress: Progress
+    days_left: int | None
     why: str = ""
+    gangs: int = 1
+
+    def days(self, *works: tuple[Quantity, ...]) -> int | None:
+        """Whole days that pieces of work take one after the other."""
+        return days_needed((_strip_work(one) for one in works), self.progress, self.gangs)
+
+
+def season_on(plan: Plan, today: date, progress: Progress, gangs: int = 1) -> Season:
+    """Give the days left on a day, by the clock of a wall that needs none.
+
+    Source: the office's practice, "the dry-season clock".
+    """
+    clock = read_clock(replace(plan, days_needed=0, days_needed_deep=None), today)
+    why = clock.words if clock.days_left is None else ""
+    return Season(progress, clock.days_left, why.removeprefix("cannot be computed: "), gangs)
+
+
+def _strip_work(quantities: tuple[Quantity, ...]) -> StripWork:
+    """Put measured quantities as the work of a strip; what is not in them is not to be done."""
+    known = {one.item: one.quantity for one in quantities}
+    return StripWork(**{item: known.get(item, 0.0) for item in TIMED})
 
 
 def left_of(walk: Appraisal, site: OnSite) -> Cutoff | None:

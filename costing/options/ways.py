@@ -7,8 +7,7 @@ and season rules again with its own depth; one that a rule blocks cannot be chos
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from decimal import Decimal
-from typing import TYPE_CHECKING, Final, Literal, TypeVar
+from typing import TYPE_CHECKING, Final, Literal
 
 from costing.appraisal import appraise
 from costing.options.rules import judge_season, judge_trench, judge_wall, judge_water
@@ -20,6 +19,7 @@ from structures.intake.pack import RockLinePoint
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
+    from decimal import Decimal
 
     from costing.appraisal import Appraisal
     from costing.forecast import Forecast
@@ -27,7 +27,6 @@ if TYPE_CHECKING:
     from costing.options.site import OnSite, Season
     from structures.takeoff.quantity import Quantity
 
-T = TypeVar("T", Decimal, float)
 Way = Literal["go on", "step", "shift", "close"]
 WORDS: Final[dict[Way, str]] = {
     "go on": "Dig to the rock as found.",
@@ -65,7 +64,7 @@ class Option:
     to_complete: Decimal | None
     over_technical_percent: Decimal | None
     over_administrative_percent: Decimal | None
-    days: float | None
+    days: int | None
     depth_m: float | None
     leak: Leak | None
     findings: tuple[Finding, ...]
@@ -192,7 +191,7 @@ def _shift(desk: _Desk) -> Option:
     theirs = other.estimate.total if other.complete else None
     to_complete = None if theirs is None else theirs + close
     work = work_of(other.design.cutoff, other.pack.wall)
-    days = _add(desk.season.days_of(hole), desk.season.days_of(work))
+    days = desk.season.days(hole, work)
     return _option(
         desk,
         "shift",
@@ -213,7 +212,7 @@ def _shift(desk: _Desk) -> Option:
 
 def _close(desk: _Desk) -> Option:
     cost, hole = _closing(desk)
-    days = desk.season.days_of(hole)
+    days = desk.season.days(hole)
     return _option(
         desk,
         "close",
@@ -235,7 +234,7 @@ def _dug(
 ) -> Option:
     """Weigh a wall on the line that was begun."""
     part = left_of(walk, desk.site)
-    days = desk.season.days_of(work_of(part, walk.pack.wall))
+    days = desk.season.days(work_of(part, walk.pack.wall))
     spent = desk.site.spent
     return _option(
         desk,
@@ -292,5 +291,5 @@ def _not_spent(desk: _Desk) -> tuple[str, ...]:
     return ("What was spent so far is not known.",)
 
 
-def _add(one: T | None, other: T | None) -> T | None:
+def _add(one: Decimal | None, other: Decimal | None) -> Decimal | None:
     return None if one is None or other is None else one + other

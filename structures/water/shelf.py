@@ -6,7 +6,7 @@ A wall either reaches rock or hardly works, so the share that passes is never th
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -20,7 +20,8 @@ if TYPE_CHECKING:
 
     from structures.wall.cutoff import Cutoff
 
-NODES: Final = 64  # of Gauss's rule on a piece; a slot that closes adds 1e-4 of its flow at most
+# Of Gauss's rule on a piece; a slot that closes costs 1e-4 of the piece's flow at most.
+NODES, WEIGHTS = np.polynomial.legendre.leggauss(64)
 
 
 @dataclass(frozen=True, slots=True)
@@ -112,12 +113,11 @@ def _slices(
     width_m: float, layers_m: NDArray, shelf_m: float, water_m: float, reach_m: float
 ) -> float:
     """Sum of layer times passing share over one piece, m2; all slices of it are open."""
-    at, weights = np.polynomial.legendre.leggauss(NODES)
-    share = 0.5 * (at + 1.0)
+    share = 0.5 * (NODES + 1.0)
     layers = layers_m[0] * (1.0 - share) + layers_m[1] * share
     closed = max(water_m - shelf_m, 0.0)
     flows = [layer * slot_flow(layer, closed, reach_m).passing_share for layer in layers.tolist()]
-    return 0.5 * width_m * float(weights @ flows)
+    return 0.5 * width_m * float(WEIGHTS @ flows)
 
 
 def _cut_at(

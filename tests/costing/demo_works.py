@@ -43,6 +43,7 @@ def contract(**terms):
     return ContractTerms("INR", demo_rates().rates, **terms)
 
 
+@cache
 def holds(site, strip):
     return tuple(
         HoldSeen(

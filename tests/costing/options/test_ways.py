@@ -6,15 +6,19 @@ from decimal import ROUND_HALF_UP, Decimal
 from fractions import Fraction
 from functools import cache
 from itertools import pairwise
+from math import ceil
 
 import pytest
 
 from costing.appraisal import appraise
 from costing.forecast import Books, Drawn, forecast
-from costing.options.site import OnSite, Season
+from costing.options.site import OnSite, Season, season_on
 from costing.options.ways import Asked, require_choice, weigh
 from structures.errors import Refused
 from structures.intake.pack import GroundWater, Works
+from structures.life.first_flow import EarlyFlow
+from structures.life.progress import Progress
+from structures.life.season import Plan
 from structures.water.leakage import slot_flow
 from tests.costing.demo_works import by_hand, demo_rates, found, ranges, sums, survey
 from tests.costing.documents.appraisals import example
@@ -27,17 +31,13 @@ SITE = OnSite(
     open=((38.68, 44.68),),
     spent=Decimal("250000.00"),
 )
-PROGRESS = {"excavation": 80.0, "rock_key": 1.5, "clay": 10.0, "film": 100.0, "backfill": 120.0}
+# Handbook 12, a gang and day.
+RATES = {"excavation": 80.0, "rock_key": 1.5, "clay": 10.0, "film": 100.0, "backfill": 120.0}
 SHELF_M = 408.96
 REACH_M = 300.0
 
 
-def days_of(quantities):
-    """One gang at the handbook's rates of progress."""
-    return sum(one.quantity / PROGRESS[one.item] for one in quantities if one.item in PROGRESS)
-
-
-SEASON = Season(days_of, days_left=120.0)
+SEASON = Season(Progress(), days_left=120)
 
 
 @cache
@@ -236,7 +236,7 @@ def test_closing_costs_the_filling_and_what_was_spent():
     way = ways()["close"]
     assert way.to_complete == cost
     assert way.total == cost + Decimal("250000.00")
-    assert way.days == pytest.approx(float(quantity) / 120.0, abs=1e-4)
+    assert way.days == ceil(quantity / 120)
     flow = halted().appraisal.water.underflow_m3_per_day
     assert (way.leak.least_m3_per_day, way.leak.most_m3_per_day) == (flow, flow)
     assert way.may_be_chosen
@@ -267,24 +267,35 @@ def test_days_are_those_of_what_is_not_covered():
     whole = {one.item: 0.0 for one in walk.design.quantities}
     for one in walk.design.quantities:
         whole[one.item] += one.quantity
-    by_hand_days = sum(whole[item] / rate for item, rate in PROGRESS.items())
-    assert ways(site=bare)["go on"].days == pytest.approx(by_hand_days)
+    assert ways(site=bare)["go on"].days == ceil(sum(whole[i] / rate for i, rate in RATES.items()))
 
 
 def test_a_way_that_takes_longer_than_the_season_is_blocked():
-    way = ways(season=Season(days_of, days_left=20.0))["step"]
+    way = ways(season=Season(Progress(), days_left=20))["step"]
     assert blocks(way) == ["SG-01"]
-    late = way.days - 20.0
-    assert f"too late by {late:.1f} days" in way.findings[-1].what
+    assert way.findings[-1].what == (
+        f"It needs {way.days} days and 20 are left: too late by {way.days - 20} days."
+    )
+    assert way.days > 20
 
 
 def test_a_season_that_cannot_be_computed_blocks_every_way():
-    season = Season(lambda _: None, None, why="fewer than one year of first runs is known")
+    season = season_on(Plan(None, None, 10), TODAY, Progress())
     for way in ways(season=season).values():
         assert not way.may_be_chosen
     told = ways(season=season)["close"].findings[0]
-    assert told.what == (
-        "The season cannot be computed: fewer than one year of first runs is known."
+    assert told.what == "The season cannot be computed: the days of first flow are not known."
+
+
+def test_days_left_are_those_before_the_early_flow_less_the_reserve():
+    """Oracle: the dry-season clock by hand. An early flow on 5 June is 56 days from 10 April, less
+    10 in reserve; two gangs need half the days, in whole days.
+    """
+    season = season_on(Plan(EarlyFlow(date(2026, 6, 5), 12), 30, 10), TODAY, Progress(), gangs=2)
+    assert (season.days_left, season.why, season.gangs) == (46, "", 2)
+    assert ways(season=season)["step"].days in (
+        ways()["step"].days // 2,
+        ways()["step"].days // 2 + 1,
     )
 
 

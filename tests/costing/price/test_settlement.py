@@ -4,6 +4,8 @@ from dataclasses import replace
 from decimal import Decimal
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from costing.price.billing import judge_lines
 from costing.price.contract import Advance
@@ -83,3 +85,26 @@ def test_work_without_a_rate_is_named_and_not_counted_as_nothing():
     assert worth.amount == Decimal("470577.72") - Decimal("2450.00")
     found = settle(book("TA-05"), (), rest)
     assert "and 1 entry without a rate" in found.sentences[0]
+
+
+@given(st.sets(st.integers(0, 80)), st.integers(1, 99))
+def test_every_measured_quantity_is_billed_or_open(chosen, percent):
+    """Law: what a bill of some lines asks for and what is left open make up the book."""
+    entries = book("TA-05")
+    every = [line for one in BILLS for line in bill("TA-05", one).lines]
+    lines = [
+        replace(
+            every[n],
+            line_no=n,
+            quantity=max(round(every[n].quantity * percent / 100, 2), Decimal("0.01")),
+            amount=None,
+        )
+        for n in sorted(chosen)
+    ]
+    judged = judge_lines("X", lines, entries, contract())
+    found = settle(entries, judged, contract())
+    left = {one.entry_id: one.quantity for one in (*found.not_billed, *found.billed_short)}
+    billed = {one.asked.entry_id: one.asked.quantity for one in judged if one.status != "refused"}
+    for name, entry in entries.items():
+        assert entry.quantity == left.get(name, 0) + billed.get(name, 0)
+    assert not {one.entry_id for one in found.not_billed} & set(billed)
