@@ -31,16 +31,17 @@ JSON = st.recursive(
     lambda inner: st.lists(inner, max_size=3) | st.dictionaries(TEXT, inner, max_size=3),
     max_leaves=3,
 )
+WORD = st.sampled_from(["", "drawn", "engineer-1", "é\N{SNOWMAN}"])
 ENTRY = st.builds(
     Entry,
     number=st.just(0),
-    at=st.datetimes(timezones=st.just(UTC)),
+    at=st.sampled_from([NOON, NOON + timedelta(microseconds=1)]),
     by=st.integers(1, 99),
-    by_name=TEXT,
-    act=TEXT,
+    by_name=WORD,
+    act=WORD,
     content=JSON,
     structure=st.none() | st.integers(1, 99),
-    subject=TEXT,
+    subject=WORD,
 )
 
 
