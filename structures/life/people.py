@@ -28,14 +28,17 @@ ROLES: Final[dict[str, tuple[str, str]]] = {  # role -> (as a title, as somebody
 
 
 def whom(roles: Iterable[str]) -> str:
-    """Name roles as those to ask: "an engineer or a district officer".
+    """Name roles as those to ask: "field staff, an engineer or a district officer".
 
     Raises
     ------
     KeyError
         If a role is unknown.
+    ValueError
+        If there is none.
     """
-    return " or ".join(ROLES[role][1] for role in in_order(roles))
+    *first, last = (ROLES[role][1] for role in in_order(roles))
+    return f"{', '.join(first)} or {last}" if first else last
 
 
 def title(roles: Iterable[str]) -> str:

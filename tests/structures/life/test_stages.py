@@ -37,6 +37,9 @@ def test_roles_are_named_once_and_from_the_stream_bed_upwards():
     """Oracle: the table of people, in its order."""
     assert list(ROLES) == ["field", "engineer", "district", "programme", "auditor", "admin"]
     assert whom(["district", "engineer", "district"]) == "an engineer or a district officer"
+    assert whom(list(ROLES)[:3]) == "field staff, an engineer or a district officer"
+    with pytest.raises(ValueError, match="not enough values"):
+        whom([])
     assert title({"programme", "field"}) == "Field staff and the programme manager"
     assert title([]) == "Somebody without a posting here"
     with pytest.raises(KeyError, match="unknown role 'mayor'"):
