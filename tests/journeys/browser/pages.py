@@ -10,6 +10,7 @@ WRONG = {"pack": 1, "site": {"code": "K"}, "ground": [], "wall": {"thicknes_m": 
 AXE = Path(__file__).with_name("vendor").joinpath("axe-4.14.1.min.js")
 LEVELS = ["wcag2a", "wcag2aa", "wcag21a", "wcag21aa", "wcag22a", "wcag22aa"]
 QUESTION = "Will this wall close?"
+MOST_KEYS = 60  # of one page; a page that needs more has lost the focus
 
 
 def hand_in(page, pack, rates="RS-2025-26.csv"):
@@ -70,3 +71,21 @@ FOCUS = """() => {
 def focus(page):
     """What has the focus, and whether a person can see that it has."""
     return page.evaluate(FOCUS)
+
+
+def step(page):
+    """Press the Tab key; what it leads to must be seen."""
+    page.keyboard.press("Tab")
+    at = focus(page)
+    assert at["name"] == "body" or at["seen"], f"the focus cannot be seen on {at}"
+    return at
+
+
+def go_to(page, there):
+    """Go by the Tab key to the first place that is the one."""
+    at = focus(page)
+    for _ in range(MOST_KEYS):
+        if there(at):
+            return
+        at = step(page)
+    raise AssertionError(f"{MOST_KEYS} keys did not lead there; the last was {at}")

@@ -11,7 +11,16 @@ from playwright.sync_api import expect
 
 from tests.config.site_copy import command
 from tests.faults.pausing import go_on, pause, paused
-from tests.journeys.browser.pages import QUESTION, WRONG, focus, hand_in, heading
+from tests.journeys.browser.pages import (
+    MOST_KEYS,
+    QUESTION,
+    WRONG,
+    focus,
+    go_to,
+    hand_in,
+    heading,
+    step,
+)
 
 pytestmark = [pytest.mark.browser, pytest.mark.journey]
 
@@ -21,7 +30,6 @@ WALL = (
     *("face_area_m2", "greatest_height_m", "greatest_depth_to_key_m"),
 )
 A4_PT = (595.276, 841.890)  # 210 mm x 297 mm (ISO 216) at 72 points to 25.4 mm
-MOST_KEYS = 60  # of one page; a page that needs more has lost the focus
 
 
 @pytest.fixture
@@ -124,22 +132,6 @@ def test_keys_alone_lead_from_the_first_page_to_the_verdict(window):
     step(page)
     assert page.locator("details table").is_visible()
     assert focus(page)["name"] == "div"  # the table can be moved sideways by keys
-
-
-def step(page):
-    page.keyboard.press("Tab")
-    at = focus(page)
-    assert at["name"] == "body" or at["seen"], f"the focus cannot be seen on {at}"
-    return at
-
-
-def go_to(page, there):
-    at = focus(page)
-    for _ in range(MOST_KEYS):
-        if there(at):
-            return
-        at = step(page)
-    raise AssertionError(f"{MOST_KEYS} keys did not lead there; the last was {at}")
 
 
 def test_without_scripts_a_link_looks_again(window, worker):

@@ -22,8 +22,7 @@ from tests.journeys.browser.office.rooms import (
     sign_in,
     survey_of,
 )
-from tests.journeys.browser.pages import focus, heading
-from tests.journeys.browser.test_survey_to_verdict import go_to
+from tests.journeys.browser.pages import focus, go_to, heading
 
 pytestmark = [pytest.mark.browser, pytest.mark.journey]
 

@@ -2,16 +2,29 @@
 
 from __future__ import annotations
 
+import re
+from pathlib import Path
+
 import pytest
 
 from tests.journeys.browser.conftest import WIDE
-from tests.journeys.browser.office.rooms import CLOSES, look_at, price, survey_of
+from tests.journeys.browser.office.rooms import CLOSES, as_file, keep, look_at, price, survey_of
 from tests.journeys.browser.pages import WRONG, heading, overhang_px, violations
 
 pytestmark = pytest.mark.browser
 
 NARROW = {"width": 360, "height": 740}
 SITE = "/sites/OD-05/"
+TWICE = "/sites/BI-01/"  # a site that no other test hands a survey in for
+# The demo's rates a year on: they are not in force yet, so they change no price.
+NEXT_YEAR = (
+    Path("fixtures/rates/RS-2025-26.csv")
+    .read_text(encoding="utf-8")
+    .replace("2026-09-30", "2027-09-30")
+    .replace("2025-10-01", "2026-10-01")
+    .replace("RS-2025-26", "RS-2026-27")
+    .replace("62.00", "64.00")
+)
 ENGINEER, ADMIN = "engineer-1", "admin-1"
 
 
@@ -63,6 +76,47 @@ def priced(desk):
     return page
 
 
+def surveys_side_by_side(desk):
+    """Two versions of one survey; handed in a second time it is there already."""
+    page = desk(ENGINEER)
+    page.goto(TWICE)
+    if not page.get_by_role("link", name="Survey 2", exact=True).count():
+        look_at(page, "BI-01", survey_of("BI-01", "Gomdallu crossing"))
+        keep(page)
+    page.goto(f"{TWICE}surveys/2/against/1/")
+    return page
+
+
+def estimates_side_by_side(desk):
+    """Two walls of one site; the same inputs are priced once, so the second has a deeper key."""
+    page = desk(ENGINEER)
+    for key_m in (0.15, 0.2):
+        page.goto(f"{TWICE}estimates/")
+        if page.locator("main tbody th a").count() < 2:
+            look_at(page, "BI-01", survey_of("BI-01", "Gomdallu crossing", wall={"key_m": key_m}))
+            keep(page)
+            price(page, "BI-01")
+    page.goto(f"{TWICE}estimates/")
+    page.locator("main tbody th a").first.click()
+    page.get_by_role("link", name=re.compile("^estimate 1, ")).click()
+    return page
+
+
+def schedules_side_by_side(desk):
+    """The demo's schedule and one of the year after it, film dearer."""
+    page = desk(ENGINEER)
+    page.goto("/rates/")
+    if page.locator("main tbody tr").count() == 1:
+        page.goto("/rates/new/")
+        page.get_by_label("Rate schedule").set_input_files(as_file(NEXT_YEAR, "RS-2026-27.csv"))
+        page.get_by_role("button", name="Look at the differences").click()
+        page.get_by_role("button", name="Keep this schedule").click()
+        page.goto("/rates/")
+    page.locator("main tbody th a").first.click()
+    page.get_by_role("link", name=re.compile("^RS-")).first.click()
+    return page
+
+
 IN_A_ROW = "main tbody th a"
 PAGES = {
     "sign in": nobody("/sign-in/"),
@@ -91,8 +145,11 @@ PAGES = {
     "preview": preview,
     "refused survey": refused,
     "survey": at(ENGINEER, f"{SITE}surveys/1/"),
+    "surveys side by side": surveys_side_by_side,
     "sounding": at(ENGINEER, f"{SITE}surveys/1/soundings/1/"),
     "estimate": priced,
+    "estimates side by side": estimates_side_by_side,
+    "schedules side by side": schedules_side_by_side,
     "estimates": at(ENGINEER, f"{SITE}estimates/"),
     "people": at(ADMIN, "/people/"),
     "new person": at(ADMIN, "/people/new/"),
