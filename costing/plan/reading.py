@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Final
 from costing.plan.season import Season, SeasonSite
 from costing.price.money import to_cents
 from costing.price.rate_cells import read_decimal
-from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.intake.archive import too_large
 from structures.intake.builder import refusal
 from structures.intake.fields import Field
 from structures.intake.json_form import read_json
@@ -93,8 +93,7 @@ def read_season(name: str, data: bytes) -> Season:
         If the season cannot be planned; `findings` names each site and field.
     """
     ledger = Ledger()
-    if len(data) > FILE_MOST_BYTES:
-        what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."
+    if what := too_large(len(data)):
         ledger.add(Node(None, name), what, "Send one season.")
         raise refusal(ledger, "season")
     root = read_json(name, data)

@@ -13,7 +13,7 @@ from django.utils import timezone
 from structures.access import Act, insist, may
 from structures.actions.refusals import as_documents
 from structures.errors import Finding, Refused
-from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.intake.archive import too_large
 from structures.models import District, Upload, Watershed
 from structures.runs.files import keep_bytes
 
@@ -45,9 +45,7 @@ def receive_file(
     """
     insist(by, ACT[kind], owner)
     plain = PurePosixPath(name.replace("\\", "/")).name[-NAME_MOST:] or kind
-    if len(data) > FILE_MOST_BYTES:
-        limit = FILE_MOST_BYTES // MEGABYTE
-        what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {limit}. Nothing was read."
+    if what := too_large(len(data)):
         raise _single(plain, what, "Split it.", "FI-02")
     watershed = owner if isinstance(owner, Watershed) else None
     district = owner if watershed is None else watershed.district

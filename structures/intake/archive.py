@@ -38,6 +38,14 @@ BROKEN: Final = (
 )
 
 
+def too_large(size_bytes: int) -> str:
+    """Say that a file is larger than any is read (FI-02); empty where it is not."""
+    if size_bytes <= FILE_MOST_BYTES:
+        return ""
+    size, limit = size_bytes / MEGABYTE, FILE_MOST_BYTES // MEGABYTE
+    return f"The file has {size:.0f} MB, limit {limit}. Nothing was read."
+
+
 def is_packed(data: bytes) -> bool:
     """Whether bytes begin like a zip."""
     return data.startswith(PACKED)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Final
 
-from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE, is_packed
+from structures.intake.archive import is_packed, too_large
 from structures.intake.delimited import read_delimited
 from structures.intake.tree import Node, shown
 from structures.intake.workbook import read_list_sheet
@@ -26,8 +26,7 @@ def read_single_table(name: str, data: bytes, part: str, ledger: Ledger) -> Tabl
     part
         What the table holds; a workbook of several sheets is asked for the sheet of this name.
     """
-    if len(data) > FILE_MOST_BYTES:
-        what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."
+    if what := too_large(len(data)):
         ledger.add(Node(None, name), what, "Send one site at a time.", rule="FI-02")
         return None
     if is_packed(data):

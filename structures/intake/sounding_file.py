@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import PurePosixPath
 from typing import TYPE_CHECKING
 
-from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.intake.archive import too_large
 from structures.intake.builder import refusal
 from structures.intake.delimited import read_delimited
 from structures.intake.fields import ARRAYS
@@ -47,8 +47,7 @@ def read_sounding(
     if array not in ARRAYS:
         raise ValueError(f"array is one of {', '.join(ARRAYS)}, not {array}")
     ledger = Ledger()
-    if len(data) > FILE_MOST_BYTES:
-        what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."
+    if what := too_large(len(data)):
         ledger.add(Node(None, name), what, "Send one sounding.", rule="FI-02")
         raise refusal(ledger, "sounding")
     label = PurePosixPath(name).stem

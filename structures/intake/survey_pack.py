@@ -11,12 +11,11 @@ from typing import TYPE_CHECKING, Final
 from structures.errors import Finding, Refused
 from structures.intake.archive import (
     BOOK,
-    FILE_MOST_BYTES,
-    MEGABYTE,
     check_nested,
     entry_names,
     is_packed,
     read_archive,
+    too_large,
 )
 from structures.intake.builder import build_pack, refusal
 from structures.intake.delimited import no_table, read_delimited
@@ -165,9 +164,7 @@ def _tell_left(where: str, ledger: Ledger) -> None:
 
 
 def _check_size(name: str, size: int) -> None:
-    if size > FILE_MOST_BYTES:
-        limit = FILE_MOST_BYTES // MEGABYTE
-        what = f"The file has {size / MEGABYTE:.0f} MB, limit {limit}. Nothing was read."
+    if what := too_large(size):
         raise _single(name, what, "Send one site's survey.", rule="FI-02")
 
 

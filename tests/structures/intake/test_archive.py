@@ -8,7 +8,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from structures.errors import Refused
-from structures.intake.archive import read_archive
+from structures.intake.archive import read_archive, too_large
 from structures.intake.survey_pack import read_pack, read_pack_bytes
 from structures.intake.tree import Ledger
 from tests.structures.intake.packs import GOOD_TABLES, workbook_bytes, write_zip
@@ -94,3 +94,9 @@ def test_any_byte_of_a_workbook_exchanged_gives_a_pack_or_a_refusal(place, byte)
 
 
 BOOK = workbook_bytes()
+
+
+def test_a_file_that_is_too_large_says_how_large_and_what_the_limit_is():
+    """Oracle: 20 MB of a million bytes (FI-02)."""
+    assert too_large(20_000_000) == ""
+    assert too_large(25_000_000) == "The file has 25 MB, limit 20. Nothing was read."
