@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import codecs
-import difflib
 from dataclasses import dataclass, field
 from decimal import Decimal
 from pathlib import PurePosixPath
@@ -24,12 +23,13 @@ from costing.price.rate_cells import (
     read_rate,
     read_text,
 )
-from structures.intake.archive import FILE_MOST_BYTES, MEGABYTE
+from structures.intake.archive import too_large
 from structures.intake.builder import refusal
 from structures.intake.defaults import MONEY
 from structures.intake.delimited import read_delimited
 from structures.intake.json_form import read_json
 from structures.intake.tree import Ledger, Node, shown
+from structures.intake.values import tell_spare
 from structures.takeoff.quantity import ITEMS
 
 if TYPE_CHECKING:
@@ -169,8 +169,7 @@ def read_rates(
         If the schedule cannot be used; `findings` names each line and field.
     """
     ledger = Ledger()
-    if len(data) > FILE_MOST_BYTES:
-        what = f"The file has {len(data) / MEGABYTE:.0f} MB, limit {FILE_MOST_BYTES // MEGABYTE}."
+    if what := too_large(len(data)):
         ledger.add(Node(None, name), what, "Send one rate schedule.")
         raise refusal(ledger, "rate schedule")
     sheet = _Sheet(ledger)
@@ -284,14 +283,8 @@ class _Sheet:
             if key in known or member.value in ("", None):
                 continue
             self.ledger.keep(member)
-            if member.field in self.ledger.told:
-                continue
-            self.ledger.told.add(member.field)
-            near = difflib.get_close_matches(key, known, n=1)
-            remedy = f"Was {near[0]} meant?" if near else "Nothing to do if it is only a remark."
             what = "A rate schedule has no such column; kept as a note."
-            level = "warn" if near else "note"
-            self.ledger.add(member, what, remedy, level=level, rule=DOUBT)
+            tell_spare(key, member, known, self.ledger, what=what, rule=DOUBT)
 
 
 def _rows(name: str, data: bytes, sheet: _Sheet) -> list[Node]:

@@ -2,16 +2,14 @@
 
 from __future__ import annotations
 
-import difflib
 from typing import TYPE_CHECKING, Any, Final
 
-from structures.errors import Finding
 from structures.ground.angle import LATITUDE_MOST, LONGITUDE_MOST, read_angle, read_position
 from structures.intake.archive import BOOK, entry_names, is_packed
 from structures.intake.delimited import read_delimited
 from structures.intake.fields import LEVEL_MOST_M, Field
 from structures.intake.tree import Ledger, Node, shown
-from structures.intake.values import read_value, tell_missing
+from structures.intake.values import read_value, tell_missing, tell_spare
 
 if TYPE_CHECKING:
     from structures.intake.tables import Table
@@ -181,12 +179,6 @@ def _tell_no_angle(cell: Node, axis: str, ledger: Ledger) -> None:
 def _tell_unknown(row: Node, known: tuple[str, ...], ledger: Ledger) -> None:
     """Tell once a file of columns that the table of sites does not have; they stay in the file."""
     for key, cell in row.members().items():
-        if key in known or cell.blank or key in ledger.told:
-            continue
-        ledger.told.add(key)
-        near = difflib.get_close_matches(key, known, n=1)
-        remedy = f"Was {near[0]} meant?" if near else "Nothing to do if it is only a remark."
-        what = "A site has no such field; it stays in the file as it came."
-        ledger.findings.append(
-            Finding(cell.where, key, what, remedy, "warn" if near else "note", "FI-03")
-        )
+        if key not in known and not cell.blank:
+            what = "A site has no such field; it stays in the file as it came."
+            tell_spare(key, cell, known, ledger, what=what)

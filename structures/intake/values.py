@@ -107,24 +107,35 @@ def tell_unknown(
     for key, member in node.members().items():
         if key in known or (member.tabular and member.blank):
             continue
-        near = difflib.get_close_matches(key[:KEY_MOST], known, n=1)
-        hint = f"Was {near[0]} meant?" if near else ""
         if closed:
-            remedy = hint or f"Known here: {', '.join(known)}."
+            remedy = _meant(key, known) or f"Known here: {', '.join(known)}."
             ledger.add(member, "There is no such setting.", remedy)
             continue
         ledger.keep(member)
-        if member.field not in ledger.told:
-            level = "warn" if near else "note"
-            what = "A pack has no such field; kept as a note."
-            ledger.add(
-                member,
-                what,
-                hint or "Nothing to do if it is only a remark.",
-                level=level,
-                rule="FI-03",
-            )
-            ledger.told.add(member.field)
+        tell_spare(key, member, known, ledger, what="A pack has no such field; kept as a note.")
+
+
+def tell_spare(
+    key: str,
+    member: Node,
+    known: tuple[str, ...],
+    ledger: Ledger,
+    *,
+    what: str,
+    rule: str = "FI-03",
+) -> None:
+    """Tell once of a name that nobody knows: it may be a slip where a known one is near."""
+    if member.field in ledger.told:
+        return
+    ledger.told.add(member.field)
+    hint = _meant(key, known)
+    remedy = hint or "Nothing to do if it is only a remark."
+    ledger.add(member, what, remedy, level="warn" if hint else "note", rule=rule)
+
+
+def _meant(key: str, known: tuple[str, ...]) -> str:
+    near = difflib.get_close_matches(key[:KEY_MOST], known, n=1)
+    return f"Was {near[0]} meant?" if near else ""
 
 
 def _number(node: Node, field: Field, ledger: Ledger) -> float | None:
