@@ -15,6 +15,7 @@ if TYPE_CHECKING:
 
     from costing.appraisal import Appraisal
     from costing.options.site import Season
+    from structures.errors import Level
     from structures.wall.cutoff import Cutoff
 
 ASKED: frozenset[str] = frozenset({"side_slope", "wet_sand", "support_design", "trench_depth_m"})
@@ -95,14 +96,19 @@ def judge_water(walk: Appraisal, before: Appraisal) -> Iterable[Finding]:
         yield Finding("dewatering", "pump_hours", what, remedy, "warn")
 
 
-def judge_season(days: int | None, season: Season) -> Iterable[Finding]:
-    """Say whether a way can be done before the stream is likely to come. Source: SG-01."""
+def judge_season(days: int | None, season: Season, *, level: Level = "block") -> Iterable[Finding]:
+    """Say whether a way can be done before the stream is likely to come. Source: SG-01.
+
+    Filling an open trench is only warned of: no date makes it right to leave it open.
+    """
     if days is None or season.days_left is None:
         why = season.why or "the days needed are not known"
         what = f"The season cannot be computed: {why}."
-        remedy = "Give what is missing; no way is chosen on an unknown season."
-        yield Finding("season", "days", what, remedy, "block", "SG-01")
+        remedy = "Give what is missing."
+        yield Finding("season", "days", what, remedy, level, "SG-01")
     elif days > season.days_left:
         late = days - season.days_left
-        what = f"It needs {days} days and {season.days_left} are left: too late by {late} days."
-        yield Finding("season", "days", what, "Do not go this way this season.", "block", "SG-01")
+        left = f"{max(season.days_left, 0)} are left"
+        what = f"It needs {days} days and {left}: too late by {late} days."
+        remedy = "Do not go this way this season." if level == "block" else "Fill it at once."
+        yield Finding("season", "days", what, remedy, level, "SG-01")

@@ -221,7 +221,7 @@ def _close(desk: _Desk) -> Option:
         days=days,
         depth_m=None,
         leak=leak_unfinished(desk.forecast.appraisal),
-        findings=tuple(judge_season(days, desk.season)),
+        findings=tuple(judge_season(days, desk.season, level="warn")),
         reasons=(
             *_not_spent(desk),
             "Filling is priced with the open strips dug to the rock as found, percentages on it.",

@@ -279,12 +279,21 @@ def test_a_way_that_takes_longer_than_the_season_is_blocked():
     assert way.days > 20
 
 
-def test_a_season_that_cannot_be_computed_blocks_every_way():
+def test_a_season_that_cannot_be_computed_blocks_all_digging():
     season = season_on(Plan(None, None, 10), TODAY, Progress())
-    for way in ways(season=season).values():
-        assert not way.may_be_chosen
-    told = ways(season=season)["close"].findings[0]
-    assert told.what == "The season cannot be computed: the days of first flow are not known."
+    told = ways(season=season)
+    assert [way for way, one in told.items() if one.may_be_chosen] == ["close"]
+    words = "The season cannot be computed: the days of first flow are not known."
+    assert told["step"].findings[-1].what == words
+    assert [(one.what, one.level) for one in told["close"].findings] == [(words, "warn")]
+
+
+def test_an_open_trench_may_always_be_filled():
+    """Nothing stands against it, however late it is."""
+    way = ways(season=Season(Progress(), days_left=-6))["close"]
+    assert way.may_be_chosen
+    assert way.findings[0].remedy == "Fill it at once."
+    assert way.findings[0].what == "It needs 4 days and 0 are left: too late by 10 days."
 
 
 def test_days_left_are_those_before_the_early_flow_less_the_reserve():
