@@ -6,8 +6,8 @@ from dataclasses import asdict
 from textwrap import wrap
 from typing import TYPE_CHECKING, Any, Final
 
-from structures.life.cautions import WORDS
-from structures.water.effect import MORE_YEARS
+from structures.life.cautions import CLOSING_SENTENCE, WORDS
+from structures.water.estimate import MORE_YEARS
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -16,7 +16,8 @@ if TYPE_CHECKING:
     from structures.errors import Finding
     from structures.life.verdict import Suggestion
     from structures.water.contrast import Contrast
-    from structures.water.effect import Effect, Estimate
+    from structures.water.effect import Effect
+    from structures.water.estimate import Estimate
     from structures.water.rain_share import PairedYears, RainAdjusted
     from structures.water.rivals import Rivals
 
@@ -56,6 +57,7 @@ def effect_json(
         "reasons": list(suggestion.reasons),
         "rule": suggestion.rule,
         "more_years": {"years": MORE_YEARS, "smallest_seen_m": found and found.more_years_m},
+        "after_first_rains": _filled(found),
         "change": {
             "affected_m": rivals and rivals.change_affected_m,
             "control_m": rivals and rivals.change_control_m,
@@ -65,6 +67,12 @@ def effect_json(
         "seed": effect.seed,
         "findings": [asdict(one) for one in findings],
     }
+
+
+def _filled(found: Estimate | None) -> dict[str, Any] | None:
+    if found is None or found.filled is None:
+        return None
+    return asdict(found.filled) | {"until": found.filled.until.isoformat()}
 
 
 def _rivals(rivals: Rivals | None) -> list[dict[str, Any]]:
@@ -150,6 +158,8 @@ def effect_text(whole: dict[str, Any]) -> str:
     for level, words in told:
         head = f"  {WORDS[level]:<6}"
         lines += wrap(words, WIDTH, initial_indent=head, subsequent_indent=" " * len(head))
+    if told:
+        lines.append(f"  {CLOSING_SENTENCE}")
     lines += ["", *wrap(f"Method: {whole['method']}", WIDTH)]
     return "\n".join(lines) + "\n"
 

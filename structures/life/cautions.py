@@ -335,10 +335,12 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
         ),
     ),
     "effect-first-filling": (
-        "note",
+        "warn",
         (
-            "The ground filled with the first rains: the {count} pairs until {until} stand short of the "
-            "later ones and have a level of their own beside the effect."
+            "The change grew with the first rains: the {count} pairs until {until} surely stand short of "
+            "the later ones, so one step at completion fits badly. With a level of their own for these "
+            "pairs the later ones stand {effect_m:+.2f} m ({low_m:+.2f} to {high_m:+.2f}). An engineer "
+            "decides which of the two tells of the wall."
         ),
     ),
     "effect-one-control": (

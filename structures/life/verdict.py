@@ -135,12 +135,12 @@ def _from_gain(gain: Measured, limits: Limits, who: str) -> Suggestion:
     if gain.low_m > 0.0:
         return Suggestion("holds in part", (f"{seen}; the low end does not reach {least}.",))
     if gain.smallest_seen_m is not None and gain.smallest_seen_m <= limits.least_effect_m:
-        words = f"{seen}, which includes nothing at all; a gain of {least}, would have been seen."
+        words = f"{seen}, an interval that reaches down to no gain; a gain of {least}, would have been seen."
         return Suggestion("does not hold", (words,))
     smallest = (
         "" if gain.smallest_seen_m is None else f" ({gain.smallest_seen_m:.2f} m would have been)"
     )
-    words = f"{seen}, which includes nothing at all; {least}, could have been missed{smallest}."
+    words = f"{seen}, an interval that reaches down to no gain; {least}, could have been missed{smallest}."
     return _nothing(words)
 
 

@@ -33,11 +33,10 @@ def filling_until(completed: date, rules: EffectRules) -> date:
 def find_filling(
     pairs: Pairs, columns: NDArray[np.float64], completed: date, rules: EffectRules
 ) -> NDArray[np.bool_] | None:
-    """Mark the pairs of the first filling where they surely stand short of the later ones.
+    """Mark the pairs of the first rains where they surely stand short of the later ones; else None.
 
-    Their own level is then fitted beside the step, so that the step is that of the filled ground;
-    None where the pairs of the first rains stand like the later ones. Source: decided for this
-    project; the interval is that of handbook 10.5 with the column more.
+    The reported interval is that of the handbook whatever is found here; the step of the filled
+    ground is shown beside it. Source: decided for this project.
 
     Parameters
     ----------

@@ -1,0 +1,119 @@
+"""Why one well stands lower. Oracles: the demo's complaint (parapet raised by 0.60 m on 2025-10-18,
+a dry year), shares put into invented programmes.
+"""
+
+import csv
+from dataclasses import replace
+from datetime import date, timedelta, timezone
+from pathlib import Path
+
+import pytest
+
+from structures.intake.district_readings import site_readings_csv
+from structures.intake.readings import read_readings
+from structures.water.one_well import explain_well
+from structures.water.rules import EffectRules
+from tests.structures.water.programmes import programme
+
+DEMO = Path(__file__).parents[3] / "fixtures" / "demo"
+ZONE = timezone(timedelta(hours=5, minutes=30))
+COMPLETED = date(2024, 5, 20)
+SINCE = date(2025, 6, 1)  # the water year in which the village complained
+
+
+def rows(name):
+    with (DEMO / f"{name}.csv").open(newline="") as stream:
+        return list(csv.DictReader(stream))
+
+
+def readings(*, new_mark):
+    """Readings of BI-01 with the well complained of; without the new mark as they came in."""
+    marks = rows("measuring_points")
+    if not new_mark:
+        marks = [{**one, "valid_to": ""} for one in marks if one["mark_id"] == "M1"]
+    text = site_readings_csv(
+        "BI-01", wells=rows("wells"), marks=marks, levels=rows("levels"), also=["BI-W05"]
+    )
+    return read_readings("levels.csv", text.encode(), ZONE).readings
+
+
+def test_the_complaint_is_a_dry_year_and_a_raised_parapet():
+    """Oracle: measuring_points.csv and the months of BI-W05 and the controls, counted by hand below."""
+    found = explain_well(readings(new_mark=False), "BI-W05", COMPLETED, SINCE, EffectRules())
+    assert found.change_m == pytest.approx(
+        found.rain.change_m + found.mark_m + found.rest.change_m, abs=1e-9
+    )
+    assert found.mark.after_day <= date(2025, 10, 18) <= found.mark.by_day
+    assert found.mark.size.low_m < -0.60 < found.mark.size.high_m < 0.0
+    assert found.rain.high_m < -0.8  # every control well fell as well
+    assert found.rest.low_m < 0.05
+    assert abs(found.rest.change_m) < 0.10
+    assert found.rest.low_m <= 0.0 <= found.rest.high_m
+    text = " ".join(found.sentences())
+    assert "BI-W05 reads 1.33 m lower" in text
+    assert "a parapet raised or a tape cut?" in text
+    assert "nothing that these readings can lay to the wall" in text
+
+
+def test_the_change_is_that_of_the_months_by_hand():
+    """Oracle: means of monthly means of static readings of BI-W05, since against before."""
+    levels = [
+        row for row in rows("levels") if row["well_id"] == "BI-W05" and row["state"] == "static"
+    ]
+
+    def means(first, last):
+        months = {}
+        for row in levels:
+            if first <= row["read_at"][:10] < last:
+                months.setdefault(row["read_at"][5:7], []).append(-float(row["depth_below_mark_m"]))
+        return {month: sum(values) / len(values) for month, values in months.items()}
+
+    before, since = means("2022-06-01", "2024-05-20"), means("2025-06-01", "2026-06-01")
+    common = sorted(before.keys() & since.keys())
+    expected = sum(since[month] - before[month] for month in common) / len(common)
+    found = explain_well(readings(new_mark=False), "BI-W05", COMPLETED, SINCE, EffectRules())
+    assert found.change_m == pytest.approx(expected, abs=0.06)  # pairs want a control's reading
+
+
+def test_with_the_new_mark_entered_only_the_dry_year_is_left():
+    found = explain_well(readings(new_mark=True), "BI-W05", COMPLETED, SINCE, EffectRules())
+    assert found.mark is None
+    assert found.rest.low_m <= 0.0 <= found.rest.high_m
+    (mark,) = found.marks
+    assert mark.change_m == pytest.approx(0.60)
+    assert found.change_m == pytest.approx(found.rain.change_m, abs=0.1)
+
+
+def test_a_well_behind_the_wall_stands_higher_than_the_rain_explains():
+    found = explain_well(readings(new_mark=True), "BI-W01", COMPLETED, SINCE, EffectRules())
+    assert found.rest.low_m > 0.0
+    assert "the wall is one cause" in found.sentences()[-1]
+
+
+def test_shares_that_were_put_in_come_back():
+    """Oracle: all wells 0.7 m lower in the last year, this one 0.4 m lower since completion and
+    read from 0.5 m higher for its last eighteen months.
+    """
+    plain, completed = programme(61, coefficient=0.0, effect_m=-0.4, gaps=0.0, pumping=0.0)
+    since = date(2020, 6, 1)
+    changed = []
+    for one in plain:
+        deeper_m = 0.7 * (one.day >= since)
+        if one.well == "A0":
+            deeper_m += 0.5 * (one.day >= date(2019, 12, 1))
+        changed.append(replace(one, depth_m=one.depth_m + deeper_m))
+    found = explain_well(changed, "A0", completed, since, EffectRules())
+    assert found.mark.size.low_m < -0.5 < found.mark.size.high_m
+    assert found.rest.low_m < -0.4 < found.rest.high_m
+    assert found.change_m == pytest.approx(
+        found.rain.change_m + found.mark_m + found.rest.change_m, abs=1e-9
+    )
+
+
+def test_without_controls_or_readings_nothing_is_said():
+    found = readings(new_mark=True)
+    own = [one for one in found if one.well == "BI-W05"]
+    assert explain_well(own, "BI-W05", COMPLETED, SINCE, EffectRules()) is None
+    assert explain_well(found, "BI-W05", COMPLETED, date(2026, 4, 1), EffectRules()) is None
+    with pytest.raises(ValueError, match="before completion"):
+        explain_well(found, "BI-W05", COMPLETED, date(2023, 1, 1), EffectRules())
