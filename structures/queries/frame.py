@@ -24,13 +24,15 @@ if TYPE_CHECKING:
 class Frame:
     """Places beyond those of everyone, the districts that are invented, and the reader's day.
 
-    `today` is the day of the reader's districts; where they differ, or there is none, the server's.
+    `today` and `zone` are those of the reader's districts; where these differ, or there is none,
+    the server's.
     """
 
     keeps_people: bool
     sees_money: bool
     invented: tuple[District, ...]
     today: date
+    zone: str
 
 
 def frame_of(user: User | AnonymousUser) -> Frame:
@@ -38,7 +40,7 @@ def frame_of(user: User | AnonymousUser) -> Frame:
     held = list(own_postings(user))
     roles = {posting.role for posting in held}
     districts = {posting.district for posting in held if posting.district is not None}
-    days = {today_of(one) for one in districts}
+    days, zones = {today_of(one) for one in districts}, {one.zone for one in districts}
     return Frame(
         keeps_people=Role.ADMIN in roles,
         sees_money=bool(roles & MAY[Act.SEE_MONEY]),
@@ -46,4 +48,5 @@ def frame_of(user: User | AnonymousUser) -> Frame:
             sorted((one for one in districts if one.invented), key=lambda one: one.code)
         ),
         today=days.pop() if len(days) == 1 else timezone.localdate(),
+        zone=zones.pop() if len(zones) == 1 else timezone.get_default_timezone_name(),
     )
