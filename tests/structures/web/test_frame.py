@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
-from datetime import date
+from datetime import UTC, date, datetime
 
 import pytest
 from django.template.loader import render_to_string
 from django.test import Client
 from django.utils import timezone
 
-from structures.models import Role
+from structures.models import Role, Upload
+from structures.runs.queue import start_run
 from tests.factories import (
     a_district,
     a_posting,
@@ -81,6 +82,29 @@ class TestDayOfTheSheet:
         client.force_login(engineer)
         today = timezone.localdate()
         assert self.printed(client, "/sites/") == f" <dd> {today.day} {today:%b %Y} "
+
+
+def test_hours_are_those_of_the_district_s_clocks(client):
+    """Oracle: UTC+5:30 all the year in Asia/Kolkata: 20:10 UTC is 01:40 on the next day."""
+    district = a_district()
+    engineer = an_engineer(district)
+    upload = Upload.objects.create(
+        district=district, kind="sites", name="s.csv", size=1, sha256="0" * 64, by=engineer
+    )
+    Upload.objects.update(at=datetime(2026, 4, 9, 20, 10, tzinfo=UTC))
+    client.force_login(engineer)
+    page = words(client.get(f"/files/{upload.pk}/"))
+    assert f"{engineer.username}, 10 Apr 2026 01:40, Asia/Kolkata" in page
+    start_run(kind="survey.read", params={"number": 1}, subject="site X", asked_by=engineer)
+    assert "Asked, Asia/Kolkata" in words(client.get("/runs/"))
+
+
+def test_who_serves_nowhere_is_led_on(client):
+    client.force_login(a_user(Role.ADMIN))
+    page = words(client.get("/sites/"))
+    assert "You serve in no watershed today, so there is no site to show." in page
+    assert 'href="/people/"' in page.partition("<main")[2]
+    assert "<h2" not in page.partition("<main")[2]
 
 
 def test_a_page_that_is_not_there_says_so_without_a_name(client):
