@@ -9,7 +9,8 @@ from typing import TYPE_CHECKING, Any, Final
 from structures.life.cautions import WORDS
 
 if TYPE_CHECKING:
-    from structures.ground.sounding import Interpretation, Layer, Refusal
+    from structures.ground.sounding import Interpretation, Layer
+    from structures.ground.sounding_refusals import Refusal
     from structures.intake.pack import Sounding
 
 WIDTH: Final = 88  # characters a line of text

@@ -10,7 +10,7 @@ import numpy as np
 
 from structures.arrays import frozen
 from structures.ground.gaussian import NORMAL_90
-from structures.ground.sounding import Refusal
+from structures.ground.sounding_refusals import Refusal
 from structures.ground.travel_times import (
     DippingPlane,
     dipping_plane,

@@ -13,7 +13,7 @@ from structures.intake.practice import HANDBOOK, Practice
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
 
-    from structures.ground.sounding import Refusal
+    from structures.ground.sounding_refusals import Refusal
     from structures.intake.pack import RockTest, SurveyPack
 
 OUTCROP_SD_M: Final = 0.05  # [A] handbook 4.4

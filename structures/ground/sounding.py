@@ -3,29 +3,34 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Final, NamedTuple
+from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
 from structures.arrays import frozen
 from structures.ground.ensemble import sample_ensemble
-from structures.ground.inversion import (
-    LAYER_COUNTS,
-    Fit,
-    fewest_layers,
-    invert,
-)
+from structures.ground.inversion import LAYER_COUNTS, Fit, fewest_layers, invert
 from structures.ground.layer_prior import Prior, prior_for, rock_rule
 from structures.ground.sounding_curve import (
     NOISE,
     Curve,
     SegmentFactor,
     curve,
-    overlap_gaps,
     segment_factors,
 )
+from structures.ground.sounding_refusals import (
+    HIGH,
+    LOW,
+    MEDIAN,
+    SPREAD_TO_DEPTH,
+    Refusal,
+    doubt,
+    metres,
+    no_model,
+    too_deep,
+    unfit,
+)
 from structures.intake.practice import HANDBOOK, Practice
-from structures.intake.sounding_checks import READINGS_LEAST
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -39,11 +44,6 @@ METHOD: Final = (
     "Version 1."
 )
 SEED: Final = 1  # [A] stated with every result
-LEAST_AB2_M: Final = 15.0  # [A] the prior ends at a third of it: 5 m, a shallow wall
-SPREAD_TO_DEPTH: Final = 5.0  # handbook 2.9: the widest AB/2 over the depth looked for
-LOW, MEDIAN, HIGH = 0.10, 0.50, 0.90  # handbook 4.8
-# Handbook 2: an sd over half the depth is no resolved layer; a normal spread has a range of 2.56 sd.
-WIDEST_RANGE: Final = 1.28  # of the median, 10 to 90 %
 EQUIVALENT_SHARES: Final = (0.1, 0.3, 0.5, 0.7, 0.9)  # [A] of the depth range, one model each
 
 
@@ -53,13 +53,6 @@ class Layer:
 
     thickness_m: float | None
     resistivity_ohm_m: float
-
-
-class Refusal(NamedTuple):
-    """Why a sounding gives no depth: a code, and a sentence with what to do."""
-
-    code: str
-    sentence: str
 
 
 @dataclass(frozen=True, eq=False, slots=True)
@@ -151,9 +144,9 @@ def interpret(
         "seed": seed,
         "noise": readings.noise,
     }
-    unfit = _unfit(readings)
-    if unfit is not None:
-        return Interpretation(**known, refusal=unfit)
+    refusal = unfit(readings)
+    if refusal is not None:
+        return Interpretation(**known, refusal=refusal)
     rng = np.random.default_rng(seed)
     prior = prior or prior_for(float(readings.ab2_m.max()), rock=rock_rule(practice))
     limit = practice.sounding_chi_square
@@ -161,9 +154,9 @@ def interpret(
     fit = fewest_layers(fits, limit=limit)
     known["prior"] = prior
     if fit is None:
-        return Interpretation(**known, refusal=_no_model(fits, limit))
+        return Interpretation(**known, refusal=no_model(fits, limit))
     known |= _shown(readings, fit)
-    refusal = _too_deep(float(fit.thickness_m.sum()), prior)
+    refusal = too_deep(float(fit.thickness_m.sum()), prior)
     if refusal is not None:
         return Interpretation(**known, refusal=refusal)
     floors = {one.resistivity_ohm_m.size: one.chi_square for one in fits}
@@ -174,7 +167,7 @@ def interpret(
         "layer_weight": ensemble.layer_weight,
         "equivalent": _equivalent(ensemble, fitting),
     }
-    refusal = _doubt(ensemble, fitting, prior)
+    refusal = doubt(ensemble, fitting, prior)
     if refusal is not None:
         return Interpretation(**known, refusal=refusal)
     low, median, high = (ensemble.depth_quantile_m(share) for share in (LOW, MEDIAN, HIGH))
@@ -188,41 +181,6 @@ def interpret(
     )
 
 
-def _unfit(readings: Curve) -> Refusal | None:
-    """Say why these readings should not be read at all, if so."""
-    count, widest = readings.ab2_m.size, readings.ab2_m.max()
-    if count < READINGS_LEAST:
-        return Refusal(
-            "too-few-readings",
-            f"only {count} readings, {READINGS_LEAST} are needed to read layers. "
-            "Keep it as a note, or take the sounding again.",
-        )
-    if widest < LEAST_AB2_M:
-        return Refusal(
-            "spread-too-short",
-            f"AB/2 stopped at {widest:g} m, {LEAST_AB2_M:g} m is the least that tells of rock. "
-            f"Take it again with AB/2 {SPREAD_TO_DEPTH:g} times the depth of rock looked for.",
-        )
-    outside = np.flatnonzero((readings.noise < NOISE.low) | (readings.noise > NOISE.high))
-    if outside.size:
-        return Refusal(
-            "noise-not-accepted",
-            f"reading {outside[0] + 1} states a noise of {100 * readings.noise[outside[0]]:g} %, "
-            f"{100 * NOISE.low:g} to {100 * NOISE.high:g} % is accepted. State the noise of the "
-            "instrument, or repeat the reading.",
-        )
-    gap = next((gap for gap in overlap_gaps(readings) if gap.too_wide), None)
-    if gap is not None:
-        return Refusal(
-            "segments-disagree",
-            f"its segments disagree: at AB/2 {gap.ab2_m:g} m the readings with MN/2 "
-            f"{gap.mn2_m[0]:g} and {gap.mn2_m[1]:g} m differ by {100 * gap.share:.0f} %, noise and "
-            f"segment factor explain {100 * gap.limit_share:.0f} %. Look at the potential "
-            "electrodes and repeat both readings.",
-        )
-    return None
-
-
 def _fits(
     readings: Curve, limit: float, *, starts: int, rng: np.random.Generator
 ) -> tuple[Fit, ...]:
@@ -233,17 +191,6 @@ def _fits(
         if fits[-1].chi_square_per_degree < limit:
             break
     return tuple(fits)
-
-
-def _no_model(fits: tuple[Fit, ...], limit: float) -> Refusal:
-    best = min(fits, key=lambda fit: fit.chi_square_per_degree)
-    return Refusal(
-        "not-interpretable",
-        f"no model of {LAYER_COUNTS[0]} to {LAYER_COUNTS[-1]} layers passes: the best, with "
-        f"{best.resistivity_ohm_m.size} layers, has {best.chi_square_per_degree:.1f} chi-square per "
-        f"degree of freedom, under {limit:g} is asked. If the readings were noisier than stated, "
-        "state it; else look for a wrong reading, or ground that is not layered.",
-    )
 
 
 def _shown(readings: Curve, fit: Fit) -> dict[str, object]:
@@ -266,18 +213,6 @@ def _layers(resistivity_ohm_m: NDArray, thickness_m: NDArray) -> tuple[Layer, ..
     return tuple(
         Layer(thickness, float(resistivity))
         for thickness, resistivity in zip(thicknesses, resistivity_ohm_m, strict=True)
-    )
-
-
-def _too_deep(shown_m: float, prior: Prior) -> Refusal | None:
-    """Say that the curve points deeper than the prior: the range would be the prior's alone."""
-    if shown_m <= prior.greatest_depth_m:
-        return None
-    return Refusal(
-        "deeper-than-prior",
-        f"its deepest boundary may lie at {_metres(shown_m)} m, deeper than the "
-        f"{_metres(prior.greatest_depth_m)} m that the printed prior reaches. Bore, or have an "
-        "engineer state another prior.",
     )
 
 
@@ -311,50 +246,18 @@ def _member(ensemble: Ensemble, place: int) -> tuple[Layer, ...]:
     raise ValueError("no such member")
 
 
-def _doubt(ensemble: Ensemble, fitting: NDArray, prior: Prior) -> Refusal | None:
-    """Say why the ensemble gives no depth, if so."""
-    if not fitting.any():
-        return Refusal(
-            "outside-prior",
-            "no model within the printed prior fits the readings: the ground has layers that the "
-            "prior holds impossible. Bore, or have an engineer state another prior.",
-        )
-    rock = prior.rock
-    if ensemble.rock_share < rock.share:
-        return Refusal(
-            "no-rock",
-            f"the curve does not show rock: the deepest layer has {rock.least_ohm_m:g} ohm m and "
-            f"{rock.least_ratio:g} times the layer above in {100 * ensemble.rock_share:.0f} % of the "
-            f"models that fit, {100 * rock.share:.0f} % is asked. Soil may go deeper than the spread "
-            "reaches, or weathered rock over sheet rock may blur the contrast. Bore, or open a pit.",
-        )
-    low, median, high = (ensemble.depth_quantile_m(share) for share in (LOW, MEDIAN, HIGH))
-    if high - low > WIDEST_RANGE * median:
-        return Refusal(
-            "not-resolved",
-            f"the layers are not resolved: rock may lie anywhere from {_metres(low)} to {_metres(high)} m. "
-            "Bore, or measure the resistivity of the sand at an open well or pit.",
-        )
-    return None
-
-
 def _notes(fit: Fit, range_m: tuple[float, float], widest_ab2_m: float) -> tuple[str, ...]:
     """Say what the reader of the depth should know beside it."""
     notes = []
     shown, (low, high) = float(fit.thickness_m.sum()), range_m
     if not low <= shown <= high:
         notes.append(
-            f"The model with the fewest layers has its deepest boundary at {_metres(shown)} m, outside "
-            f"the range {_metres(low)} to {_metres(high)} m: a thin or weathered layer may be hidden."
+            f"The model with the fewest layers has its deepest boundary at {metres(shown)} m, outside "
+            f"the range {metres(low)} to {metres(high)} m: a thin or weathered layer may be hidden."
         )
     if high > widest_ab2_m / SPREAD_TO_DEPTH:
         notes.append(
             f"AB/2 stopped at {widest_ab2_m:g} m. It says little about rock below "
-            f"{_metres(widest_ab2_m / SPREAD_TO_DEPTH)} m."
+            f"{metres(widest_ab2_m / SPREAD_TO_DEPTH)} m."
         )
     return tuple(notes)
-
-
-def _metres(depth_m: float) -> str:
-    """Print two figures: ranges of other seeds differ by a few parts in a hundred."""
-    return f"{depth_m:.1f}" if depth_m < 10 else f"{depth_m:.0f}"

@@ -7,7 +7,7 @@ from costing.documents.bundle import figures_of
 from costing.documents.drawings import appraised_section
 from costing.documents.report import report_data, report_pdf
 from structures.ground.refraction import RefractionReading
-from structures.ground.sounding import Refusal
+from structures.ground.sounding_refusals import Refusal
 from structures.life.cautions import CLOSING_SENTENCE
 from tests.costing.documents.appraisals import (
     estimated,

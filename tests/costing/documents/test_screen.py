@@ -8,7 +8,7 @@ from costing.documents.result import as_json
 from costing.documents.screen import screen_text
 from costing.price.abstract import NOT_INCLUDED
 from structures.ground.refraction import RefractionReading
-from structures.ground.sounding import Refusal
+from structures.ground.sounding_refusals import Refusal
 from tests.costing.documents.appraisals import estimated, example, unpriced, without_rock
 
 

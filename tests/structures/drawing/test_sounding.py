@@ -5,7 +5,8 @@ from hypothesis import strategies as st
 
 from structures.drawing.sounding import draw_sounding
 from structures.drawing.sounding_view import view_sounding
-from structures.ground.sounding import Interpretation, Layer, Refusal
+from structures.ground.sounding import Interpretation, Layer
+from structures.ground.sounding_refusals import Refusal
 from structures.intake.pack import Sounding, SoundingReading
 from tests.structures.drawing.paper import SVG, cut_off, overlaps, read, shapes, size, words
 from tests.structures.drawing.soundings import AB2, COMPUTED, table_2, unread

@@ -13,7 +13,7 @@ from scipy.stats import norm
 from structures.ground.gaussian import Covariance, Observations, predict
 from structures.ground.refraction import RefractionReading
 from structures.ground.rock import estimate_rock
-from structures.ground.sounding import Refusal
+from structures.ground.sounding_refusals import Refusal
 from structures.intake.pack import (
     GroundPoint,
     Probe,

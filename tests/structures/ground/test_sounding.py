@@ -10,8 +10,9 @@ import pytest
 from structures.ground.inversion import invert
 from structures.ground.layer_prior import prior_for
 from structures.ground.resistivity import apparent_resistivity, spread
-from structures.ground.sounding import SEED, Interpretation, Refusal, interpret
+from structures.ground.sounding import SEED, Interpretation, interpret
 from structures.ground.sounding_curve import curve, whitened_residual
+from structures.ground.sounding_refusals import Refusal
 from structures.intake.practice import Practice
 
 DEPTHS = ("rock_depth_m", "rock_depth_low_m", "rock_depth_high_m", "rock_depth_sd_m")
