@@ -17,7 +17,7 @@ if TYPE_CHECKING:
     from structures.intake.tree import Ledger
 
 JUMP_FROM: Final = 12  # readings of a well from which on a usual move is known (project choice)
-JUMP_TIMES: Final = 3.0  # rule LV-08; usual is what nine moves in ten stay under
+JUMP_TIMES: Final = 3.0  # rule LV-08; usual is what three moves in four stay under
 JUMP_LEAST_M: Final = (
     0.5  # quiet wells are not held for less than three times this (project choice)
 )
@@ -119,7 +119,7 @@ def _hold_jumps(readings: list[WellReading], ledger: Ledger) -> list[WellReading
         if len(rows) < JUMP_FROM:
             continue
         jumps_m = [later.level_m - earlier.level_m for earlier, later in pairwise(rows)]
-        usual_m = quantiles([abs(jump) for jump in jumps_m], n=10)[-1]
+        usual_m = quantiles([abs(jump) for jump in jumps_m], n=4)[-1]
         most_m = JUMP_TIMES * max(usual_m, JUMP_LEAST_M)
         for place, (there_m, back_m) in zip(places[1:], pairwise(jumps_m), strict=False):
             if there_m * back_m < 0.0 and min(abs(there_m), abs(back_m)) > most_m:

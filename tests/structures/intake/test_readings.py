@@ -144,6 +144,42 @@ def test_a_zero_in_a_shallow_well_is_water_at_the_mark():
     assert left_out(rows) == ["", ""]
 
 
+def months(depths, well="W1"):
+    return "".join(
+        f"{well},affected,{2020 + place // 12}-{place % 12 + 1:02d}-05,static,no,{depth},431\n"
+        for place, depth in enumerate(depths)
+    )
+
+
+COURSE = [8.0, 8.3, 8.6, 8.9, 9.1, 8.7, 8.1, 7.5, 7.1, 7.2, 7.4, 7.7] * 2
+
+
+def test_a_decimal_slip_waits_and_is_told_with_what_fits():
+    """Oracle: 7.4 typed as 0.74 among moves of 0.6 m at most (the demo's BI-W02)."""
+    slipped = [*COURSE]
+    slipped[10] = 0.74
+    found = read(months(slipped))
+    assert [one.left_out for one in found.readings].index("jump, waits for a decision") == 10
+    (told,) = found.findings
+    assert (told.level, told.rule, told.where) == ("hold", "LV-08", "r.csv line 12")
+    assert "a decimal slip (7.40 m)" in told.what
+
+
+def test_feet_in_one_row_are_told():
+    """Oracle: 24.28 ft are 7.40 m, the foot of 0.3048 m."""
+    feet = [*COURSE]
+    feet[10] = 24.28
+    (told,) = read(months(feet)).findings
+    assert "feet (7.40 m)" in told.what
+
+
+def test_a_rise_that_stays_is_no_slip():
+    """Oracle: rains that bring 4 m in a month, and a level that stays there."""
+    risen = [*COURSE[:12], *(depth - 4.0 for depth in COURSE[12:])]
+    assert read(months(risen)).findings == ()
+    assert read(months(COURSE)).findings == ()
+
+
 def test_decimal_commas_semicolons_and_other_digits():
     rows = "W1;affected;२०२७-०६-०३;static;no;८,३०;431,25\n"
     (found,) = read(rows, HEAD.replace(",", ";")).readings
