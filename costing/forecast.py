@@ -79,7 +79,8 @@ class Forecast:
 
     `appraisal` is the walk along the as-found line, `spread` its P10 to P90 where a range exists.
     `findings` say what its excess over the two sums asks for.
-    `to_complete` is the total less the worth of what was measured, at the same rates.
+    `to_complete` is the total less the worth of what was measured, at the same rates; contingency
+    and overhead of the whole count as still to come.
     """
 
     appraisal: Appraisal
@@ -170,6 +171,7 @@ def forecast(
             *_why_no_total(walk),
             *_of_the_line(as_found, lines),
             *_of_the_range(surprises, len(as_found.found)),
+            *((f"P10 to P90 are not known: {spread.why}.",) if spread and spread.why else ()),
             *books.sums.lacking,
             *why_not,
         ),

@@ -213,3 +213,15 @@ def test_a_recorded_range_gives_percentiles_around_the_total():
         assert told.spread.p10 < told.total < told.spread.p90
         spreads.append(told.spread.p90 - told.spread.p10)
     assert spreads[0] < spreads[1]
+
+
+def test_draws_that_dig_lifts_without_a_rate_have_no_percentiles_and_say_why():
+    """Oracle: the examples' schedule prices lifts to 7.5 m; some draws of a wide range go below."""
+    wide = tuple(
+        DrawnRange(one.offset_m, one.level_m - 4.0, one.level_m, one.level_m)
+        for one in pack("B").rock_line
+    )
+    told = forecast(Drawn(pack("B"), wide), (), Books(rates()), on=ON)
+    assert told.total == SANCTIONED
+    assert told.spread.p90 is None
+    assert any(one.startswith("P10 to P90 are not known: of 2000 draws") for one in told.reasons)
