@@ -9,7 +9,7 @@ from costing.plan.season import SEASONAL, WEEKLY
 from costing.plan.stock import Stock
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterator
+    from collections.abc import Callable, Iterator, Mapping
 
     from costing.plan.season import Season, SeasonSite
 
@@ -42,6 +42,35 @@ def greedy_plan(season: Season, weight: Weight) -> Stock:
         key=lambda site: (-site.gain / max(weight(season, site), NOTHING), site.site),
     )
     add_what_fits(stock, order)
+    return stock
+
+
+def guided_plan(
+    season: Season, share: Mapping[str, float], weeks: Mapping[str, list[int]]
+) -> Stock:
+    """Give a plan after parts of sites: the largest parts first, in the weeks of their parts.
+
+    Source: rounding of a relaxed programme; equal parts by gain for the share of all limits.
+
+    Parameters
+    ----------
+    season
+        Its fixed openings do not clash.
+    share
+        Part of each site that is built, 0 to 1; sites without one are not looked at.
+    weeks
+        Opening weeks to try before the earliest.
+    """
+    stock = opened_as_fixed(season)
+    sites = [one for one in season.sites if one.open_week is None and one.site in share]
+    rank = {one.site: one.gain / max(share_of_limits(season, one), NOTHING) for one in sites}
+    for site in sorted(sites, key=lambda one: (-round(share[one.site], 6), -rank[one.site])):
+        if stock.short_of(site):
+            continue
+        tried = (week for week in weeks[site.site] if stock.fits(site, week))
+        week = next(tried, None) or stock.earliest(site)
+        if week is not None:
+            stock.take(site, week)
     return stock
 
 

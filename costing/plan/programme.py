@@ -9,51 +9,34 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 from fractions import Fraction
-from math import gcd, inf, isfinite
+from math import gcd, inf
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
-from scipy.optimize import Bounds, LinearConstraint, milp
+from scipy.optimize import LinearConstraint
 from scipy.sparse import coo_array
 
 from costing.plan.season import SEASONAL, WEEKLY
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Iterable, Mapping
 
     from numpy.typing import NDArray
 
     from costing.plan.season import Season, SeasonSite
 
-GREATEST_BENEFIT: Final = 1e3  # benefits are scaled to it: the solver stops within 1e-6 of its sum
-SOLVER_SLACK: Final = 1e-6  # what the solver forgives in a row and in the sum, in its own units
+GREATEST_GAIN: Final = 1e3  # gains are scaled to it: the solver stops within 1e-6 of its sum
+ROW_LIMIT: Final = 1e3  # money and clay are scaled to it: the solver forgives 1e-6 of a row
 FINEST_STEP: Final = 10**6  # benefits of more decimals have no step that would tighten a bound
-ROW_LIMIT: Final = (
-    1e3  # a money row is scaled to it, so that the slack is a thousandth of a millionth
-)
-# The solver's status; where its nodes ran out it has a number of its own that scipy does not know.
-OPTIMAL, OUT_OF_TIME, NO_PLAN, NO_END = 0, 1, 2, 3
-
-
-@dataclass(frozen=True, slots=True)
-class Answer:
-    """What one round of the solver gives: a plan as weeks by site or None, and a bound.
-
-    `ended` says that the search came to its end, `timed` that the clock stopped it.
-    """
-
-    opened: dict[str, int] | None
-    bound: float
-    ended: bool
-    timed: bool
 
 
 @dataclass(slots=True)
 class Programme:
     """The programme of one season; sites that no plan can hold have no variable.
 
-    `covers` are sets of sites that exact arithmetic showed to exceed a limit together although the
-    solver, within its tolerance, took them; each becomes a row that forbids the set.
+    The first columns are `sites`, then `starts`, pairs of a site's place and a week. `covers` are
+    sets of sites that exact arithmetic showed to exceed a limit together although the solver,
+    within its tolerance, took them; each becomes a row that forbids the set.
     """
 
     season: Season
@@ -76,96 +59,75 @@ class Programme:
         """Sum of the benefits of all sites that have a variable, a bound before any solving."""
         return float(sum(site.gain for site in self.sites))
 
-    def solve(self, *, nodes: int, seconds: float) -> Answer:
-        """Solve with at most so many nodes of the search tree, within so many seconds.
+    @property
+    def scale(self) -> float:
+        """What benefits are multiplied by for the solver."""
+        greatest = max((site.benefit for site in self.sites), default=0.0)
+        return GREATEST_GAIN / (greatest or 1.0)
 
-        Source: HiGHS by scipy.optimize.milp.
+    def costs(self) -> NDArray[np.float64]:
+        """Give what the solver makes small, shape (sites + starts,): scaled benefits, negative."""
+        gains = [-site.benefit * self.scale for site in self.sites]
+        return np.concatenate([gains, np.zeros(len(self.starts))])
 
-        Raises
-        ------
-        RuntimeError
-            If the solver says that there is no plan or no bound; the fixed openings clash then, or
-            the programme is wrong.
+    def sides(self, kept: Mapping[str, bool]) -> tuple[NDArray, NDArray]:
+        """Give least and greatest values, shape (sites + starts,) each.
+
+        Parameters
+        ----------
+        kept
+            Sites that are settled for this solving, in or out; fixed openings are in anyway.
         """
-        if not self.sites:
-            return Answer({}, 0.0, ended=True, timed=False)
-        scale = GREATEST_BENEFIT / (max(site.benefit for site in self.sites) or 1.0)
-        found = milp(
-            np.concatenate(
-                [[-site.benefit * scale for site in self.sites], np.zeros(len(self.starts))]
-            ),
-            constraints=self._rows(),
-            bounds=self._bounds(),
-            integrality=np.ones(len(self.sites) + len(self.starts)),
-            options={"node_limit": nodes, "time_limit": seconds, "mip_rel_gap": 0.0},
-        )
-        if found.status in (NO_PLAN, NO_END):
-            raise RuntimeError(f"the solver found no plan: {found.message}")
-        return Answer(
-            self._opened(found.x),
-            self._bound(found.mip_dual_bound, scale),
-            ended=found.status == OPTIMAL,
-            timed=found.status == OUT_OF_TIME,
-        )
+        settled = {site.site: True for site in self.sites if site.open_week is not None}
+        settled = {**kept, **settled}
+        weeks = np.zeros(len(self.starts))
+        least = [float(settled.get(site.site, False)) for site in self.sites]
+        most = [float(settled.get(site.site, True)) for site in self.sites]
+        return np.concatenate([least, weeks]), np.concatenate([most, weeks + 1.0])
+
+    def rows(self) -> LinearConstraint:
+        """Give the rows: one a site that joins it to its weeks, all equal to 0, then the limits."""
+        entries, high = self._weekly_rows(len(self.sites))
+        for name, limit in self.season.seasonal.items():
+            if limit:  # at a limit of zero only sites that take nothing are left
+                uses = (Fraction(getattr(site, SEASONAL[name])) for site in self.sites)
+                share = Fraction(ROW_LIMIT) / Fraction(limit)
+                row = len(self.sites) + len(high)
+                entries += [(row, column, float(use * share)) for column, use in enumerate(uses)]
+                high.append(ROW_LIMIT)
+        for cover in self.covers:
+            inside = [column for column, site in enumerate(self.sites) if site.site in cover]
+            entries += [(len(self.sites) + len(high), column, 1.0) for column in inside]
+            high.append(len(inside) - 1.0)
+        count = len(self.sites)
+        entries += [(row, row, -1.0) for row in range(count)]
+        entries += [(place, count + n, 1.0) for n, (place, _) in enumerate(self.starts)]
+        row, column, value = (np.array(part) for part in zip(*entries, strict=True))
+        shape = (count + len(high), count + len(self.starts))
+        matrix = coo_array((value, (row, column)), shape=shape).tocsr()
+        return LinearConstraint(matrix, [0.0] * count + [-inf] * len(high), [0.0] * count + high)
+
+    def _weekly_rows(self, top: int) -> tuple[list[tuple[int, int, float]], list[float]]:
+        entries, high = [], []
+        for name, limit in self.season.weekly.items():
+            first = top + len(high) - 1
+            for n, (place, week) in enumerate(self.starts):
+                site = self.sites[place]
+                if need := float(getattr(site, WEEKLY[name])):
+                    column = len(self.sites) + n
+                    rows = range(first + week, first + site.close_week(week) + 1)
+                    entries += [(row, column, need) for row in rows]
+            high += [float(limit)] * self.season.weeks
+        return entries, high
 
     def forbid(self, cover: Iterable[str]) -> None:
         """Forbid a set of sites that exceeds a limit."""
         self.covers.append(frozenset(cover))
 
-    def _rows(self) -> LinearConstraint:
-        """Rows: site and its weeks agree; gangs and pumps by week; money, clay; forbidden sets."""
-        count = len(self.sites)
-        entries: list[tuple[int, int, float]] = [(row, row, -1.0) for row in range(count)]
-        entries += [(place, count + n, 1.0) for n, (place, _) in enumerate(self.starts)]
-        low, high = [0.0] * count, [0.0] * count
-        for name, limit in self.season.weekly.items():
-            top = len(high)
-            for n, (place, week) in enumerate(self.starts):
-                site = self.sites[place]
-                need = getattr(site, WEEKLY[name])
-                rows = range(top + week - 1, top + site.close_week(week)) if need else ()
-                entries += [(row, count + n, float(need)) for row in rows]
-            high += [float(limit)] * self.season.weeks
-        for name, limit in self.season.seasonal.items():
-            if limit:  # at a limit of zero only sites that take nothing are left
-                uses = enumerate(Fraction(getattr(site, SEASONAL[name])) for site in self.sites)
-                share = Fraction(ROW_LIMIT) / Fraction(limit)
-                entries += [(len(high), column, float(use * share)) for column, use in uses]
-                high.append(ROW_LIMIT)
-        for cover in self.covers:
-            inside = [column for column, site in enumerate(self.sites) if site.site in cover]
-            entries += [(len(high), column, 1.0) for column in inside]
-            high.append(len(inside) - 1.0)
-        low += [-inf] * (len(high) - count)
-        row, column, value = (np.array(part) for part in zip(*entries, strict=True))
-        shape = (len(high), count + len(self.starts))
-        return LinearConstraint(coo_array((value, (row, column)), shape=shape).tocsr(), low, high)
-
-    def _bounds(self) -> Bounds:
-        least = np.zeros(len(self.sites) + len(self.starts))
-        least[: len(self.sites)] = [site.open_week is not None for site in self.sites]
-        return Bounds(least, 1.0)
-
-    def _opened(self, values: NDArray | None) -> dict[str, int] | None:
-        if values is None:
-            return None
-        weeks = values[len(self.sites) :] > 0.5
-        return {
-            self.sites[place].site: week
-            for (place, week), taken in zip(self.starts, weeks, strict=True)
-            if taken
-        }
-
-    def _bound(self, value: float | None, scale: float) -> float:
-        """Give the solver's bound in benefits, lowered to the next sum that can be."""
-        if value is None or not isfinite(value):
-            return self.most
-        bound = -value / scale
-        step = benefit_step([site.gain for site in self.sites])
-        if step is not None:
-            steps = (-value + SOLVER_SLACK) / scale / float(step)
-            bound = min(bound, float(int(np.floor(steps)) * step))
-        return min(bound, self.most)
+    def opened(self, values: NDArray) -> dict[str, int]:
+        """Read a solution as opening weeks by site."""
+        taken = np.flatnonzero(values[len(self.sites) :] > 0.5)
+        return {self.sites[place].site: week for place, week in (self.starts[n] for n in taken)}
 
 
 def left_packed_weeks(season: Season, sites: Iterable[SeasonSite]) -> set[int]:

@@ -7,23 +7,25 @@ from fractions import Fraction
 from time import monotonic
 from typing import TYPE_CHECKING, Final
 
+from costing.plan import solver
 from costing.plan.clash import clashes
 from costing.plan.deletion import smallest_excess
-from costing.plan.greedy import add_what_fits, gang_weeks, greedy_plans
+from costing.plan.greedy import add_what_fits, gang_weeks, greedy_plans, guided_plan
 from costing.plan.programme import Programme
 from costing.plan.reasons import left_out
 from costing.plan.season import SEASONAL, Plan
 from costing.plan.stock import Stock
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Mapping
 
     from costing.plan.season import Season
 
-# The solver takes no start plan and tells nothing on its way, so each round starts anew.
-NODES: Final = (1, 100, 1000, 10_000, 1_000_000)
 SECONDS: Final = 25.0  # of the solver in all; 200 sites in 30 weeks stay under 30 s with it
-ROUND_SECONDS: Final = 12.0  # longest wait for an answer to `should_stop`
+NARROW_NODES: Final = 50
+NARROW_SECONDS: Final = 6.0
+ALL_NODES: Final = 100_000_000
+WHOLE: Final = 1e-6  # a share that near to 0 or 1 is one
 
 
 def plan_season(
@@ -36,9 +38,11 @@ def plan_season(
     """Choose sites and opening weeks so that the sum of benefits is as great as can be.
 
     Source: interface, season plan. The first plan is greedy by benefit per gang-week; every later
-    one is better. Limits are kept exactly: a plan that exceeds one within the solver's tolerance is
-    forbidden and solved again. The same season gives the same plan unless the clock ends a round,
-    which `timed` says.
+    one is better. Rounds: the programme without whole numbers, which gives a bound and guides a
+    plan; a narrow search in which all sites stay settled on which that and the best plan agree; the
+    whole search, less what the bound rules out. Limits are kept exactly: a plan that exceeds one
+    within the solver's tolerance is forbidden and looked for again. The same season gives the same
+    plan unless the clock ends a round, which `timed` says.
 
     Parameters
     ----------
@@ -63,52 +67,92 @@ def plan_season(
     """
     if found := clashes(season):
         raise ValueError(f"fixed openings clash: {found[0].what}")
-    search = _Search(season, on_better)
+    rounds = _Rounds(season, on_better, end=monotonic() + seconds)
     for stock in greedy_plans(season):
-        search.offer(stock)
-    end = monotonic() + seconds
-    rounds = iter(NODES)
-    nodes = next(rounds)
-    while nodes and not search.done and not should_stop() and (left := end - monotonic()) > 0.0:
-        if search.run_round(nodes, min(left, ROUND_SECONDS)):
-            nodes = next(rounds, 0)
-    return search.best
+        rounds.offer(stock)
+    for one in (rounds.relax, rounds.narrow, rounds.whole):
+        if rounds.best.proven or rounds.seconds_left <= 0.0 or should_stop():
+            break
+        one()
+    return rounds.best
 
 
-class _Search:
-    """The best plan so far and the lowest bound."""
+class _Rounds:
+    """The best plan so far, the lowest bound, and the ways to better them."""
 
-    def __init__(self, season: Season, on_better: Callable[[Plan], None]) -> None:
+    def __init__(self, season: Season, on_better: Callable[[Plan], None], *, end: float) -> None:
         self.season = season
         self.on_better = on_better
+        self.end = end
         self.programme = Programme(season)
         self.bound = self.programme.most
+        self.guide: solver.Relaxed | None = None
         self.gain = Fraction(-1)
-        self.ended = False
+        self.timed = False
         self.best: Plan | None = None
 
     @property
-    def done(self) -> bool:
-        """Whether no plan can be better, or the solver has nothing left to look at."""
-        return self.ended or self.best.proven
+    def seconds_left(self) -> float:
+        return self.end - monotonic()
 
-    def run_round(self, nodes: int, seconds: float) -> bool:
-        """Let the solver work once; false where its plan exceeds a limit and is now forbidden."""
-        answer = self.programme.solve(nodes=nodes, seconds=seconds)
-        self.bound = min(self.bound, answer.bound)
-        bound = max(self.bound, self.best.objective)
-        self.best = replace(self.best, bound=bound, timed=self.best.timed or answer.timed)
-        if answer.opened is None:
-            return True
-        stock = Stock(self.season, answer.opened)
-        if any(min(free) < 0 for free in stock.weekly.values()):
-            return True  # whole numbers that only the solver's rounding exceeds; nothing is gained
-        if cover := _cover(stock):
-            self.programme.forbid(cover)
-            return False
-        self.offer(stock)
-        self.ended = answer.ended
-        return True
+    def relax(self) -> None:
+        """Lower the bound by the programme without whole numbers and let it guide a plan."""
+        self.guide = solver.relax(self.programme, seconds=self.seconds_left)
+        if self.guide is None:
+            self._tell(self.bound, timed=True)
+            return
+        self._tell(self.guide.bound)
+        self.offer(guided_plan(self.season, self.guide.share, self.guide.weeks))
+
+    def narrow(self) -> None:
+        """Search among the sites on which the guide and the best plan do not agree.
+
+        Source: relaxation induced neighbourhood search.
+        """
+        if self.guide is None:
+            return
+        inside = {one.site for one in self.best.chosen}
+        kept = {
+            code: code in inside
+            for code, share in self.guide.share.items()
+            if abs(share - (code in inside)) <= WHOLE
+        }
+        self._search(kept, nodes=NARROW_NODES, seconds=NARROW_SECONDS)
+
+    def whole(self) -> None:
+        """Search among all sites, less those that a better plan must settle as the guide does."""
+        kept = {} if self.guide is None else self.guide.settled(above=self.best.objective)
+        answer = self._search(kept, nodes=ALL_NODES, seconds=self.seconds_left)
+        if answer is not None:
+            self._tell(answer.bound, timed=answer.timed)
+
+    def _search(
+        self, kept: Mapping[str, bool], *, nodes: int, seconds: float
+    ) -> solver.Answer | None:
+        """Let the solver search until its plan keeps all limits; None where time runs out first."""
+        while (left := min(seconds, self.seconds_left)) > 0.0:
+            answer = solver.search(self.programme, kept, nodes=nodes, seconds=left)
+            self.timed |= answer.timed
+            if answer.opened is None:
+                return answer
+            stock = Stock(self.season, answer.opened)
+            if cover := _cover(stock):
+                self.programme.forbid(cover)
+                continue
+            # Gangs and pumps are whole; only rounding of very many could exceed them.
+            if all(min(free) >= 0 for free in stock.weekly.values()):
+                self.offer(stock)
+            return answer
+        return None
+
+    def _tell(self, bound: float, *, timed: bool = False) -> None:
+        """Keep the lowest bound of all plans."""
+        self.bound = min(self.bound, bound)
+        self.timed |= timed
+        self.best = self._plan(self.best)
+
+    def _plan(self, plan: Plan) -> Plan:
+        return replace(plan, bound=max(self.bound, plan.objective), timed=self.timed)
 
     def offer(self, stock: Stock) -> None:
         """Tidy a plan and keep it where it is better than the best."""
@@ -117,11 +161,8 @@ class _Search:
         if gain <= self.gain:
             return
         self.gain = gain
-        timed = self.best is not None and self.best.timed
-        objective = float(gain)
-        self.best = Plan(
-            stock.openings(), left_out(stock), objective, max(self.bound, objective), timed
-        )
+        plan = Plan(stock.openings(), left_out(stock), float(gain), self.bound)
+        self.best = self._plan(plan)
         self.on_better(self.best)
 
 

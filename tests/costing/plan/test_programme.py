@@ -4,11 +4,12 @@ from fractions import Fraction
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 from scipy.optimize import linprog
 
 from costing.plan.programme import Programme, benefit_step, left_packed_weeks
+from costing.plan.solver import relax, search
 from tests.costing.plan.seasons import (
     benefit_of,
     best_benefit,
@@ -56,11 +57,29 @@ def relaxed_bound(season):
 @given(seasons())
 def test_bound_lies_between_the_best_plan_and_the_relaxation(season):
     """Oracles: every plan tried; the relaxed programme by another call of scipy."""
-    answer = Programme(season).solve(**WHOLE)
-    assert answer.ended
+    programme = Programme(season)
+    assume(programme.sites)
     best = float(best_benefit(season))
-    assert answer.bound >= best - 1e-9
-    assert answer.bound <= relaxed_bound(season) + 1e-6
+    answer = search(programme, {}, **WHOLE)
+    relaxed = relax(programme, seconds=20.0)
+    assert answer.ended
+    assert best - 1e-9 <= answer.bound <= relaxed.bound + 1e-9
+    assert relaxed.bound <= relaxed.optimum + 1e-6
+    assert relaxed.optimum <= relaxed_bound(season) + 1e-6
+
+
+@settings(max_examples=100)
+@given(seasons(), st.floats(0.0, 1.0))
+def test_every_better_plan_settles_as_the_prices_say(season, part):
+    """Oracle: every plan tried."""
+    programme = Programme(season)
+    assume(programme.sites)
+    relaxed = relax(programme, seconds=20.0)
+    above = part * relaxed.optimum
+    settled = relaxed.settled(above=above)
+    for opened in every_plan(season):
+        if benefit_of(season, opened) > above:
+            assert all((code in opened) == inside for code, inside in settled.items())
 
 
 @settings(max_examples=60)
@@ -87,17 +106,25 @@ def test_dominated_weeks_have_no_variable():
 def test_a_forbidden_set_is_not_chosen_again():
     season = one_season(*(one_site(code) for code in "ABC"), gangs=3)
     programme = Programme(season)
-    assert set(programme.solve(**WHOLE).opened) == set("ABC")
+    assert set(search(programme, {}, **WHOLE).opened) == set("ABC")
     programme.forbid("AB")
-    answer = programme.solve(**WHOLE)
+    answer = search(programme, {}, **WHOLE)
     assert (answer.bound, len(answer.opened)) == (2.0, 2)
     assert not {"A", "B"} <= set(answer.opened)
+
+
+def test_what_is_settled_is_kept_or_leaves_no_plan():
+    season = one_season(*(one_site(code, latest=2) for code in "ABC"), gangs=2)
+    programme = Programme(season)
+    assert set(search(programme, {"A": False}, **WHOLE).opened) == set("BC")
+    answer = search(programme, dict.fromkeys("ABC", True), **WHOLE)
+    assert (answer.opened, answer.bound, answer.ended) == (None, 0.0, True)
 
 
 def test_a_programme_without_a_plan_is_a_defect_of_the_caller():
     fixed = [one_site(code, open_week=1, gangs=2) for code in "AB"]
     with pytest.raises(RuntimeError, match="no plan"):
-        Programme(one_season(*fixed)).solve(**WHOLE)
+        search(Programme(one_season(*fixed)), {}, **WHOLE)
 
 
 @given(st.lists(st.integers(0, 60), min_size=1), st.sampled_from([1, 2, 4, 10, 1000]))
