@@ -34,6 +34,12 @@ def settings_districts(user: User) -> QuerySet[District]:
     return District.objects.filter(Q(pk__in=serves) | Q(pk__in=keeps)).order_by("code")
 
 
+def least_in_force(user: User, key: str) -> float:
+    """Least of what counts in the user's districts; the default where there are none."""
+    found = [settings_in_force(one)[key].value for one in settings_districts(user)]
+    return min(found, default=CHANGEABLE[key].value)
+
+
 def changeable_default(key: str) -> Default | None:
     return CHANGEABLE.get(key)
 

@@ -6,14 +6,15 @@ from django.shortcuts import render
 from django.views.decorators.http import require_GET
 
 from structures.access import MAY, Act
-from structures.intake.practice import HANDBOOK
 from structures.life.cautions import ALWAYS, CATALOGUE, CLOSING_SENTENCE, caution
 from structures.life.trench import spoil_distance_m
+from structures.queries.settings_sheet import least_in_force
 
 
 @require_GET
 def guide(request):
     least_m = spoil_distance_m(0.0)  # deeper trenches ask for more; their sheets say how much
+    entry_m = least_in_force(request.user, "depth_without_entry_m")
     context = {
         "who_may": [
             (act.value, sorted(str(role.label) for role in roles))
@@ -21,7 +22,7 @@ def guide(request):
             if act != Act.SEE
         ],
         "cautions": [
-            caution(code, distance_m=least_m, entry_m=HANDBOOK.depth_without_entry_m)
+            caution(code, distance_m=least_m, entry_m=entry_m)
             for code in CATALOGUE
             if code in ALWAYS
         ],

@@ -219,3 +219,12 @@ def test_help_prints_every_caution_that_always_holds(as_role):
     for said in ("Sand stands only while damp", "raw water", "1.50 m or more from the edge"):
         assert said in text
     assert "settle a rock line" in text
+    assert "From 1.2 m on nobody enters" in text
+
+
+def test_help_prints_the_depth_that_nobody_enters_in_their_districts(as_role, near):
+    """Oracle: handbook 11 and 12, 1.2 m or what a local code has in its place."""
+    change(as_role(Role.ADMIN), "depth_without_entry_m", "0.9", **ENGINEER)
+    text = words(as_role(Role.FIELD).get("/help/"))
+    assert "From 0.9 m on nobody enters" in text
+    assert "1.2 m" not in text
