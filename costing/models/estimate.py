@@ -26,7 +26,7 @@ def money_field(*, null: bool = False) -> models.DecimalField:
 
 
 class Estimate(Unchanging):
-    """One priced wall. `input_digest` is that of survey, rock line, wall, rates, draws and method.
+    """One priced wall. `input_digest` is that of survey, rock line, wall, rates, settings, method.
 
     Where a line is not known the sums are those of the known ones, `complete` is false and
     `sanction` null. `result` is the whole answer as the interface gives it.

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from datetime import date
+
 import pytest
 
 from structures.actions.rock import settle_rock_line
 from structures.actions.settings import change_setting
+from structures.actions.survey_reading import start_reading
 from structures.models import Role, Run
-from structures.queries.survey_reading import READ, reading_of
+from structures.queries.survey_reading import READ, reading_of, reading_params
 from structures.runs.queue import execute
 from tests import factories as make
 
@@ -59,3 +62,27 @@ def test_a_settled_line_and_a_changed_default_ask_for_another_reading(survey):
         by=make.a_user(Role.DISTRICT, survey.site.watershed.district),
     )
     assert reading_of(survey) is None
+    assert reading_params(survey)["wall"]["lift_m"] == 1.2
+
+
+def test_a_reading_is_made_with_the_practice_of_its_district(survey):
+    """Oracle: handbook 12; example A goes 4.15 m down to the bottom of the key."""
+    district = survey.site.watershed.district
+    assert "trench-deep" not in [
+        one["code"] for one in read(survey).result["appraisal"]["cautions"]
+    ]
+    change_setting(
+        key="licensed_depth_m",
+        value=4.0,
+        district=district,
+        reason="the local code",
+        decided=("A. Rao", "L-1", date(2026, 3, 1)),
+        by=make.a_user(Role.ADMIN, district),
+    )
+    assert reading_of(survey) is None
+    start_reading(survey=survey, by=survey.by)
+    told = {one["code"]: one["text"] for one in read(survey).result["appraisal"]["cautions"]}
+    assert "over 4 m" in told["trench-deep"]
+    assert (
+        "Decided by A. Rao, licence L-1, on 2026-03-01: the local code." in told["default-changed"]
+    )
