@@ -96,7 +96,7 @@ def test_hours_are_those_of_the_district_s_clocks(client):
     page = words(client.get(f"/files/{upload.pk}/"))
     assert f"{engineer.username}, 10 Apr 2026 01:40, Asia/Kolkata" in page
     start_run(kind="survey.read", params={"number": 1}, subject="site X", asked_by=engineer)
-    assert "Asked, Asia/Kolkata" in words(client.get("/runs/"))
+    assert "Hours are those of Asia/Kolkata." in words(client.get("/runs/"))
 
 
 def test_who_serves_nowhere_is_led_on(client):
