@@ -5,6 +5,7 @@ from __future__ import annotations
 from django import template
 
 from costing.queries.estimates import estimates_of, stale_reasons
+from costing.queries.ways import ways_of
 from structures.access import Act, may
 
 register = template.Library()
@@ -25,3 +26,9 @@ def estimate_panel(context, site):
         "may_ask": may(user, Act.REQUEST_ESTIMATE, site),
         "csrf_token": context.get("csrf_token"),
     }
+
+
+@register.simple_tag(takes_context=True)
+def ways(context, structure):
+    """What a structure waits for and where the reader may take it; without a sum of money."""
+    return ways_of(context["user"], structure)

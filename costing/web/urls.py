@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from django.urls import path
 
-from costing.web import estimates, front, schedules
+from costing.web import decisions, estimates, front, money_lines, moves, schedules
 
 app_name = "costing"
 
@@ -22,6 +22,13 @@ urlpatterns = [
         name="estimate-against",
     ),
     path("estimates/<int:pk>/<str:name>", estimates.estimate_document, name="estimate-document"),
+    path("decisions/", decisions.decisions, name="decisions"),
+    path("decisions/<str:code>/", decisions.decision, name="decision"),
+    path("decisions/<str:code>/acts/<str:act>/", decisions.decide, name="decide"),
+    path("sanctions/<int:pk>/", decisions.sanction_order, name="sanction-order"),
+    path("money-lines/", money_lines.money_lines, name="money-lines"),
+    path("money-lines/<int:pk>/", money_lines.money_line, name="money-line"),
+    path("sites/<str:code>/moves/<str:to>/", moves.move, name="move"),
     path("rates/", schedules.rates, name="rates"),
     path("rates/new/", schedules.new_schedule, name="new-schedule"),
     path("rates/<int:pk>/", schedules.schedule, name="schedule"),

@@ -64,6 +64,25 @@ def entry_by_code(user: User, text: str) -> Entry | None:
     return None if code is None else newest_entries(user).filter(code=code).first()
 
 
+def corrections_of(user: User, entry: Entry) -> QuerySet[Entry]:
+    return visible_entries(user).filter(corrects=entry).order_by("number")
+
+
+def with_acts(entries: QuerySet[Entry], text: str) -> QuerySet[Entry]:
+    """Entries whose act, subject or person holds the text."""
+    return entries.filter(
+        Q(act__icontains=text) | Q(subject__icontains=text) | Q(by_name__icontains=text)
+    )
+
+
+def entry_of_paper(user: User, paper: Paper) -> Entry | None:
+    """The entry that took a paper in; None for one taken over from before."""
+    found = visible_entries(user).filter(
+        structure=paper.structure_id, content__paper=paper.kind, content__digest=paper.digest
+    )
+    return found.order_by("number").first()
+
+
 def as_record(entry: Entry) -> chain.Entry:
     """Give an entry as the chain computes with it."""
     return chain.Entry(

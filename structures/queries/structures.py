@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from structures import access
-from structures.models import Structure
+from structures.models import Move, Paper, Structure
 
 if TYPE_CHECKING:
     from django.db.models import QuerySet
@@ -19,3 +19,19 @@ def visible_structures(user: User) -> QuerySet[Structure]:
     return found.select_related("site__watershed__district").prefetch_related(
         "designs__survey", "designs__rock_line", "designs__by"
     )
+
+
+def visible_papers(user: User) -> QuerySet[Paper]:
+    """Papers of all structures the user may see, newest first."""
+    found = Paper.objects.filter(structure__site__in=access.sites(user))
+    return (
+        found.select_related("structure__site__watershed__district", "by")
+        .prefetch_related("photos")
+        .order_by("-at", "-pk")
+    )
+
+
+def moves_of(structure: Structure) -> QuerySet[Move]:
+    """The moves of a structure, newest first."""
+    found = structure.moves.select_related("by", "entry").prefetch_related("papers")
+    return found.order_by("-number")

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from datetime import date
 from typing import Any
 
 from costing.actions.estimate import request_estimate
-from costing.models import Estimate, RateSchedule
-from structures.models import Role, Run, Site, Survey, Upload, User
+from costing.models import Estimate, MoneyLine, RateSchedule, Sanction
+from structures.actions.questions import ask
+from structures.models import Paper, Posting, Role, Run, Site, Survey, Upload, User
 from structures.runs.queue import execute
 from tests import factories as make
+from tests.papers import a_paper, a_photo
 
 SOUNDING = {
     "offset_m": 30.0,
@@ -37,6 +40,9 @@ class Office:
     schedules: tuple[RateSchedule, ...]
     run: Run
     upload: Upload
+    paper: Paper
+    lent: Posting
+    sanction: Sanction
 
     def value(self, collection: str, name: str) -> Any:
         """What stands for a part of an address below a collection; KeyError where nobody said it."""
@@ -66,6 +72,17 @@ class Office:
             ("surveys", "pk"): self.surveys[1].pk,
             ("soundings", "pk"): self.surveys[1].soundings.get().pk,
             ("structures", "code"): self.site.code,
+            ("papers", "kind"): "survey-permission",
+            ("papers", "paper_id"): self.paper.pk,
+            ("questions", "question_id"): self.paper.structure.questions.get().pk,
+            ("photos", "photo_id"): self.paper.photos.get().pk,
+            ("register", "code"): self.paper.structure.entries.first().code,
+            ("delegations", "posting_id"): self.lent.pk,
+            ("decisions", "code"): self.site.code,
+            ("acts", "act"): "send-back",
+            ("sanctions", "pk"): self.sanction.pk,
+            ("money-lines", "pk"): self.sanction.money_line.pk,
+            ("moves", "to"): "walked",
             ("uploads", "pk"): self.upload.pk,
             ("runs", "pk"): self.run.pk,
         }[collection, name]
@@ -105,4 +122,42 @@ def whole_office(word: str, price: str) -> Office:
         schedules=schedules,
         run=estimates[-1].run,
         upload=second.upload,
+        **_papers(word, people, site, estimates[-1]),
     )
+
+
+def _papers(word: str, people: dict[str, User], site: Site, estimate: Estimate) -> dict[str, Any]:
+    """A paper with its photo, a question, a posting lent long ago, money from before."""
+    district, structure = site.watershed.district, site.structure
+    photo = a_photo(site, people[Role.FIELD], what=f"{word} bank")
+    said = {"benchmark": f"{word} bridge", "photos": [photo.pk]}
+    paper = a_paper(structure, "survey-permission", people[Role.ENGINEER], **said)
+    asker = people[Role.DISTRICT]
+    ask(structure_id=structure.pk, about=f"{word} plan", text=f"Where is {word}?", by=asker)
+    lent = make.a_posting(
+        people[Role.ENGINEER],
+        Role.DISTRICT,
+        district,
+        delegated_by=asker,
+        valid_to=date(2022, 1, 31),
+    )
+    line = MoneyLine.objects.create(
+        district=district,
+        code=f"{word}-ML",
+        funder=f"{word}-F",
+        currency="INR",
+        amount=estimate.total,
+        valid_from=date(2022, 1, 1),
+        by=people[Role.PROGRAMME],
+    )
+    given = Sanction.objects.create(
+        structure=structure,
+        kind=Sanction.Kind.ADMINISTRATIVE,
+        number=f"{word}-AA",
+        day=date(2022, 1, 1),
+        currency="INR",
+        amount=estimate.total,
+        money_line=line,
+        by=asker,
+    )
+    return {"paper": paper, "lent": lent, "sanction": given}
