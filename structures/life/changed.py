@@ -34,7 +34,8 @@ def changed_default(default: Default, value: float, decision: Decision | None) -
 
 
 def _who(decision: Decision) -> str:
+    reason = " ".join(decision.reason.split()).rstrip(".")  # it was typed, perhaps in lines
     return (
         f"Decided by {decision.name}, licence {decision.licence}, on {decision.on.isoformat()}: "
-        f"{decision.reason.rstrip('.')}."
+        f"{reason}."
     )

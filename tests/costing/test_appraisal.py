@@ -72,7 +72,7 @@ def test_draws_tell_of_open_flanks_even_where_no_total_is_known():
     assert found.spread_note == "the estimate is incomplete"
 
 
-SIGNED = Decision("sichardt_c", 3000.0, "A. Rao", "L-1", date(2026, 3, 1), "pumped here.")
+SIGNED = Decision("sichardt_c", 3000.0, "A. Rao", "L-1", date(2026, 3, 1), "pumped\nhere.")
 
 
 def changed(**values):

@@ -10,6 +10,7 @@ from uuid import uuid4
 import pytest
 
 from costing.models import Estimate
+from structures.actions.settings import change_setting
 from structures.models import Role, Run
 from structures.runs.queue import execute
 from tests import factories as make
@@ -178,3 +179,39 @@ def test_a_schedule_tells_its_rates_as_text(office, schedule):
         assert float(rate["rate"]) == float(written[rate["item"], rate["from_m"]])
         assert rate["rate"] == f"{float(rate['rate']):.2f}"
     assert told["rate_count"] == len(told["rates"]) > 0
+
+
+def test_a_changed_setting_is_told_by_api_and_page_and_priced_by_the_next_asking(
+    priced, office, client, site, engineer
+):
+    district = site.watershed.district
+    change_setting(
+        key="film_lap_m",
+        value=0.4,
+        district=district,
+        reason="as welded here",
+        by=make.a_user(Role.DISTRICT, district),
+    )
+    told = "Settings were changed since: film lap 0.4 m, was 0.3 m."
+    (listed,) = office.get("/api/v1/estimates").json()["results"]
+    assert listed["stale"] == [told]
+    client.force_login(engineer)
+    assert told in client.get(f"/estimates/{listed['id']}/").content.decode()
+
+    again = office.post(PLACE, {}, format="json").json()
+    assert again["id"] != priced.json()["id"]
+    execute(again["id"])
+    # Oracle: handbook 6.3 by hand, gross = net w/(w - l) with l 0.40 in place of 0.30 m.
+    film = {
+        one["version"]: next(
+            float(line["quantity"])
+            for line in office.get(f"/api/v1/estimates/{one['id']}").json()["lines"]
+            if line["item"] == "film"
+        )
+        for one in office.get("/api/v1/estimates").json()["results"]
+    }
+    assert film[2] == pytest.approx(film[1] * 5.7 / 5.6, abs=0.01)
+    stale = {
+        one["version"]: one["stale"] for one in office.get("/api/v1/estimates").json()["results"]
+    }
+    assert stale[2] == []
