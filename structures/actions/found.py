@@ -83,12 +83,6 @@ def keep_found_levels(
     return rows, findings
 
 
-def levels_that_count(rows: Sequence[FoundLevel]) -> list[FoundLevel]:
-    """Leave out the levels that another one corrects."""
-    mended = {row.corrects_id for row in rows}
-    return [row for row in rows if row.pk not in mended]
-
-
 def _insist_open(strip: Strip, on: date) -> None:
     if strip.opened_on is None or on < strip.opened_on:
         raise Refused(

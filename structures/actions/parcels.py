@@ -199,6 +199,7 @@ def _kept(
     row: PhoneRecord, known: PhoneRecord | None, outcome: str, findings: tuple[Finding, ...]
 ) -> Answer:
     row.outcome, row.findings = outcome, as_documents(findings)
+    row.received_at = timezone.now()  # of a record that was refused before, that of its last coming
     row.save(force_insert=known is None, force_update=known is not None)
     result = {
         PhoneRecord.Outcome.KEPT: KEPT,

@@ -5,7 +5,7 @@ from __future__ import annotations
 from django.urls import path
 from rest_framework.routers import SimpleRouter
 
-from structures.api import devices, schema, viewsets
+from structures.api import devices, schema, viewsets, works
 
 router = SimpleRouter(trailing_slash=False)
 router.register("watersheds", viewsets.Watersheds, "watersheds")
@@ -13,6 +13,7 @@ router.register("sites", viewsets.Sites, "sites")
 router.register("surveys", viewsets.Surveys, "surveys")
 router.register("soundings", viewsets.Soundings, "soundings")
 router.register("structures", viewsets.Structures, "structures")
+router.register("strips", works.Strips, "strips")
 router.register("uploads", viewsets.Uploads, "uploads")
 router.register("runs", viewsets.Runs, "runs")
 
@@ -27,5 +28,7 @@ urlpatterns = [
         viewsets.SiteSurveys.as_view({"get": "list", "post": "create"}),
         name="site-surveys",
     ),
+    path("parcels", works.Parcels.as_view(), name="parcels"),
+    path("photos", works.Photos.as_view(), name="photos"),
     *router.urls,
 ]

@@ -6,14 +6,17 @@ from collections import defaultdict
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
+import numpy as np
 from django.db.models import Count, F, Prefetch, Q
 
 from structures import access
+from structures.drawing.strips import StripDrawn, StripsView
 from structures.intake.field_records import HOLDS, point_of
 from structures.life.holds import next_hold
 from structures.life.stages import CLEARED, DIGGING, HALTED, RISING
 from structures.models import Clash, HoldPoint, PhoneRecord, Strip, Structure, TrenchLook
 from structures.queries.districts import today_of
+from structures.queries.drawn_wall import drawn_wall
 from structures.queries.trench_day import against_entering, last_look, so_far
 
 if TYPE_CHECKING:
@@ -23,7 +26,7 @@ if TYPE_CHECKING:
     from django.db.models import QuerySet
 
     from structures.errors import Finding
-    from structures.models import User
+    from structures.models import FoundLevel, User
 
 AT_WORK: Final = (CLEARED, DIGGING, RISING, HALTED)
 WAITING: Final = "waiting"
@@ -222,3 +225,39 @@ def _cell(point: str, holds: list[HoldPoint], strip: Strip) -> Cell:
     seen = holds[-1]
     word = f"{len(last)} seen" if len(last) > 1 else seen.result
     return Cell(point, word, "done", seen)
+
+
+def strips_view(works: Works) -> StripsView | None:
+    """Give what a drawing of the strips shows; None where no strip is cut or no drawing frozen."""
+    drawn = drawn_wall(works.structure)
+    if drawn is None or not works.lines:
+        return None
+    ground = drawn.pack.ground
+    return StripsView(
+        site=works.structure.site.code,
+        ground_offset_m=np.array([one.offset_m for one in ground]),
+        ground_m=np.array([one.level_m for one in ground]),
+        rock_offset_m=drawn.offset_m,
+        rock_m=drawn.level_m,
+        strips=tuple(
+            StripDrawn(
+                line.strip.number,
+                line.strip.from_m,
+                line.strip.to_m,
+                line.strip.stands,
+                line.strip.covered_unseen,
+            )
+            for line in works.lines
+        ),
+        found=tuple(
+            (row.offset_m, row.level_m)
+            for line in works.lines
+            for row in levels_that_count(list(line.strip.found.all()))
+        ),
+    )
+
+
+def levels_that_count(rows: list[FoundLevel]) -> list[FoundLevel]:
+    """Leave out the levels of rock that another one corrects."""
+    mended = {row.corrects_id for row in rows}
+    return [row for row in rows if row.pk not in mended]

@@ -11,13 +11,14 @@ import pytest
 from django.db import DatabaseError, transaction
 
 from structures.actions import alarms, clay, day_book, strips
-from structures.actions.found import Found, keep_found_levels, levels_that_count
+from structures.actions.found import Found, keep_found_levels
 from structures.actions.holds import AskedBefore
 from structures.actions.trench import locked_strip, why_nobody_goes_in
 from structures.errors import Refused
 from structures.life.stages import CLEARED
 from structures.models import Entry, FoundLevel, Incident, Role, Strip
 from structures.queries.trench_day import look_that_counts
+from structures.queries.works import levels_that_count
 from tests.factories import a_user
 from tests.trench import DAY, TODAY, a_trench, as_drawn, ask, dig, look, photo, see
 
