@@ -57,7 +57,7 @@ def effect_json(
         "reasons": list(suggestion.reasons),
         "rule": suggestion.rule,
         "more_years": {"years": MORE_YEARS, "smallest_seen_m": found and found.more_years_m},
-        "after_first_rains": _filled(found),
+        "first_rains": _filling(found),
         "change": {
             "affected_m": rivals and rivals.change_affected_m,
             "control_m": rivals and rivals.change_control_m,
@@ -69,10 +69,10 @@ def effect_json(
     }
 
 
-def _filled(found: Estimate | None) -> dict[str, Any] | None:
-    if found is None or found.filled is None:
+def _filling(found: Estimate | None) -> dict[str, Any] | None:
+    if found is None or found.filling is None:
         return None
-    return asdict(found.filled) | {"until": found.filled.until.isoformat()}
+    return asdict(found.filling) | {"until": found.filling.until.isoformat()}
 
 
 def _rivals(rivals: Rivals | None) -> list[dict[str, Any]]:

@@ -26,6 +26,7 @@ ALWAYS: Final = frozenset(
         "downstream",
     }
 )
+CONTRADICTED: Final = "rock-line-above-test"  # a test went deeper than the settled line
 WORDS: Final[dict[Level, str]] = {  # of the levels, as they are printed
     "block": "BLOCK",
     "hold": "HOLD",
@@ -337,10 +338,10 @@ CATALOGUE: Final[dict[str, tuple[Level, str]]] = {
     "effect-first-filling": (
         "warn",
         (
-            "The change grew with the first rains: the {count} pairs until {until} surely stand short of "
-            "the later ones, so one step at completion fits badly. With a level of their own for these "
-            "pairs the later ones stand {effect_m:+.2f} m ({low_m:+.2f} to {high_m:+.2f}). An engineer "
-            "decides which of the two tells of the wall."
+            "The gain grew with the first rains: the {pairs} pairs until {until} surely stand short of "
+            "the later ones and have a level of their own, so the effect is that of the filled ground. "
+            "One step at completion would give {one_step_m:+.2f} m ({one_step_low_m:+.2f} to "
+            "{one_step_high_m:+.2f}). An engineer looks at both."
         ),
     ),
     "effect-one-control": (

@@ -25,10 +25,9 @@ class Limits:
 
 @dataclass(frozen=True, slots=True)
 class Measured:
-    """A gain with its interval and what it rests on; a gain that was not measured is None.
+    """A gain of affected against control wells with its interval, and what it rests on.
 
-    Of wells it is affected against control; of the head across the wall, head now against head
-    before, and `controls` does not count.
+    A gain that was not measured is None.
     """
 
     gain_m: float | None
@@ -37,15 +36,29 @@ class Measured:
     smallest_seen_m: float | None
     pairs: tuple[int, int]
     full_years: tuple[int, int]
-    controls: int = 0
+    controls: int
 
     def __post_init__(self) -> None:
-        ends = (self.low_m, self.gain_m, self.high_m)
-        if None in ends:
-            if any(end is not None for end in ends):
-                raise ValueError("a gain has both ends of its interval or is not known")
-        elif not self.low_m <= self.gain_m <= self.high_m:
-            raise ValueError(f"{self.gain_m} lies outside {self.low_m} to {self.high_m}")
+        _insist_order(self.low_m, self.gain_m, self.high_m)
+
+
+@dataclass(frozen=True, slots=True)
+class Head:
+    """Head across the wall, now against before, with its range; None is not known.
+
+    `spread_m` is how far heads lay apart before; a gain below it would not show. `pairs` and
+    `full_years` are those after completion.
+    """
+
+    gain_m: float | None
+    low_m: float | None
+    high_m: float | None
+    spread_m: float | None
+    pairs: int
+    full_years: int
+
+    def __post_init__(self) -> None:
+        _insist_order(self.low_m, self.gain_m, self.high_m)
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,11 +85,11 @@ def from_readings(wells: Measured, limits: Limits) -> Suggestion:
     """
     if not wells.controls:
         return Suggestion("not known", ("No control well: rain and wall cannot be told apart.",))
-    return _from_gain(wells, limits, "Wells in the reach")
+    return _from_gain(wells, limits)
 
 
 def judge(
-    head: Measured | None,
+    head: Head | None,
     wells: Measured | None,
     limits: Limits,
     *,
@@ -92,16 +105,12 @@ def judge(
     Parameters
     ----------
     head
-        Head across the wall, now against before; None where no pipes stand at the wall.
+        Of the pipes on the two faces of the wall; None where none stand there.
     wells
         Affected against control wells; None where none were read.
     """
     by_wells = from_readings(wells, limits) if wells else _nothing("No well was read.")
-    by_head = (
-        _from_gain(head, limits, "Water at the upstream face against the downstream face")
-        if head
-        else _nothing("Head across the wall was not read.")
-    )
+    by_head = _from_head(head, limits) if head else _nothing("Head across the wall was not read.")
     verdict, why = _together(by_head.verdict, by_wells.verdict)
     reasons = [*by_head.reasons, *by_wells.reasons, *why]
     if forecast is not None:
@@ -124,24 +133,39 @@ def _together(head: Verdict, wells: Verdict) -> tuple[Verdict, tuple[str, ...]]:
     return min(head, wells, key=VERDICTS.index), (words,)
 
 
-def _from_gain(gain: Measured, limits: Limits, who: str) -> Suggestion:
+def _from_head(head: Head, limits: Limits) -> Suggestion:
+    who = "The head across the wall"
+    if head.full_years < limits.least_full_years or head.pairs < limits.least_pairs:
+        return _nothing(
+            f"{who}: {head.full_years} full water years and {head.pairs} readings of both pipes "
+            f"after completion; {limits.least_full_years} and {limits.least_pairs} are needed."
+        )
+    if head.gain_m is None:
+        return _nothing(f"{who}: how high it stood before is not known.")
+    return _weighed(head, head.spread_m, limits, f"{who} grew by")
+
+
+def _from_gain(gain: Measured, limits: Limits) -> Suggestion:
     reason = _too_little(gain, limits)
     if reason:
-        return _nothing(f"{who}: {reason}")
-    seen = f"{who} gained {_range(gain)}"
+        return _nothing(f"Wells in the reach: {reason}")
+    return _weighed(gain, gain.smallest_seen_m, limits, "Wells in the reach gained")
+
+
+def _weighed(
+    gain: Measured | Head, smallest_m: float | None, limits: Limits, who: str
+) -> Suggestion:
+    seen = f"{who} {_range(gain)}"
     least = f"{limits.least_effect_m:g} m, the least that matters"
     if gain.low_m >= limits.least_effect_m:
         return Suggestion("holds", (f"{seen}; even the low end reaches {least}.",))
     if gain.low_m > 0.0:
         return Suggestion("holds in part", (f"{seen}; the low end does not reach {least}.",))
-    if gain.smallest_seen_m is not None and gain.smallest_seen_m <= limits.least_effect_m:
-        words = f"{seen}, an interval that reaches down to no gain; a gain of {least}, would have been seen."
-        return Suggestion("does not hold", (words,))
-    smallest = (
-        "" if gain.smallest_seen_m is None else f" ({gain.smallest_seen_m:.2f} m would have been)"
-    )
-    words = f"{seen}, an interval that reaches down to no gain; {least}, could have been missed{smallest}."
-    return _nothing(words)
+    seen += ", which reaches down to no gain"
+    if smallest_m is not None and smallest_m <= limits.least_effect_m:
+        return Suggestion("does not hold", (f"{seen}; {least}, would have been seen.",))
+    smallest = "" if smallest_m is None else f" ({smallest_m:.2f} m would have been seen)"
+    return _nothing(f"{seen}; {least}, could have been missed{smallest}.")
 
 
 def _too_little(gain: Measured, limits: Limits) -> str:
@@ -171,7 +195,16 @@ def _forecast_words(forecast: Forecast, wells: Measured | None) -> str:
     return f"{said}; the wells agree with it."
 
 
-def _range(gain: Measured) -> str:
+def _insist_order(low_m: float | None, gain_m: float | None, high_m: float | None) -> None:
+    ends = (low_m, gain_m, high_m)
+    if None in ends:
+        if any(end is not None for end in ends):
+            raise ValueError("a gain has both ends of its interval or is not known")
+    elif not low_m <= gain_m <= high_m:
+        raise ValueError(f"{gain_m} lies outside {low_m} to {high_m}")
+
+
+def _range(gain: Measured | Head) -> str:
     middle, low, high = (
         f"{round(one, 2) + 0.0:.2f}" for one in (gain.gain_m, gain.low_m, gain.high_m)
     )

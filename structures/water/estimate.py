@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import asdict, dataclass
 from typing import TYPE_CHECKING, Final
 
 import numpy as np
@@ -34,14 +34,14 @@ MORE_YEARS: Final = 2  # of readings, for what they would show
 
 
 @dataclass(frozen=True, slots=True)
-class Filled:
-    """The step of the filled ground: the pairs of the first rains have a level of their own."""
+class Filling:
+    """The first rains had a level of their own; beside it what one step at completion would give."""
 
     until: date
     pairs: int
-    effect_m: float
-    low_m: float
-    high_m: float
+    one_step_m: float
+    one_step_low_m: float
+    one_step_high_m: float
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -49,7 +49,7 @@ class Estimate:
     """The effect with its interval, and the plain forms beside it for those who check.
 
     `more_years_m` is the smallest effect that two more years of the same readings would let see;
-    `filled` stands beside the effect where the first rains surely came short of later times.
+    with a `filling` the effect is that of the filled ground.
     """
 
     effect_m: float
@@ -61,7 +61,7 @@ class Estimate:
     pooled: Contrast | None = None
     unequal: Contrast | None = None
     bartlett: Regression | None = None
-    filled: Filled | None = None
+    filling: Filling | None = None
 
 
 def used_pairs(pairs: Pairs) -> NDArray[np.bool_]:
@@ -93,19 +93,19 @@ def estimate_step(
     columns = np.column_stack(
         [np.ones(used.size), pairs.after, *(pairs.season().T if seasons else ())]
     )
-    filled = _filled(pairs, used, columns, completed, rules, rng)
-    if filled is not None:
-        told.append(
-            caution(
-                "effect-first-filling",
-                count=filled.pairs,
-                until=filled.until.isoformat(),
-                effect_m=filled.effect_m,
-                low_m=filled.low_m,
-                high_m=filled.high_m,
-            )
-        )
-    return _serial(pairs, used, columns, rules, rng, filled), tuple(told)
+    short = find_filling(pairs, columns, completed, rules)
+    if short is None:
+        return _serial(pairs, used, columns, rules, rng), tuple(told)
+    one = _law(pairs, used, columns, rng)[0]
+    filling = Filling(
+        filling_until(completed, rules),
+        int((short & used).sum()),
+        one.quantile(0.5),
+        *one.interval(rules.confidence),
+    )
+    told.append(caution("effect-first-filling", **asdict(filling)))
+    wider = np.column_stack([columns, short])
+    return _serial(pairs, used, wider, rules, rng, filling), tuple(told)
 
 
 def _serial(
@@ -114,7 +114,7 @@ def _serial(
     columns: NDArray[np.float64],
     rules: EffectRules,
     rng: np.random.Generator,
-    filled: Filled | None,
+    filling: Filling | None = None,
 ) -> Estimate:
     """Give the interval of 10.5; among the pairs used, dry ones count as bounds."""
     law, design = _law(pairs, used, columns, rng)
@@ -124,9 +124,20 @@ def _serial(
     factor = widening(design, days, values, years=MORE_YEARS)
     dry = bool(pairs.bounded[used].any())
     beside = {} if dry else _beside(values, columns[used])
-    words = _words(days, rules, seasons=columns.shape[1] > 2, dry=dry)
+    terms = [
+        "annual cosine and sine beside the step" if columns.shape[1] > 3 else "no seasonal terms",
+        "the first rains with a level of their own" if filling else "",
+        "dry pairs drawn below their bounds" if dry else "",
+    ]
     return Estimate(
-        law.quantile(0.5), low, high, words, smallest, factor * smallest, filled=filled, **beside
+        law.quantile(0.5),
+        low,
+        high,
+        _words(days, terms, rules),
+        smallest,
+        factor * smallest,
+        filling=filling,
+        **beside,
     )
 
 
@@ -138,22 +149,6 @@ def _law(
     if not (below | above).any():
         return design.mixture(values, 1), design
     return bounded_mixture(design, Bounded(values, below, above), 1, rng), design
-
-
-def _filled(
-    pairs: Pairs,
-    used: NDArray[np.bool_],
-    columns: NDArray[np.float64],
-    completed: date,
-    rules: EffectRules,
-    rng: np.random.Generator,
-) -> Filled | None:
-    filling = find_filling(pairs, columns, completed, rules)
-    if filling is None:
-        return None
-    law, _design = _law(pairs, used, np.column_stack([columns, filling]), rng)
-    until, count = filling_until(completed, rules), int((filling & used).sum())
-    return Filled(until, count, law.quantile(0.5), *law.interval(rules.confidence))
 
 
 def _pooled(pairs: Pairs, used: NDArray[np.bool_], rules: EffectRules) -> Estimate:
@@ -183,15 +178,10 @@ def _beside(values: NDArray[np.float64], columns: NDArray[np.float64]) -> dict[s
     }
 
 
-def _words(days: NDArray[np.float64], rules: EffectRules, *, seasons: bool, dry: bool) -> str:
+def _words(days: NDArray[np.float64], terms: list[str], rules: EffectRules) -> str:
     gap = float(np.median(np.diff(days)))
     weighed = (
         "Difference of half-month pairs, after less before, weighed over serial correlations of "
         f"0 to 0.95 a median gap of {gap:.1f} days by their restricted likelihood"
     )
-    parts = [
-        weighed,
-        "annual cosine and sine beside the step" if seasons else "no seasonal terms",
-        "dry pairs drawn below their bounds" if dry else "",
-    ]
-    return f"{'; '.join(filter(None, parts))}; {rules.confidence:.0%} interval."
+    return f"{'; '.join(filter(None, [weighed, *terms]))}; {rules.confidence:.0%} interval."

