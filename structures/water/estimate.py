@@ -123,7 +123,7 @@ def _serial(
     days, values = pairs.middle_day[used], pairs.difference_m[used]
     factor = widening(design, days, values, years=MORE_YEARS)
     dry = bool(pairs.bounded[used].any())
-    beside = {} if dry else _beside(values, columns[used])
+    beside = {} if dry else _beside(values, columns[used], rules)
     terms = [
         "annual cosine and sine beside the step" if columns.shape[1] > 3 else "no seasonal terms",
         "the first rains with a level of their own" if filling else "",
@@ -154,7 +154,7 @@ def _law(
 def _pooled(pairs: Pairs, used: NDArray[np.bool_], rules: EffectRules) -> Estimate:
     """Give the pooled interval of 10.2, for few pairs."""
     values = pairs.difference_m[used]
-    beside = _beside(values, np.column_stack([np.ones(values.size), pairs.after[used]]))
+    beside = _beside(values, np.column_stack([np.ones(values.size), pairs.after[used]]), rules)
     pooled = beside["pooled"]
     low, high = pooled.interval_m(rules.confidence)
     smallest = smallest_seen_m((high - low) / 2.0, pooled.degrees, rules.confidence)
@@ -166,7 +166,9 @@ def _pooled(pairs: Pairs, used: NDArray[np.bool_], rules: EffectRules) -> Estima
     return Estimate(pooled.change_m, low, high, words, smallest, **beside)
 
 
-def _beside(values: NDArray[np.float64], columns: NDArray[np.float64]) -> dict[str, object]:
+def _beside(
+    values: NDArray[np.float64], columns: NDArray[np.float64], rules: EffectRules
+) -> dict[str, object]:
     """Give the check forms: pooled, unequal variances, Bartlett errors."""
     after = columns[:, 1] == 1.0
     before_m, after_m = values[~after], values[after]
@@ -174,7 +176,7 @@ def _beside(values: NDArray[np.float64], columns: NDArray[np.float64]) -> dict[s
     return {
         "pooled": pooled_contrast(before_m, after_m),
         "unequal": unequal_contrast(before_m, after_m) if scatters else None,
-        "bartlett": regress(columns, values),
+        "bartlett": regress(columns, values, lag=rules.serial_lag),
     }
 
 

@@ -13,13 +13,18 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, slots=True)
 class EffectRules:
-    """Settings of a comparison; `year_starts` is (month, day) of the water year."""
+    """Settings of a comparison.
+
+    `year_starts` is (month, day) of the water year; `serial_lag` the lag of the Bartlett check
+    form, by the rule of handbook 12 where None.
+    """
 
     least_full_years: int = int(EFFECT["effect_least_full_years"].value)
     least_effect_m: float = EFFECT["effect_least_m"].value
     confidence: float = EFFECT["effect_confidence"].value
     least_pairs: int = int(EFFECT["effect_least_pairs"].value)
     months_of_full_year: int = int(EFFECT["effect_months_of_full_year"].value)
+    serial_lag: int | None = None
     year_starts: tuple[int, int] = (6, 1)  # handbook 12
 
     def __post_init__(self) -> None:
