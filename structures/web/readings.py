@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 from structures.drawing.section import draw_section
 from structures.drawing.survey import view_section
 from structures.ground.rock_line import RockLine
-from structures.life.cautions import ALWAYS
+from structures.life.cautions import ALWAYS, CONTRADICTED
 
 if TYPE_CHECKING:
     from structures.intake.pack import SurveyPack
@@ -20,8 +20,11 @@ def reading_context(run: Run | None) -> dict[str, Any]:
     if not result:
         return {"appraisal": None}
     cautions = result["appraisal"]["cautions"]
+    source = result["appraisal"]["rock"]["source"]
     return {
         "appraisal": result["appraisal"],
+        # A line is to be settled where none was given, or where a test has proved it wrong.
+        "line_waits": source != "given" or any(one["code"] == CONTRADICTED for one in cautions),
         "figures": result["figures"],
         "doubts": [one for one in cautions if one["code"] not in ALWAYS],
         "always": [one for one in cautions if one["code"] in ALWAYS],

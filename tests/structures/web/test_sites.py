@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import pytest
 
 from structures.models import Role, Run, Site
@@ -161,6 +163,20 @@ def test_the_estimated_line_is_settled_as_it_is(office, site, engineer):
     line = survey.rock_lines.get()
     assert [one["level_m"] for one in line.points] == [one["level_m"] for one in estimated]
     assert line.rests_on == ["pit@20", "pit@40"]
+
+
+@pytest.mark.parametrize(
+    ("depth_m", "asked"), [(2.0, "Try another wall"), (9.0, "Settle the rock line")]
+)
+def test_the_next_step_is_the_line_where_a_probe_went_below_it(
+    office, site, engineer, depth_m, asked
+):
+    """Example A brings a settled line; at 40 m it lies less than 9 m below ground."""
+    probe = {"offset_m": 40.0, "depth_m": depth_m, "refused": False}
+    read(make.a_survey(site, engineer, probes=[probe]))
+    page = words(office.get(f"/sites/{site.code}/"))
+    button = re.search(r'<a class="act" href="[^"]+">([^<]+)</a>', page)
+    assert button[1] == asked
 
 
 def test_a_rock_page_opened_before_a_newer_line_or_survey_settles_nothing(office, site, engineer):
