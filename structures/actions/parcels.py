@@ -247,9 +247,12 @@ def _strip_of(structure: Structure, sent: Sent) -> Strip | None:
 
 
 def _received(by: User, times: Times) -> datetime:
-    """Give the time of receiving; where every district stands still, that of sending."""
-    moving = access.districts(by).filter(as_of__isnull=True).exists()
-    return times.received_at if moving or times.sent_at is None else times.sent_at
+    """Give the time of receiving; where every district stands still, that of sending, or its day."""
+    still = access.districts(by).order_by("code").first()
+    if still is None or access.districts(by).filter(as_of__isnull=True).exists():
+        return times.received_at
+    end_of_day = datetime.max.time().replace(microsecond=0)
+    return times.sent_at or datetime.combine(still.as_of, end_of_day, ZoneInfo(still.zone))
 
 
 def _zone(by: User) -> ZoneInfo:

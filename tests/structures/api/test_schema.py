@@ -11,6 +11,7 @@ from rest_framework.test import APIClient
 
 from structures.actions.surveys import accept_survey
 from structures.intake.survey_pack import read_pack_bytes
+from structures.models import Strip
 from structures.runs.queue import execute
 from tests import factories as make
 
@@ -59,7 +60,7 @@ def test_the_schema_comes_as_yaml_where_asked_for():
 def test_every_collection_is_there_and_says_how_it_fails(schema):
     collections = {
         *("watersheds", "sites", "surveys", "soundings", "structures", "uploads", "runs"),
-        *("rate-schedules", "estimates"),
+        *("rate-schedules", "estimates", "strips"),
     }
     for name in collections:
         assert {f"/api/v1/{name}", f"/api/v1/{name}/{key(name)}"} <= set(schema["paths"])
@@ -110,6 +111,7 @@ def test_answers_fit_their_schema(schema, site, engineer, office):
     pack = make.pack_bytes(soundings=[SOUNDING])
     accept_survey(site_id=site.pk, name="survey.json", data=pack, by=engineer)
     make.a_schedule(site.watershed.district, engineer)
+    Strip.objects.create(structure=site.structure, number=1, from_m=8.88, to_m=14.88)
     asked = office.post(f"/api/v1/sites/{site.code}/estimates", {}, format="json")
     execute(asked.json()["id"])
     for path, method, operation in operations(schema):

@@ -5,11 +5,28 @@ from __future__ import annotations
 from dataclasses import dataclass
 from datetime import date
 from typing import Any
+from uuid import uuid4
+
+from django.utils import timezone
 
 from costing.actions.estimate import request_estimate
 from costing.models import Estimate, MoneyLine, RateSchedule, Sanction
+from structures.actions.day_book import tell_incident
 from structures.actions.questions import ask
-from structures.models import Paper, Posting, Role, Run, Site, Survey, Upload, User
+from structures.actions.strips import cut_wall
+from structures.models import (
+    Clash,
+    HoldPoint,
+    Paper,
+    PhoneRecord,
+    Posting,
+    Role,
+    Run,
+    Site,
+    Survey,
+    Upload,
+    User,
+)
 from structures.runs.queue import execute
 from tests import factories as make
 from tests.papers import a_paper, a_photo
@@ -83,6 +100,12 @@ class Office:
             ("sanctions", "pk"): self.sanction.pk,
             ("money-lines", "pk"): self.sanction.money_line.pk,
             ("moves", "to"): "walked",
+            ("strips", "number"): 1,
+            ("strips", "kind"): "found-level",
+            ("strips", "pk"): self.site.structure.strips.get(number=1).pk,
+            ("sites", "kind"): "look",
+            ("holds", "hold_id"): self.site.structure.strips.get(number=1).holds.get().pk,
+            ("clashes", "clash_id"): self.site.phone_records.get().clashes.get().pk,
             ("uploads", "pk"): self.upload.pk,
             ("runs", "pk"): self.run.pk,
         }[collection, name]
@@ -114,6 +137,7 @@ def whole_office(word: str, price: str) -> Office:
         execute(str(run.pk))
     estimates = tuple(Estimate.objects.filter(site=site).order_by("version"))
     assert len(estimates) == len(schedules)
+    _trench(word, people, site)
     return Office(
         people=people,
         site=site,
@@ -123,6 +147,32 @@ def whole_office(word: str, price: str) -> Office:
         run=estimates[-1].run,
         upload=second.upload,
         **_papers(word, people, site, estimates[-1]),
+    )
+
+
+def _trench(word: str, people: dict[str, User], site: Site) -> None:
+    """Strips, a hold point that waits, an accident, and two forms of one record of a phone."""
+    structure, field = site.structure, people[Role.FIELD]
+    cut_wall(structure_id=structure.pk, by=people[Role.ENGINEER])
+    strip, now = structure.strips.get(number=1), timezone.now()
+    HoldPoint.objects.create(
+        strip=strip, hold="H1", asked_at=now, asked_by=field, readings={"peg_level_m": 103.0}
+    )
+    day = timezone.localdate()
+    tell_incident(
+        structure_id=structure.pk, day=day, by=field, kind="near", what=f"A slab slid at {word}."
+    )
+    record = PhoneRecord.objects.create(
+        id=uuid4(),
+        site=site,
+        kind="day-sheet",
+        content={"type": "day-sheet", "site": site.code, "done": f"Dug at {word}."},
+        digest="1" * 64,
+        by=field,
+        outcome=PhoneRecord.Outcome.KEPT,
+    )
+    Clash.objects.create(
+        record=record, content={**record.content, "people": 4}, digest="2" * 64, by=field
     )
 
 
