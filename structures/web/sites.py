@@ -32,6 +32,7 @@ from structures.queries.sites import (
 )
 from structures.queries.survey_reading import reading_of, reading_params
 from structures.queries.surveys import names_of_tests, pack_of, surveys_of, visible_rock_lines
+from structures.queries.works import unseen_strips
 from structures.web.figures import figure_rows
 from structures.web.lists import sheet_of
 from structures.web.readings import drawn_alone, reading_context
@@ -85,6 +86,7 @@ def site(request, code):
         "lines": visible_rock_lines(user).filter(survey__site=found)[:3],
         "changes": changes_of(found),
         "stage_words": STAGES[found.structure.stage],
+        "unseen": unseen_strips(found.structure),
         "may_edit": may(user, Act.EDIT_SITE, found),
         "may_survey": may(user, Act.ACCEPT_SURVEY, found),
         "may_settle": may(user, Act.SETTLE_ROCK, found),
