@@ -54,10 +54,30 @@ class Programme:
             if week in useful or site.open_week is not None
         ]
 
-    @property
-    def most(self) -> float:
-        """Sum of the benefits of all sites that have a variable, a bound before any solving."""
-        return float(sum(site.gain for site in self.sites))
+    def first_bound(self) -> float:
+        """Bound before any solving: the least that no limit, or one limit alone, lets be gained.
+
+        Source: relaxation to one limit, that of a week taken over the whole season; the sites that
+        gain most for what they take fill it, the last of them in part.
+        """
+        bounds = [sum((site.gain for site in self.sites), Fraction(0))]
+        for name, limit in self.season.seasonal.items():
+            uses = [Fraction(getattr(site, SEASONAL[name])) for site in self.sites]
+            bounds.append(self._filled(uses, Fraction(limit)))
+        for name, limit in self.season.weekly.items():
+            uses = [Fraction(getattr(one, WEEKLY[name]) * one.duration_weeks) for one in self.sites]
+            bounds.append(self._filled(uses, Fraction(limit * self.season.weeks)))
+        return float(min(bounds))
+
+    def _filled(self, uses: list[Fraction], left: Fraction) -> Fraction:
+        gained = Fraction(0)
+        pairs = zip(self.sites, uses, strict=True)
+        worth = [site.gain / use if use else inf for site, use in pairs]
+        for place in sorted(range(len(uses)), key=lambda place: -worth[place]):
+            share = min(Fraction(1), left / uses[place]) if uses[place] else Fraction(1)
+            gained += share * self.sites[place].gain
+            left -= share * uses[place]
+        return gained
 
     @property
     def scale(self) -> float:

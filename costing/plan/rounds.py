@@ -85,7 +85,7 @@ class _Rounds:
         self.on_better = on_better
         self.end = end
         self.programme = Programme(season)
-        self.bound = self.programme.most
+        self.bound = self.programme.first_bound()
         self.guide: solver.Relaxed | None = None
         self.gain = Fraction(-1)
         self.timed = False

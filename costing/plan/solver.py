@@ -149,10 +149,10 @@ def search(programme: Programme, kept: Mapping[str, bool], *, nodes: int, second
 def _bound(programme: Programme, value: float | None) -> float:
     """Give the solver's bound in benefits, lowered to the next sum that can be."""
     if value is None or not isfinite(value):
-        return programme.most
+        return programme.first_bound()
     bound = -value / programme.scale
     step = benefit_step([site.gain for site in programme.sites])
     if step is not None:
         steps = floor((-value + SLACK) / programme.scale / float(step))
         bound = min(bound, float(steps * step))
-    return min(bound, programme.most)
+    return bound

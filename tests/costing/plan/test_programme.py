@@ -22,6 +22,23 @@ from tests.costing.plan.seasons import (
 WHOLE = {"nodes": 10**6, "seconds": 20.0}
 
 
+@settings(max_examples=100)
+@given(seasons())
+def test_the_first_bound_lies_above_the_best_plan(season):
+    """Oracle: every plan tried."""
+    assert Programme(season).first_bound() >= float(best_benefit(season)) - 1e-9
+
+
+def test_the_first_bound_by_hand():
+    """By hand: 10 of money hold A (5 for 4) and six tenths of B (4 for 10); C costs too much."""
+    sites = [
+        one_site("A", cost="4.00", benefit=5.0),
+        one_site("B", cost="10.00", benefit=4.0),
+        one_site("C", cost="11.00", benefit=9.0),
+    ]
+    assert Programme(one_season(*sites, budget="10.00")).first_bound() == pytest.approx(7.4)
+
+
 def relaxed_bound(season):
     """Bound of the programme over weeks alone without whole numbers, by scipy's linprog."""
     pairs = [
