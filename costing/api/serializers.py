@@ -6,6 +6,7 @@ from rest_framework import serializers
 
 from costing.queries.estimates import stale_reasons
 from structures.api.serializers import FindingSerializer
+from structures.life.stages import STAGES
 from structures.queries.settings import counted_in
 
 
@@ -126,3 +127,22 @@ class EstimateRequestSerializer(serializers.Serializer):
     id = serializers.UUIDField(
         required=False, help_text="the write's own name, see Idempotency-Key"
     )
+
+
+class MissingLineSerializer(serializers.Serializer):
+    """One thing that is missing for the next stage, and who can supply it."""
+
+    name = serializers.CharField()
+    what = serializers.CharField()
+    who = serializers.CharField()
+
+
+class MissingSerializer(serializers.Serializer):
+    """Where a structure stands and what it waits for; nothing of it is a sum of money."""
+
+    site = serializers.CharField()
+    stage = serializers.ChoiceField(list(STAGES))
+    since = serializers.DateField()
+    next_stage = serializers.ChoiceField(list(STAGES), allow_null=True)
+    may_go_on = serializers.BooleanField(help_text="whether your role makes the next move")
+    missing = MissingLineSerializer(many=True)

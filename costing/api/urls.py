@@ -17,5 +17,6 @@ urlpatterns = [
         viewsets.SiteEstimates.as_view({"get": "list", "post": "create"}),
         name="site-estimates",
     ),
+    path("structures/<str:code>/missing", viewsets.Missing.as_view(), name="structure-missing"),
     *router.urls,
 ]

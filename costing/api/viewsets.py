@@ -15,14 +15,16 @@ from costing.actions.schedule import import_schedule, preview_schedule
 from costing.api import filters, serializers
 from costing.queries.estimates import visible_estimates
 from costing.queries.schedules import visible_schedules
+from costing.queries.ways import ways_of
 from structures.access import Act
 from structures.actions.devices import Answered
 from structures.api.examples import FORM
 from structures.api.serializers import RunSerializer
-from structures.api.views import RATE_FILES, handed_in, insist, named_district
+from structures.api.views import RATE_FILES, OfficeView, handed_in, insist, named_district
 from structures.api.viewsets import PROBLEM, Collection
 from structures.api.writes import DISTRICT, KEY, PREVIEW, is_preview, once
 from structures.queries.sites import visible_sites
+from structures.queries.structures import visible_structures
 from structures.queries.surveys import surveys_of
 
 
@@ -148,3 +150,25 @@ def _named(field, found, wanted):
     if number is not None and not found.filter(pk=number).exists():
         raise exceptions.ValidationError({field: [f"There is no {number} for this site."]})
     return number
+
+
+class Missing(OfficeView):
+    """What a structure waits for; a move itself is made on the page, in a session."""
+
+    @extend_schema(
+        summary="What a structure waits for",
+        description="Stages are moved and decisions given on the pages: no token does either.",
+        responses={200: serializers.MissingSerializer, 404: PROBLEM},
+    )
+    def get(self, request, code):
+        structure = get_object_or_404(visible_structures(request.user), site__code=code)
+        ways = ways_of(request.user, structure)
+        told = {
+            "site": structure.site.code,
+            "stage": structure.stage,
+            "since": structure.since,
+            "next_stage": ways.next_stage,
+            "may_go_on": ways.may_go_on,
+            "missing": ways.missing,
+        }
+        return Response(serializers.MissingSerializer(told).data)

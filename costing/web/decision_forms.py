@@ -40,7 +40,9 @@ class TermsForm(forms.Form):
 class ApprovalForm(TermsForm):
     """What is written on an approval, and where the money comes from."""
 
-    money_line = forms.ModelChoiceField(label=_("Money line"), queryset=None)
+    money_line = forms.ModelChoiceField(
+        label=_("Money line"), queryset=None, empty_label=_("not chosen")
+    )
     amount = MoneyField(label=_("Amount"))
     photo = forms.FileField(
         label=_("Sheet signed by the funder"),
@@ -73,7 +75,9 @@ class ReasonForm(forms.Form):
 class MoneyLineForm(forms.Form):
     """A line that a funder signed."""
 
-    district = forms.ModelChoiceField(label=_("District"), queryset=None)
+    district = forms.ModelChoiceField(
+        label=_("District"), queryset=None, empty_label=_("not chosen")
+    )
     code = forms.CharField(label=_("Code"), max_length=40)
     funder = forms.CharField(
         label=_("Funder, as a code"), max_length=40, help_text=_("No name of a person.")

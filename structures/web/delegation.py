@@ -27,7 +27,11 @@ class DelegationForm(forms.Form):
     posting = forms.ModelChoiceField(
         label=gettext_lazy("Your posting"), queryset=None, empty_label=None
     )
-    to = forms.ModelChoiceField(label=gettext_lazy("Who acts for you"), queryset=None)
+    to = forms.ModelChoiceField(
+        label=gettext_lazy("Who acts for you"),
+        queryset=None,
+        empty_label=gettext_lazy("not chosen"),
+    )
     first = day_field(gettext_lazy("From"))
     last = day_field(gettext_lazy("Until"), help_text=gettext_lazy("The last day counts."))
     reason = forms.CharField(label=gettext_lazy("Reason"), max_length=300)

@@ -24,6 +24,7 @@ PHOTOS_SHOWN = 12
 def structure(request, code):
     found = get_object_or_404(visible_structures(request.user), site__code=code)
     mine = roles(request.user, place_of(found))
+    forms = [form for form in WRITTEN_HERE if not mine.isdisjoint(form.makers)]
     filed = papers_of(found)
     context = {
         "site": found.site,
@@ -32,7 +33,9 @@ def structure(request, code):
         "line": line_of(found.stage),
         "design": found.designs.order_by("-version").first(),
         "papers": newest_first(filed),
-        "forms": [form for form in WRITTEN_HERE if not mine.isdisjoint(form.makers)],
+        "forms": forms,
+        "fillable": {form.kind for form in forms},
+        "sees_money": may(request.user, Act.SEE_MONEY, found),
         "moves": moves_of(found),
         "photos": visible_photos(request.user).filter(site=found.site)[:PHOTOS_SHOWN],
         "may_draw": may(request.user, Act.DRAW, found),
