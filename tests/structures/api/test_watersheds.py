@@ -35,6 +35,19 @@ def test_outlines_come_in_and_go_out_again(office):
     assert told["geometry"]["coordinates"] == [FAR]
 
 
+def test_a_course_comes_in_with_its_outline_or_later_and_goes_out_by_its_stream(office):
+    line = {"type": "LineString", "coordinates": [[78.42, 15.72], [78.46, 15.78]]}
+    features = json.loads(outlines("KE"))["features"]
+    features[0]["properties"]["stream"] = ["Keldun", "Nul"]
+    course = {"type": "Feature", "properties": {"stream": "Keldun"}, "geometry": line}
+    both = json.dumps({"type": "FeatureCollection", "features": [*features, course]}).encode()
+    (told,) = send(office, both).json()["results"]
+    assert (told["streams"], told["courses"]) == (["Keldun", "Nul"], {"Keldun": line})
+    later = course | {"properties": {"stream": "Nul", "watershed": "KE"}}
+    (told,) = send(office, json.dumps(later).encode()).json()["results"]
+    assert told["courses"] == {"Keldun": line, "Nul": line}
+
+
 def test_they_are_told_back_as_geojson_where_asked_for(office):
     answer = send(office, outlines("KE", "LO"), Accept="application/geo+json")
     assert answer.status_code == 201
