@@ -60,6 +60,8 @@ def _head(season: Season, plan: Plan) -> list[str]:
         f"  sum of benefits {plan.objective:.10g}; {_proof(plan)}",
         f"  money {spent}, {budget}",
     ]
+    if plan.timed and not plan.proven:
+        lines.insert(3, "  time ran out before the best was proven; the plan itself is sound")
     if season.clay_m3 is not None:
         lines.append(f"  clay {sum(site.clay_m3 for site in chosen)} of {season.clay_m3} m3")
     return lines
@@ -68,8 +70,7 @@ def _head(season: Season, plan: Plan) -> list[str]:
 def _proof(plan: Plan) -> str:
     if plan.proven:
         return "proven: no plan brings more"
-    words = f"no plan brings more than {plan.bound:.10g} (gap {100 * plan.gap:.2g} %)"
-    return f"{words}; time ran out before the best was proven" if plan.timed else words
+    return f"no plan brings more than {plan.bound:.10g} (gap {100 * plan.gap:.2g} %)"
 
 
 def _weeks(season: Season, plan: Plan) -> list[str]:

@@ -71,7 +71,10 @@ def plan_season(
     for stock in greedy_plans(season):
         rounds.offer(stock)
     for one in (rounds.relax, rounds.narrow, rounds.whole):
-        if rounds.best.proven or rounds.seconds_left <= 0.0 or should_stop():
+        if rounds.best.proven or should_stop():
+            break
+        if rounds.seconds_left <= 0.0:
+            rounds.tell(rounds.bound, timed=True)
             break
         one()
     return rounds.best
@@ -99,9 +102,9 @@ class _Rounds:
         """Lower the bound by the programme without whole numbers and let it guide a plan."""
         self.guide = solver.relax(self.programme, seconds=self.seconds_left)
         if self.guide is None:
-            self._tell(self.bound, timed=True)
+            self.tell(self.bound, timed=True)
             return
-        self._tell(self.guide.bound)
+        self.tell(self.guide.bound)
         self.offer(guided_plan(self.season, self.guide.share, self.guide.weeks))
 
     def narrow(self) -> None:
@@ -124,7 +127,7 @@ class _Rounds:
         kept = {} if self.guide is None else self.guide.settled(above=self.best.objective)
         answer = self._search(kept, nodes=ALL_NODES, seconds=self.seconds_left)
         if answer is not None:
-            self._tell(answer.bound, timed=answer.timed)
+            self.tell(answer.bound, timed=answer.timed)
 
     def _search(
         self, kept: Mapping[str, bool], *, nodes: int, seconds: float
@@ -145,7 +148,7 @@ class _Rounds:
             return answer
         return None
 
-    def _tell(self, bound: float, *, timed: bool = False) -> None:
+    def tell(self, bound: float, *, timed: bool = False) -> None:
         """Keep the lowest bound of all plans."""
         self.bound = min(self.bound, bound)
         self.timed |= timed

@@ -2,35 +2,15 @@
 
 from __future__ import annotations
 
-from decimal import Decimal
 from time import perf_counter
 
 import numpy as np
 import pytest
 
 from costing.plan.rounds import plan_season
-from costing.plan.season import Season, SeasonSite
+from tests.costing.plan.seasons import SITES, WEEKS, drawn_season
 
 pytestmark = pytest.mark.benchmark
-
-SITES, WEEKS = 200, 30
-
-
-def drawn_season(rng, *, gangs, money_share):
-    """Draw works of 2 to 8 weeks for 1 to 3 gangs whose windows end up to 15 weeks late."""
-    lengths = rng.integers(2, 9, SITES)
-    ready = rng.integers(1, 12, SITES)
-    latest = np.minimum(WEEKS, ready + lengths - 1 + rng.integers(0, 16, SITES))
-    costs = [Decimal(f"{cost:.2f}") for cost in rng.lognormal(13.0, 0.5, SITES)]
-    benefits = np.round(np.array(costs, float) / 1e5 * rng.lognormal(0.0, 0.4, SITES), 1)
-    crews = rng.choice([1, 1, 1, 2, 3], SITES)
-    columns = zip(ready, latest, lengths, crews, costs, benefits, strict=True)
-    sites = tuple(
-        SeasonSite(f"S-{n:03d}", *map(int, whole), cost, float(benefit))
-        for n, (*whole, cost, benefit) in enumerate(columns)
-    )
-    budget = round(sum(costs) * Decimal(money_share), 2)
-    return Season(WEEKS, gangs, budget, sites)
 
 
 @pytest.mark.parametrize(

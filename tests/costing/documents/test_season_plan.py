@@ -77,7 +77,10 @@ def test_the_document_has_the_keys_of_the_interface():
 def test_a_plan_that_is_not_proven_says_by_how_much_it_may_fall_short():
     season = one_season(*(one_site(code, latest=2) for code in "ABC"), budget=None)
     text = plan_text(season, plan_season(season, seconds=0.0))
-    assert "sum of benefits 2; no plan brings more than 3 (gap 50 %)" in text
+    assert text.splitlines()[2:4] == [
+        "  sum of benefits 2; no plan brings more than 3 (gap 50 %)",
+        "  time ran out before the best was proven; the plan itself is sound",
+    ]
     assert "money 2.00, no limit given" in text
 
 

@@ -5,9 +5,12 @@ from __future__ import annotations
 from decimal import Decimal
 from fractions import Fraction
 
+import numpy as np
 from hypothesis import strategies as st
 
 from costing.plan.season import Season, SeasonSite
+
+SITES, WEEKS = 200, 30  # of a large season
 
 
 def one_site(code, ready=1, latest=9, weeks=2, gangs=1, cost="1.00", benefit=1.0, **more):
@@ -87,3 +90,20 @@ def every_plan(season):
 def best_benefit(season):
     """Greatest sum of benefits by trying everything; None where no plan keeps the fixed ones."""
     return max((benefit_of(season, opened) for opened in every_plan(season)), default=None)
+
+
+def drawn_season(rng, *, gangs, money_share):
+    """Draw works of 2 to 8 weeks for 1 to 3 gangs whose windows end up to 15 weeks late."""
+    lengths = rng.integers(2, 9, SITES)
+    ready = rng.integers(1, 12, SITES)
+    latest = np.minimum(WEEKS, ready + lengths - 1 + rng.integers(0, 16, SITES))
+    costs = [Decimal(f"{cost:.2f}") for cost in rng.lognormal(13.0, 0.5, SITES)]
+    benefits = np.round(np.array(costs, float) / 1e5 * rng.lognormal(0.0, 0.4, SITES), 1)
+    crews = rng.choice([1, 1, 1, 2, 3], SITES)
+    columns = zip(ready, latest, lengths, crews, costs, benefits, strict=True)
+    sites = tuple(
+        SeasonSite(f"S-{n:03d}", *map(int, whole), cost, float(benefit))
+        for n, (*whole, cost, benefit) in enumerate(columns)
+    )
+    budget = round(sum(costs) * Decimal(money_share), 2)
+    return Season(WEEKS, gangs, budget, sites)

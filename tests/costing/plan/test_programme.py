@@ -13,6 +13,7 @@ from costing.plan.solver import relax, search
 from tests.costing.plan.seasons import (
     benefit_of,
     best_benefit,
+    drawn_season,
     every_plan,
     one_season,
     one_site,
@@ -155,6 +156,15 @@ def test_every_sum_is_a_multiple_of_the_step(numbers, parts):
     ratios = [gain / step for gain in gains]
     assert all(ratio.denominator == 1 for ratio in ratios)
     assert np.gcd.reduce([int(ratio) for ratio in ratios]) == 1
+
+
+def test_a_search_that_has_no_time_knows_the_first_bound_only():
+    season = drawn_season(np.random.default_rng(1), gangs=20, money_share="0.5")
+    programme = Programme(season)
+    assert relax(programme, seconds=1e-6) is None
+    answer = search(programme, {}, nodes=1, seconds=1e-6)
+    assert (answer.opened, answer.ended, answer.timed) == (None, False, True)
+    assert answer.bound == programme.first_bound()
 
 
 def test_numbers_of_many_decimals_have_no_step():

@@ -141,7 +141,7 @@ def test_stopping_before_the_first_round_gives_a_greedy_plan():
 def test_without_time_the_plan_is_greedy_and_says_what_it_does_not_know():
     season = one_season(*(one_site(code, latest=2, cost="0.00") for code in "ABC"))
     plan = plan_season(season, seconds=0.0)
-    assert (plan.objective, plan.bound, plan.proven) == (2.0, 3.0, False)
+    assert (plan.objective, plan.bound, plan.proven, plan.timed) == (2.0, 3.0, False, True)
 
 
 @settings(max_examples=30)
