@@ -131,7 +131,7 @@ def rock(request, code):
     estimated = ((run and run.result) or {}).get("estimated") or []
     settled = newest_rock_line(survey)
     tests = names_of_tests(pack_of(survey))
-    points = [*_points(run, settled, estimated), *[(None, None)] * SPARE_POINTS]
+    points = [*_points(run, settled, estimated, survey), *[(None, None)] * SPARE_POINTS]
     seen = (survey.version, settled.version if settled else 0)
     form = RockForm(request.POST or None, tests=tests, points=points, seen=seen)
     if request.method == "POST" and form.is_valid():
@@ -171,10 +171,11 @@ def _seen_survey(request, newest):
     return get_object_or_404(surveys_of(request.user, newest.site.code), version=version)
 
 
-def _points(run, settled, estimated):
-    """Points to begin with: the line settled last, else the estimate at its tests and ends."""
-    if settled is not None:
-        return [(one["offset_m"], one["level_m"]) for one in settled.points]
+def _points(run, settled, estimated, survey):
+    """Points to begin with: the line settled last or handed in, else the estimate at its tests."""
+    given = survey.pack.get("rock_line") if settled is None else settled.points
+    if given:
+        return [(one["offset_m"], one["level_m"]) for one in given]
     if not estimated:
         return []
     at_tests = {one["offset_m"] for one in run.result["appraisal"]["rock"]["evidence"]}
