@@ -24,6 +24,7 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
+    from structures.intake.rain import Rain
     from structures.intake.readings import WellReading
     from structures.water.pairs import Pairs
     from structures.water.rivals import MovedMark
@@ -32,6 +33,8 @@ if TYPE_CHECKING:
     from structures.water.steps import Step
 
 LEAST_PAIRS: Final = 4  # of the time complained of, and before completion (project choice)
+MONTHS: Final = 12
+YEARS_BACK: Final = 60  # of records of a gauge
 SEASON_FROM: Final = 2  # full water years a side for annual terms (handbook 10.5)
 
 
@@ -58,7 +61,8 @@ class Explained:
     """The change of one well since a day against the same months before the wall.
 
     `change_m` = rain + measuring point + rest, negative where the water reads lower. `marks` are
-    the moved measuring points that the readings name and that are allowed for already.
+    the moved measuring points that the readings name and that are allowed for already; `rain_mm`
+    the rain of the same months before and since.
     """
 
     well: str
@@ -71,6 +75,7 @@ class Explained:
     pairs: tuple[int, int]
     controls: tuple[str, ...]
     marks: tuple[MovedMark, ...]
+    rain_mm: tuple[float, float] | None = None
 
     def sentences(self) -> tuple[str, ...]:
         """Say it in plain words, the largest matters first."""
@@ -83,6 +88,11 @@ class Explained:
             f"{_signed(self.rain.change_m)} m{_range(self.rain)} of it the control wells "
             f"{', '.join(self.controls)} made as well: the rain of these years."
         )
+        if self.rain_mm is not None:
+            before_mm, since_mm = self.rain_mm
+            rain += (
+                f" It rained {since_mm:.0f} mm since, {before_mm:.0f} mm in the same months before."
+            )
         said = [change, rain]
         if self.mark is not None:
             size = self.mark.size
@@ -111,6 +121,8 @@ def explain_well(
     completed: date,
     since: date,
     rules: EffectRules,
+    *,
+    rain: Rain | None = None,
 ) -> Explained | None:
     """Explain the change of one well; None where readings or control wells are too few.
 
@@ -125,6 +137,8 @@ def explain_well(
         The well complained of, whatever its role.
     since
         From which day on it is said to stand otherwise.
+    rain
+        Of a gauge near the well, for the words beside what the control wells say.
 
     Raises
     ------
@@ -160,7 +174,35 @@ def explain_well(
         counts,
         pairs.control_wells,
         tuple(one for one in moved_marks(own) if one.day >= completed),
+        None if rain is None else rain_of_like_months(rain, since, pairs.days[-1], completed),
     )
+
+
+def rain_of_like_months(
+    rain: Rain, since: date, last: date, completed: date
+) -> tuple[float, float] | None:
+    """Give the rain of whole months since a day, and the mean of the same months in years before.
+
+    None where no month since, or in no year before all of the same months, is known.
+    """
+    first = since.year * MONTHS + since.month - 1
+    months = [
+        month
+        for month in (
+            (one // MONTHS, one % MONTHS + 1)
+            for one in range(first, last.year * MONTHS + last.month)
+        )
+        if rain.months.get(month) is not None
+    ]
+    now_mm = rain.sum_mm(months)
+    end = (completed.year, completed.month)
+    earlier = [
+        rain.sum_mm((year - back, month) for year, month in months)
+        for back in range(1, YEARS_BACK)
+        if months and (months[-1][0] - back, months[-1][1]) < end
+    ]
+    known = [one for one in earlier if one is not None]
+    return (float(np.mean(known)), now_mm) if known else None
 
 
 def _like_months(

@@ -198,9 +198,12 @@ def _jump(pairs: Pairs, completed: date) -> JumpOfPairs | None:
 
 
 def _trend(pairs: Pairs) -> TrendBefore | None:
-    before = ~pairs.after & ~pairs.bounded
-    if before.sum() < TREND_LEAST:
+    """Look whether affected wells moved against control wells before; dry ones are tied lowest."""
+    before = ~pairs.after & ~pairs.above
+    wet = before & ~pairs.below
+    if wet.sum() < TREND_LEAST:
         return None
-    values = pairs.difference_m[before]
-    years = pairs.middle_day[before] / DAYS_OF_YEAR
-    return TrendBefore(median_slope(years, values), mann_kendall(values).p_two_sided)
+    return TrendBefore(
+        median_slope(pairs.middle_day[wet] / DAYS_OF_YEAR, pairs.difference_m[wet]),
+        mann_kendall(pairs.difference_m[before], pairs.below[before]).p_two_sided,
+    )

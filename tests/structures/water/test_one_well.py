@@ -9,7 +9,8 @@ from pathlib import Path
 
 import pytest
 
-from structures.intake.district_readings import site_readings_csv
+from structures.intake.district_readings import gauge_days_csv, site_readings_csv
+from structures.intake.rain import read_rain
 from structures.intake.readings import read_readings
 from structures.water.one_well import explain_well
 from structures.water.rules import EffectRules
@@ -53,6 +54,27 @@ def test_the_complaint_is_a_dry_year_and_a_raised_parapet():
     assert "BI-W05 reads 1.33 m lower" in text
     assert "a parapet raised or a tape cut?" in text
     assert "nothing that these readings can lay to the wall" in text
+
+
+def test_the_dry_year_is_told_in_millimetres():
+    """Oracle: rain.csv of the gauge BI-R1, added up over June to March by the csv module."""
+    rain = read_rain("rain.csv", gauge_days_csv("BI-R1", rows("rain")).encode())
+    found = explain_well(
+        readings(new_mark=False), "BI-W05", COMPLETED, SINCE, EffectRules(), rain=rain
+    )
+
+    def fallen(first, last):
+        return sum(
+            float(row["rain_mm"])
+            for row in rows("rain")
+            if row["gauge_id"] == "BI-R1" and first <= row["day"] < last
+        )
+
+    before = (fallen("2022-06-01", "2023-04-01") + fallen("2023-06-01", "2024-04-01")) / 2
+    since = fallen("2025-06-01", "2026-04-01")
+    assert found.rain_mm == pytest.approx((before, since))
+    assert since < 0.8 * before
+    assert f"It rained {since:.0f} mm since" in found.sentences()[1]
 
 
 def test_the_change_is_that_of_the_months_by_hand():
