@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 from costing.plan.reading import read_season
 from costing.plan.season import Season, SeasonSite
 from structures.errors import Refused
+from structures.intake.archive import FILE_MOST_BYTES
 from tests.costing.plan.seasons import seasons
 
 SITE = {
@@ -177,6 +178,11 @@ def test_too_many_sites_are_not_read_one_by_one():
 def test_what_is_not_json_is_told_with_its_line():
     with pytest.raises(Refused, match=r"season.json line 2 column 1.*not JSON"):
         read_season("season.json", b"{\n")
+
+
+def test_a_file_that_is_too_large_is_not_read():
+    with pytest.raises(Refused, match="MB, limit"):
+        read_season("season.json", bytes(FILE_MOST_BYTES + 1))
 
 
 VALUES = st.recursive(

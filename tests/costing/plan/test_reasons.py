@@ -3,9 +3,12 @@
 import re
 from decimal import Decimal
 
+import pytest
 from hypothesis import given, settings
 
+from costing.plan.reasons import reasons
 from costing.plan.rounds import plan_season
+from costing.plan.stock import Stock
 from tests.costing.plan.seasons import one_season, one_site, seasons
 
 WINDOW = re.compile(
@@ -143,6 +146,12 @@ def test_gangs_and_pumps_that_bar_only_together():
 def test_more_gangs_at_once_than_there_are():
     season = one_season(one_site("A", gangs=3), gangs=2)
     assert reason(season, "A") == "needs 3 gangs at once, there are 2 gangs"
+
+
+def test_a_site_that_fits_is_no_site_to_leave_out():
+    site = one_site("A")
+    with pytest.raises(ValueError, match="A fits and is left out"):
+        reasons(Stock(one_season(site)), site)
 
 
 def test_a_site_that_brings_nothing():
