@@ -57,6 +57,8 @@ class Act(StrEnum):
     WRITE_BILL = "write a bill"
     DECIDE_BILL = "decide a bill"
     ENTER_WELL = "enter a well"
+    SEND_READINGS = "send readings"
+    DECIDE_REPAIR = "decide on a doubted reading"
     PROPOSE_VERDICT = "propose a verdict"
     REVIEW_VERDICT = "review a verdict"
     HEAR_COMPLAINT = "take in and answer a complaint"
@@ -99,6 +101,8 @@ MAY: Final[dict[Act, frozenset[Role]]] = {
     Act.WRITE_BILL: frozenset({Role.ENGINEER}),
     Act.DECIDE_BILL: frozenset({Role.DISTRICT}),
     Act.ENTER_WELL: frozenset({Role.FIELD, Role.ENGINEER}),
+    Act.SEND_READINGS: frozenset({Role.FIELD, Role.ENGINEER}),
+    Act.DECIDE_REPAIR: frozenset({Role.ENGINEER}),
     Act.PROPOSE_VERDICT: frozenset({Role.ENGINEER}),
     Act.REVIEW_VERDICT: frozenset({Role.PROGRAMME}),
     Act.HEAR_COMPLAINT: frozenset({Role.DISTRICT}),

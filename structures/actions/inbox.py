@@ -29,6 +29,8 @@ ACT: Final[dict[str, Act]] = {
     Upload.Kind.WATERSHEDS: Act.ENTER_WATERSHED,
     Upload.Kind.PROFILES: Act.ENTER_PROFILE,
     Upload.Kind.RATES: Act.IMPORT_SCHEDULE,
+    Upload.Kind.READINGS: Act.SEND_READINGS,
+    Upload.Kind.RAIN: Act.SEND_READINGS,
 }
 
 
