@@ -30,6 +30,7 @@ class Frame:
 
     keeps_people: bool
     sees_money: bool
+    at_trenches: bool
     invented: tuple[District, ...]
     today: date
     zone: str
@@ -44,6 +45,7 @@ def frame_of(user: User | AnonymousUser) -> Frame:
     return Frame(
         keeps_people=Role.ADMIN in roles,
         sees_money=bool(roles & MAY[Act.SEE_MONEY]),
+        at_trenches=bool(roles & MAY[Act.RECORD_WORKS]),
         invented=tuple(
             sorted((one for one in districts if one.invented), key=lambda one: one.code)
         ),

@@ -78,7 +78,8 @@ def against_entering(
         remedy = "The trained person looks and writes it down first."
         found.append(Finding(where, "look", what, remedy, rule="TR-01"))
     elif look.result != TrenchLook.Result.NONE_FOUND:
-        what = f"The look of {look.looked_at:%H:%M} says {look.result}. Nobody goes in."
+        at = f"{look.looked_at:%H:%M}" + ("" if look.strip is None else f" into {look.strip}")
+        what = f"The look of {at} says {look.result}. Nobody goes in."
         found.append(Finding(where, "look", what, "Mend the cause and look again.", rule="TR-01"))
     elif not standing and (wet := _since_alarm(look, alarms, structure)) is not None:
         what = f"Since the look of {look.looked_at:%H:%M} there was an alarm: {wet.why}."

@@ -12,7 +12,7 @@ from django.db.models import Count, F, Prefetch, Q
 from structures import access
 from structures.drawing.strips import StripDrawn, StripsView
 from structures.intake.field_records import HOLDS, point_of
-from structures.life.holds import next_hold
+from structures.life.holds import LAYERS, next_hold
 from structures.life.stages import CLEARED, DIGGING, HALTED, RISING
 from structures.models import Clash, HoldPoint, PhoneRecord, Strip, Structure, TrenchLook
 from structures.queries.districts import today_of
@@ -30,6 +30,8 @@ if TYPE_CHECKING:
 
 AT_WORK: Final = (CLEARED, DIGGING, RISING, HALTED)
 WAITING: Final = "waiting"
+NO: Final = "no"
+NEXT_STRIPS: Final = 2  # not begun, as a round shows them (project choice)
 LAST_RECORDS: Final = 30  # of what phones sent, as a page shows them
 
 
@@ -58,6 +60,34 @@ class StripLine:
         return self.strip.opened_on is not None and self.strip.covered_on is None
 
     @property
+    def asks(self) -> tuple[str, ...]:
+        """Hold points to ask for next, whether or not those before were seen; layers go on.
+
+        What was answered with "no" comes first; after a layer both the next one and H8 may follow.
+        """
+        if self.strip.covered_on is not None:
+            return ()
+        refused = [one.hold.hold for one in self.cells if one.word == NO and one.hold]
+        if refused:
+            return (refused[0],)
+        layers = sum(one.hold.startswith(f"{LAYERS}.") for one in self.strip.holds.all())
+        for cell in self.cells:
+            if cell.hold is None and cell.point == LAYERS:
+                return (f"{LAYERS}.1",)
+            if cell.hold is None:
+                more = (f"{LAYERS}.{layers + 1}",) if cell.point == "H8" else ()
+                return (*more, cell.point)
+        return ()
+
+    @property
+    def later(self) -> tuple[str, ...]:
+        """The points that follow, for a day without signal."""
+        if not self.open:
+            return ()
+        first = point_of(self.asks[0]) if self.asks else HOLDS[-1]
+        return tuple(one for one in HOLDS[HOLDS.index(first) :] if one not in self.asks)
+
+    @property
     def waiting(self) -> tuple[HoldPoint, ...]:
         return tuple(one.hold for one in self.cells if one.word == WAITING and one.hold)
 
@@ -75,6 +105,12 @@ class Works:
     @property
     def open(self) -> tuple[StripLine, ...]:
         return tuple(line for line in self.lines if line.open)
+
+    @property
+    def at_hand(self) -> tuple[StripLine, ...]:
+        """Strips that are open, and the next to begin: what a round goes by."""
+        begun = [line for line in self.lines if line.strip.opened_on is None]
+        return (*self.open, *begun[:NEXT_STRIPS])
 
     @property
     def unseen(self) -> tuple[Strip, ...]:
@@ -221,7 +257,7 @@ def _cell(point: str, holds: list[HoldPoint], strip: Strip) -> Cell:
     last = {one.hold: one for one in holds}
     refused = next((one for one in last.values() if one.result == HoldPoint.Result.NO), None)
     if refused is not None:
-        return Cell(point, "no", "stop", refused)
+        return Cell(point, NO, "stop", refused)
     seen = holds[-1]
     word = f"{len(last)} seen" if len(last) > 1 else seen.result
     return Cell(point, word, "done", seen)

@@ -21,10 +21,10 @@ from structures.access import Act, may
 from structures.actions.alarms import set_alarm
 from structures.actions.parcels import HELD, REFUSED, Times, take_record
 from structures.errors import Refused
-from structures.intake.field_records import KINDS
+from structures.intake.field_records import HOLD, KINDS
 from structures.intake.parcel import Sent
 from structures.life.cautions import CLOSING_SENTENCE
-from structures.life.holds import NINE
+from structures.life.holds import LAST, NINE
 from structures.queries.sites import visible_sites
 from structures.queries.trench_day import moment_in
 from structures.queries.works import LAST_RECORDS, hold_requests, records_of, round_of, works_of
@@ -197,8 +197,9 @@ def _keep(request: HttpRequest, found: Works, number: int | None, form: RecordFo
 
 def _hold_of(request: HttpRequest, line) -> str:
     """Give the hold point asked about: named in the address or the form, else the next one."""
-    named = request.POST.get("hold") or request.GET.get("hold") or line.next or "H9"
-    return named if named.partition(".")[0] in NINE else "H9"
+    first = line.asks[0] if line.asks else LAST
+    named = request.POST.get("hold") or request.GET.get("hold") or first
+    return named if HOLD.fullmatch(named) else first
 
 
 def _begins_with(found: Works, hold: str) -> dict[str, object]:

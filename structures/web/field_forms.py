@@ -10,7 +10,7 @@ from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy
 
 from structures.intake.field_records import HOLD_READINGS, RecordField, RecordKind, point_of
-from structures.life.holds import MUST_SEE
+from structures.life.holds import LAYERS, MUST_SEE
 
 YES_NO: Final = (("yes", gettext_lazy("yes")), ("no", gettext_lazy("no")))
 HOLD_READING_KEYS: Final = frozenset(one.key for many in HOLD_READINGS.values() for one in many)
@@ -38,7 +38,7 @@ class RecordForm(forms.Form):
         )
         for one in self.asked():
             self.fields[one.key] = _field(one)
-        if hold:
+        if hold and point_of(hold) != LAYERS:  # which layer it is, is seen at the trench
             self.fields["hold"].widget = forms.HiddenInput()
         self.fields["photo"] = forms.FileField(
             label=_("Photo"),

@@ -16,10 +16,10 @@ urlpatterns = [
     path("today/parcel/", field.box, name="parcel-box"),
     path("today/worker.js", field.worker, name="field-worker"),
     path("today/app.webmanifest", field.manifest, name="field-manifest"),
-    path("today/sites/<str:code>/alarm/", field.alarm, name="alarm"),
-    path("today/sites/<str:code>/<str:kind>/", field.record, name="record"),
+    path("today/at/<str:code>/alarm/", field.alarm, name="alarm"),
+    path("today/at/<str:code>/<str:kind>/", field.record, name="record"),
     path(
-        "today/sites/<str:code>/strips/<int:number>/<str:kind>/",
+        "today/at/<str:code>/strips/<int:number>/<str:kind>/",
         field.record,
         name="strip-record",
     ),

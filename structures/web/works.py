@@ -142,14 +142,7 @@ def hold(request, hold_id):
         "site": site,
         "hold": found,
         "point": NINE[point],
-        "readings": [
-            (
-                asked[key].asks if key in asked else key,
-                value,
-                asked[key].unit if key in asked else "",
-            )
-            for key, value in found.readings.items()
-        ],
+        "readings": [_reading(asked.get(key), key, value) for key, value in found.readings.items()],
         "form": form,
         "may_see": may(request.user, Act.SEE_HOLD, site) and found.asked_by_id != request.user.pk,
         "clashes": open_clashes(request.user).filter(record=found.pk),
@@ -198,6 +191,15 @@ def clash(request, clash_id):
 
 
 _ALARM: Final = ("alarm", "lift")
+
+
+def _reading(field, key, value):
+    """Give one reading of a hold point as a page prints it: what was asked, what was read, unit."""
+    if isinstance(value, bool):
+        value = _("yes") if value else _("no")
+    elif isinstance(value, float):
+        value = f"{value:.3f}".rstrip("0").rstrip(".")
+    return (key, value, "") if field is None else (field.asks, value, field.unit)
 
 
 def _see(request, found, site, said):

@@ -19,7 +19,7 @@ from tests.trench import DAY, TODAY, a_trench, as_drawn, ask, dig, look, see
 
 pytestmark = pytest.mark.django_db
 WORKS = "/sites/OD-01/works/"
-RECORD = "/today/sites/OD-01/"
+RECORD = "/today/at/OD-01/"
 
 
 @pytest.fixture
@@ -160,7 +160,7 @@ def test_the_wall_is_cut_on_its_page():
 
 
 def test_an_alarm_is_set_by_anybody_and_lifted_by_an_engineer(trench):
-    answer = at(trench.field).post("/today/sites/OD-01/alarm/", {"why": "rain"}, follow=True)
+    answer = at(trench.field).post("/today/at/OD-01/alarm/", {"why": "rain"}, follow=True)
     assert "The alarm of OD-01 is set." in text(answer)
     assert "An alarm is set. Nobody goes in." in text(at(trench.field).get(WORKS))
     assert at(trench.field).post(WORKS, {"act": "lift", "why": "over"}).status_code == 422

@@ -43,7 +43,7 @@ async function fromNet(event) {
   const soon = await Promise.race([answer.catch(() => null), late]);
   if (soon && soon.status < 500) return soon;
   const pages = await caches.open(PAGES);
-  const seen = (await pages.match(request, { ignoreSearch: true, ignoreVary: true }))
+  const seen = (await pages.match(request, { ignoreVary: true }))
     || (request.mode === "navigate" && (await pages.match(HOME, { ignoreVary: true })));
   return seen || answer;
 }
