@@ -5,12 +5,9 @@ SQLite takes one writer at a time and so would hide what these ask.
 
 from __future__ import annotations
 
-import threading
-from concurrent.futures import ThreadPoolExecutor
 from datetime import date
 
 import pytest
-from django.db import connection
 
 from costing.actions.estimate import PRICE, request_estimate
 from costing.actions.schedule import import_schedule
@@ -22,6 +19,7 @@ from structures.actions.surveys import accept_survey
 from structures.errors import Refused
 from structures.models import Design, Run, Site, Upload, User
 from structures.runs.queue import execute
+from tests.at_once import at_once, refusals
 from tests.factories import (
     PASSWORD,
     a_district,
@@ -51,27 +49,6 @@ def engineer(district):
 @pytest.fixture
 def site(district):
     return a_site(a_watershed(district))
-
-
-def at_once(*acts):
-    """Do all of it at the same moment; give what each gave, or its refusal."""
-    gate = threading.Barrier(len(acts))
-
-    def go(act):
-        try:
-            gate.wait()
-            return act()
-        except Refused as refused:
-            return refused
-        finally:
-            connection.close()
-
-    with ThreadPoolExecutor(len(acts)) as hands:
-        return list(hands.map(go, acts))
-
-
-def refusals(answers):
-    return [answer.what for answer in answers if isinstance(answer, Refused)]
 
 
 def test_surveys_handed_in_at_once_take_one_number_each(site, engineer):
