@@ -11,8 +11,8 @@ from typing import TYPE_CHECKING, Final
 
 from django.db import transaction
 
+from costing.actions.history import take_over_all
 from costing.actions.schedule import import_schedule
-from structures.actions.history import take_over_stages
 from structures.actions.people import invite, set_password, set_posting
 from structures.actions.settings import enter_district
 from structures.actions.sites import bulk_enter_sites
@@ -88,14 +88,8 @@ def load_demo(*, folder: Path, password: str) -> Loaded:
     _narrow(people, district, keeper)
     import_schedule(**hand, **_file(folder / "rates.csv"))
     surveys = _surveys(folder, engineer)
-    take_over_stages(
-        district_id=district.pk,
-        stages={
-            row["site_id"]: (row["state"], date.fromisoformat(row["state_since"]))
-            for row in _rows(folder / "structures.csv")
-        },
-        by=keeper,
-    )
+    tables = {path.name: path.read_bytes() for path in folder.glob("*.csv")}
+    take_over_all(district_id=district.pk, files=tables, by=keeper)
     logins = (*(row["login"] for row in people), *(f"av-{role}" for role in SECOND_ROLES))
     # One word opens all of them, so it is hashed once: a hash is made to be slow.
     set_password(user_id=keeper.pk, password=password)

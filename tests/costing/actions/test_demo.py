@@ -47,7 +47,7 @@ def test_a_load_that_stops_in_the_middle_leaves_nothing(monkeypatch):
     def stop(**_):
         raise KeyboardInterrupt
 
-    monkeypatch.setattr(demo, "take_over_stages", stop)
+    monkeypatch.setattr(demo, "take_over_all", stop)
     with pytest.raises(KeyboardInterrupt):
         demo.load_demo(folder=FOLDER, password=WORD)
     assert (User.objects.count(), Site.objects.count(), District.objects.count()) == (0, 0, 0)
