@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from datetime import date
 from typing import Final
 from zoneinfo import ZoneInfo
 
@@ -11,6 +12,7 @@ from django.utils.dateformat import format as written
 from structures.queries.districts import today_of
 
 register = template.Library()
+DAY: Final = "j M Y"
 HOUR: Final = "j M Y H:i"
 SECOND: Final = "H:i:s"
 
@@ -19,6 +21,12 @@ SECOND: Final = "H:i:s"
 def today(district):
     """The day that counts in a district."""
     return today_of(district)
+
+
+@register.filter
+def day(written_so):
+    """A day kept as text in a result (2027-03-14), as pages write it."""
+    return written(date.fromisoformat(written_so), DAY)
 
 
 @register.filter

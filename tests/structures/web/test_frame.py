@@ -11,6 +11,7 @@ from django.utils import timezone
 
 from structures.models import Role, Upload
 from structures.runs.queue import start_run
+from structures.templatetags.days import day
 from tests.factories import (
     a_district,
     a_posting,
@@ -97,6 +98,10 @@ def test_hours_are_those_of_the_district_s_clocks(client):
     assert f"{engineer.username}, 10 Apr 2026 01:40, Asia/Kolkata" in page
     start_run(kind="survey.read", params={"number": 1}, subject="site X", asked_by=engineer)
     assert "Hours are those of Asia/Kolkata." in words(client.get("/runs/"))
+
+
+def test_a_day_kept_as_text_is_written_as_pages_write_days():
+    assert day("2027-03-14") == "14 Mar 2027"
 
 
 def test_who_serves_nowhere_is_led_on(client):

@@ -74,5 +74,12 @@ def test_findings_are_listed_whole_and_escaped():
     assert "b.csv, y" in text
 
 
+def test_a_single_finding_is_not_said_twice():
+    finding = Finding("a.csv line 2", "lat", "95 is no latitude.", "Exchanged?")
+    text = answer(Refused("95 is no latitude.", findings=(finding,))).content.decode()
+    assert text.count("95 is no latitude.") == 1
+    assert "Put this right" in text
+
+
 def test_other_errors_are_left_to_who_knows_them():
     assert answer(ValueError("a defect")) is None
