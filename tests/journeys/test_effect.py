@@ -88,3 +88,14 @@ def test_the_older_wall_holds_where_the_office_asks_for_one_year(capsys):
     assert found["suggested_verdict"] in {"holds", "holds in part"}
     assert "effect-dry-fitted" in {one["code"] for one in found["cautions"]}
     assert answer(capsys, "OD-01", "2023-05-12")["suggested_verdict"] == "not known"
+
+
+def test_the_command_of_the_readme_is_this_one(capsys):
+    readme = " ".join(Path("README.md").read_text(encoding="utf-8").replace("\\", "").split())
+    command = (
+        "python3 manage.py assess_effect fixtures/readings/BI-01.csv --completed 2024-05-20 "
+        "--rain fixtures/readings/BI-01-rain.csv"
+    )
+    assert command in readme
+    call_command(*command.split()[2:])
+    assert "suggested verdict: holds" in capsys.readouterr().out

@@ -86,7 +86,12 @@ def test_a_file_without_its_columns_is_refused():
     assert fields == ["well", "mark", "read_at", "depth_m"]
 
 
-@given(st.lists(st.text(st.characters(codec="utf-8", exclude_characters='\r\n"\0;\t'), max_size=12), max_size=9))
+@given(
+    st.lists(
+        st.text(st.characters(codec="utf-8", exclude_characters='\r\n"\0;\t'), max_size=12),
+        max_size=9,
+    )
+)
 def test_any_row_finds_a_pile(cells):
     try:
         found = read(ROW + ",".join(cells) + "\n")
