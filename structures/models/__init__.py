@@ -11,6 +11,7 @@ from structures.models.readings import ColumnChoice, Reading, Repair, WaterSampl
 from structures.models.register import Chain, Entry
 from structures.models.run import Run, WorkerPulse
 from structures.models.season import FirstRun
+from structures.models.second_factor import FactorReset, RecoveryCode, SecondFactor
 from structures.models.setting import Setting
 from structures.models.site import LongProfilePoint, Site
 from structures.models.structure import Design, Structure
@@ -25,6 +26,7 @@ from structures.models.survey import (
     SoundingReading,
     Survey,
 )
+from structures.models.upkeep import Job, RestoreTrial
 from structures.models.watershed import District, GaugeWeight, Stream, Watershed
 from structures.models.wells import Complaint, ComplaintAnswer, MeasuringPoint, Verdict, Well
 from structures.models.works import (
