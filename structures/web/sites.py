@@ -23,6 +23,7 @@ from structures.life.stages import STAGES
 from structures.queries.districts import visible_districts, visible_watersheds
 from structures.queries.history import changes_of
 from structures.queries.map import outlines_of, runs_of, spots_of
+from structures.queries.site_wells import wells_of
 from structures.queries.sites import (
     newest_rock_line,
     newest_survey,
@@ -85,6 +86,7 @@ def site(request, code):
         "surveys": surveys_of(user, code),
         "lines": visible_rock_lines(user).filter(survey__site=found)[:3],
         "changes": changes_of(found),
+        "wells": wells_of(user, found),
         "stage_words": STAGES[found.structure.stage],
         "unseen": unseen_strips(found.structure),
         "may_edit": may(user, Act.EDIT_SITE, found),
