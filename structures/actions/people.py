@@ -192,6 +192,7 @@ def set_posting(
     if posting_id is not None:
         posting = Posting.objects.select_for_update().get(pk=posting_id, user=user)
         insist(by, Act.MANAGE_PEOPLE, posting)
+        _check_lent(posting, role, district, days)
     posting.role, posting.district = role, district
     posting.valid_from, posting.valid_to = first, last
     posting._history_user = by
@@ -227,6 +228,21 @@ def _check_role(role: str, district: District | None) -> None:
     if district is None and role != Role.ADMIN:
         what = f"The role {role} is held in a district."
         raise Refused(what, where="district", remedy="Name the district.")
+
+
+def _check_lent(
+    posting: Posting, role: str, district: District | None, days: tuple[date, date | None]
+) -> None:
+    """Let a posting that somebody lent be cut short, and nothing else: it is not the office's."""
+    first, last = days
+    same = (role, district, first) == (posting.role, posting.district, posting.valid_from)
+    if posting.delegated_by_id is None or (same and last and last <= posting.valid_to):
+        return
+    raise Refused(
+        f"{posting.delegated_by.username} lent this posting until {posting.valid_to}.",
+        where="valid_to",
+        remedy="It can be ended earlier; anything else is a posting of its own.",
+    )
 
 
 def _new_user(login: str) -> User:

@@ -9,6 +9,7 @@ import pytest
 from structures import access
 from structures.access import Act
 from structures.actions.delegation import Days, delegate, end_delegation
+from structures.actions.people import set_posting
 from structures.errors import Refused
 from structures.models import Entry, Posting, Role
 from structures.queries.delegation import delegations_held, delegator_of, possible_delegates
@@ -126,3 +127,17 @@ def test_a_reason_is_asked_for(officer, engineer):
 def test_only_who_decides_lends(district, engineer, role):
     with pytest.raises(Refused, match="Only a posting of your own"):
         lent(a_user(role, district), engineer)
+
+
+def test_an_administrator_cuts_a_lent_posting_short_and_no_more(district, officer, engineer):
+    keeper, posting = a_user(Role.ADMIN, district), lent(officer, engineer)
+    said = {"user_id": engineer.pk, "posting_id": posting.pk, "district": district, "by": keeper}
+    for days, role in (
+        ((DAY, None), Role.DISTRICT),
+        ((DAY, date(2026, 4, 17)), Role.DISTRICT),
+        ((DAY, date(2026, 4, 12)), Role.PROGRAMME),
+    ):
+        with pytest.raises(Refused, match="lent this posting until 2026-04-16"):
+            set_posting(role=role, days=days, **said)
+    kept = set_posting(role=Role.DISTRICT, days=(DAY, date(2026, 4, 12)), **said)
+    assert (kept.valid_to, kept.delegated_by) == (date(2026, 4, 12), officer)
