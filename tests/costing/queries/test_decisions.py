@@ -6,6 +6,8 @@ from datetime import date
 from decimal import Decimal
 
 import pytest
+from django.db import connection
+from django.test.utils import CaptureQueriesContext
 
 from costing.queries.decision_sheet import decision_sheet
 from costing.queries.decisions import waiting
@@ -128,3 +130,19 @@ def test_a_structure_says_what_it_waits_for_and_from_whom(district, people, sche
     assert ways.decided
     assert [one.name for one in ways.missing] == ["technical-sanction"]
     assert ways.others[:2] == ("closed-off", "priced")
+
+
+def test_the_list_asks_the_database_as_often_for_many_as_for_few(district, people):
+    watershed = a_watershed(district)
+    stream = a_stream(watershed, "Odre", date(2025, 6, 12))
+
+    def asked(count):
+        for at in range(count):
+            site = place(watershed, f"M-{Structure.objects.count()}", 15.70 + at / 1000, stream)
+            Structure.objects.filter(site=site).update(stage="heard")
+        with CaptureQueriesContext(connection) as queries:
+            waiting(people.programme)
+        return len(queries)
+
+    few = asked(3)
+    assert asked(30) == few
