@@ -138,6 +138,17 @@ def sounded(site, engineer):
     return accept_survey(site_id=sounded.pk, name=PACK.name, data=data, by=engineer)
 
 
+def test_refraction_lines_are_told_with_depth_or_reason(office, site, engineer):
+    """Four arrivals of one velocity show no second layer, so the line says why it gives none."""
+    picks = [{"shot_m": 0, "geophone_m": x, "time_ms": 2.0 * x} for x in (5, 10, 15, 20)]
+    line = {"line": "R7", "offset_m": 30.0, "picks": picks}
+    found = read(make.a_survey(site, engineer, refraction=[line])).result["figures"]["refraction"]
+    assert found[0]["words"].startswith("no depth of rock")
+    for path in ("", "surveys/1/"):
+        page = words(office.get(f"/sites/{site.code}/{path}"))
+        assert f"<dt>R7</dt> <dd> {found[0]['words']} </dd>" in page
+
+
 def test_one_sounding_stands_on_log_axes_once_it_is_read(office, sounded):
     waiting = words(office.get("/sites/OD-01/surveys/1/soundings/1/"))
     assert "It has not been read yet." in waiting
