@@ -33,6 +33,7 @@ if TYPE_CHECKING:
     from structures.models import User
 
 PRICE: Final = "estimate.price"
+FROZEN: Final = "estimate frozen"  # the act of the register
 
 
 @transaction.atomic
@@ -133,7 +134,7 @@ def freeze_estimate(run_id: UUID, inputs: PriceInputs, found: Appraisal) -> Esti
         append(
             district=site.watershed.district,
             by=run.asked_by,
-            act="estimate frozen",
+            act=FROZEN,
             subject=f"estimate {estimate.version} of {site.code}",
             structure=design.structure,
             content=frozen_content(estimate),

@@ -9,7 +9,7 @@ from django.shortcuts import get_object_or_404, redirect, render
 from django.utils.translation import gettext as _
 from django.views.decorators.http import require_http_methods, require_safe
 
-from costing.actions.estimate import PRICE, request_estimate
+from costing.actions.estimate import FROZEN, PRICE, request_estimate
 from costing.queries.changes import line_changes, sum_changes
 from costing.queries.estimates import (
     estimate_of_run,
@@ -21,6 +21,7 @@ from costing.web.handing import answer_with_file
 from structures.access import Act, may
 from structures.errors import Refused
 from structures.life.cautions import ALWAYS, CLOSING_SENTENCE
+from structures.queries.register import entry_naming
 from structures.queries.runs import runs_of_site
 from structures.queries.sites import visible_sites
 from structures.web.lists import sheet_of
@@ -78,6 +79,7 @@ def estimate(request: HttpRequest, pk: int) -> HttpResponse:
         "always": [one for one in cautions if one["code"] in ALWAYS],
         "closing": CLOSING_SENTENCE,
         "may_ask": may(request.user, Act.REQUEST_ESTIMATE, found.site),
+        "entry": entry_naming(request.user, FROZEN, "estimate", found.input_digest),
     }
     return render(request, "costing/estimate.html", context)
 

@@ -83,6 +83,12 @@ def entry_of_paper(user: User, paper: Paper) -> Entry | None:
     return found.order_by("number").first()
 
 
+def entry_naming(user: User, act: str, key: str, digest: str) -> Entry | None:
+    """The entry of an act whose content names a digest, as `estimate` does; None where none is."""
+    named = {f"content__{key}": digest}
+    return visible_entries(user).filter(act=act, **named).order_by("number").first()
+
+
 def as_record(entry: Entry) -> chain.Entry:
     """Give an entry as the chain computes with it."""
     return chain.Entry(
