@@ -1,4 +1,4 @@
-"""Watersheds, streams and sites from above: lines as kept, each site by shape and code, north up."""
+"""Watersheds, streams, sites and wells from above: each by shape and code, north up."""
 
 from __future__ import annotations
 
@@ -8,11 +8,19 @@ from itertools import pairwise
 from typing import TYPE_CHECKING, Final
 
 from structures.drawing.letters import PHONE_SMALL_MM, PHONE_TEXT_MM, SMALL_MM, TEXT_MM, width_mm
+from structures.drawing.map_marks import (
+    KEY,
+    MARK_MM,
+    WELL_WORDS,
+    WORDS,
+    draw_mark,
+    is_well,
+    mark_of,
+)
 from structures.drawing.places import Box, Label, Places
 from structures.drawing.scales import round_step
 from structures.drawing.svg import Sheet
 from structures.ground.place import on_grid
-from structures.life.stages import BESIDE_IT, ON_THE_LINE
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator, Sequence
@@ -24,20 +32,8 @@ Position = tuple[float, float]  # longitude, latitude in degrees, WGS 84
 EDGE_MM: Final = 6.0  # paper around what is drawn
 LEAST_SPAN_M: Final = 500.0  # [A] a lone site is shown with some land around it
 BAR_SHARE: Final = 0.2  # of the width, that the scale bar takes at least
-MARK_MM: Final = 1.5  # half the size of a site's mark
 BESIDE_MM: Final = 0.6  # room that a stream's line takes
 KM_M: Final = 1000.0  # exact
-FIRST_BUILT: Final = "digging"
-FIRST_STANDING: Final = "handed-over"
-FIRST_ON_PAPER: Final = "drawn"
-WORDS: Final = {
-    "open circle": "no wall drawn yet",
-    "open square": "wall on paper",
-    "full square": "being built",
-    "full circle": "handed over",
-    "cross": "halted or closed off",
-}
-
 COURSE: Final = "stream"  # in the key
 
 
@@ -60,7 +56,7 @@ class Run:
 
 @dataclass(frozen=True, slots=True)
 class Spot:
-    """A site on the map."""
+    """A site on the map, or a well: its stage is then "well" and its role, as "well control"."""
 
     code: str
     name: str
@@ -84,19 +80,6 @@ WIDE: Final = Form(180.0, 110.0, TEXT_MM, SMALL_MM, 3.4, "dw-wide")
 NARROW: Final = Form(97.0, 97.0, PHONE_TEXT_MM, PHONE_SMALL_MM, 4.2, "dw-narrow")
 
 
-def mark_of(stage: str) -> str:
-    """Give the shape of a stage: one of the keys of WORDS."""
-    if stage in BESIDE_IT:
-        return "cross"
-    order = list(ON_THE_LINE)
-    place = order.index(stage)
-    if place >= order.index(FIRST_STANDING):
-        return "full circle"
-    if place >= order.index(FIRST_BUILT):
-        return "full square"
-    return "open square" if place >= order.index(FIRST_ON_PAPER) else "open circle"
-
-
 def draw_map(
     outlines: Sequence[Outline],
     spots: Sequence[Spot],
@@ -105,7 +88,7 @@ def draw_map(
     name: str = "map",
     narrow: bool = False,
 ) -> str:
-    """Draw outlines, streams and sites as SVG markup for a page.
+    """Draw outlines, streams, sites and wells as SVG markup for a page.
 
     Source: azimuthal equidistant projection about the middle of what is shown (Snyder 1987, 25).
 
@@ -143,11 +126,15 @@ def draw_map(
             points = on_paper.points(line)
             sheet.path(points, "level-a")
             beside += _along(points)
-    _spots(sheet, places, beside, on_paper.points([spot.position for spot in spots]), spots)
+    sites, wells = _apart(spots)
+    for found in (wells, sites):  # where the two meet the site lies on top
+        _marks(sheet, places, on_paper, found)
+    _name_spots(sheet, places, beside, on_paper, sites)
     for outline in outlines:
         _name_outline(sheet, places, beside, on_paper, outline)
     for run in runs:
         _name_run(sheet, places, beside, on_paper, run)
+    _name_spots(sheet, places, beside, on_paper, wells)
     sheet.height_mm = _foot(sheet, on_paper, spots, streams=bool(runs))
     return sheet.markup()
 
@@ -182,18 +169,28 @@ class _Paper:
         )
 
 
-def _spots(
-    sheet: Sheet, places: Places, beside: list[Box], at: list[Point], spots: Sequence[Spot]
-) -> None:
-    for (x, y), spot in zip(at, spots, strict=True):
-        _mark(sheet, (x, y), mark_of(spot.stage))
+def _apart(spots: Sequence[Spot]) -> tuple[list[Spot], list[Spot]]:
+    """Give the sites and the wells."""
+    wells = [spot for spot in spots if is_well(spot.stage)]
+    return [spot for spot in spots if spot not in wells], wells
+
+
+def _marks(sheet: Sheet, places: Places, paper: _Paper, spots: Sequence[Spot]) -> None:
+    for (x, y), spot in zip(paper.points([one.position for one in spots]), spots, strict=True):
+        draw_mark(sheet, (x, y), mark_of(spot.stage))
         places.take(Box(x - MARK_MM, y - MARK_MM, x + MARK_MM, y + MARK_MM))
-    for (x, y), spot in zip(at, spots, strict=True):
+
+
+def _name_spots(
+    sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, spots: Sequence[Spot]
+) -> None:
+    for (x, y), spot in zip(paper.points([one.position for one in spots]), spots, strict=True):
+        strong = not is_well(spot.stage)
         label = _put(
             places,
             beside,
             (
-                Label(x + dx, y + dy, (spot.code,), anchor, strong=True)
+                Label(x + dx, y + dy, (spot.code,), anchor, strong=strong)
                 for dx, dy, anchor in (
                     (2.6, 0.9, "start"),
                     (-2.6, 0.9, "end"),
@@ -208,7 +205,8 @@ def _spots(
         )
         if label is not None:
             ends = {"start": "", "mid": " mid", "end": " end"}[label.anchor]
-            sheet.text((label.x, label.y), spot.code, f"halo strong{ends}")
+            css = "halo strong" if strong else "halo"
+            sheet.text((label.x, label.y), spot.code, f"{css}{ends}")
 
 
 def _name_outline(
@@ -277,19 +275,6 @@ def _along(points: Sequence[Point]) -> Iterator[Box]:
             yield Box(x - BESIDE_MM / 2, y - BESIDE_MM / 2, x + BESIDE_MM / 2, y + BESIDE_MM / 2)
 
 
-def _mark(sheet: Sheet, centre: Point, kind: str) -> None:
-    x, y = centre
-    if kind == "cross":
-        sheet.line((x - MARK_MM, y - MARK_MM), (x + MARK_MM, y + MARK_MM), "p5")
-        sheet.line((x - MARK_MM, y + MARK_MM), (x + MARK_MM, y - MARK_MM), "p5")
-        return
-    css = "p3 fill-ink" if kind.startswith("full") else "p3 fill-paper"
-    if kind.endswith("circle"):
-        sheet.circle(centre, MARK_MM, css)
-    else:
-        sheet.rect((x - MARK_MM, y - MARK_MM), 2.0 * MARK_MM, 2.0 * MARK_MM, css)
-
-
 def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot], *, streams: bool) -> float:
     """Draw scale bar, north and the key below the map; gives the height of the sheet."""
     form, y = paper.form, paper.foot_mm + 3.0
@@ -303,14 +288,14 @@ def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot], *, streams: bool) 
         [(x, y + 2.2), (x + 1.1, y - 2.2), (x + 2.2, y + 2.2), (x + 1.1, y + 1.2)], "fill-ink"
     )
     sheet.text((x + 3.4, y + 1.6), "north", "small")
-    shown = [kind for kind in WORDS if any(mark_of(spot.stage) == kind for spot in spots)]
+    shown = [kind for kind in KEY if any(mark_of(spot.stage) == kind for spot in spots)]
     x, y = EDGE_MM + MARK_MM, y + 6.5
     for kind in shown:
-        wide = 2.0 * MARK_MM + 6.0 + width_mm(WORDS[kind], form.small_mm)
+        wide = 2.0 * MARK_MM + 6.0 + width_mm(KEY[kind], form.small_mm)
         if x + wide > form.width_mm and x > EDGE_MM + MARK_MM:
             x, y = EDGE_MM + MARK_MM, y + form.step_mm + 1.0
-        _mark(sheet, (x, y), kind)
-        sheet.text((x + 2.8, y + 0.9), WORDS[kind], "small")
+        draw_mark(sheet, (x, y), kind)
+        sheet.text((x + 2.8, y + 0.9), KEY[kind], "small")
         x += wide
     if streams:
         if x + 9.0 + width_mm(COURSE, form.small_mm) > form.width_mm:
@@ -321,12 +306,15 @@ def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot], *, streams: bool) 
 
 
 def _describe(outlines: Sequence[Outline], spots: Sequence[Spot], runs: Sequence[Run]) -> str:
-    names = ", ".join(f"{spot.code} ({WORDS[mark_of(spot.stage)]})" for spot in spots)
+    sites, wells = _apart(spots)
+    names = ", ".join(f"{spot.code} ({WORDS[mark_of(spot.stage)]})" for spot in sites)
     sheds = ", ".join(f"{one.name} {one.code}".strip() for one in outlines)
     streams = ", ".join(run.name for run in runs)
+    read = ", ".join(f"{spot.code} ({WELL_WORDS[mark_of(spot.stage)]})" for spot in wells)
     parts = [
         f"Outlines: {sheds}." if sheds else "",
         f"Streams: {streams}." if streams else "",
         f"Sites: {names}." if names else "No site.",
+        f"Wells: {read}." if read else "",
     ]
     return " ".join(part for part in parts if part)

@@ -7,9 +7,10 @@ from typing import TYPE_CHECKING, Final, NamedTuple
 from structures import access
 from structures.drawing.long_profile import Reach
 from structures.drawing.map import Outline, Run, Spot
+from structures.drawing.map_marks import WELL
 from structures.ground.course import Foot, feet_on, lines_of
 from structures.ground.place import distance_m
-from structures.models import LongProfilePoint, Stream
+from structures.models import LongProfilePoint, Stream, Well
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -58,6 +59,15 @@ def runs_of(watersheds: Iterable[Watershed]) -> list[Run]:
 
 def spots_of(sites: Iterable[Site]) -> list[Spot]:
     return [Spot(one.code, one.name, (one.lon, one.lat), one.structure.stage) for one in sites]
+
+
+def well_spots_of(user: User, watershed: Watershed) -> list[Spot]:
+    """Wells of a watershed that have a position, by their role."""
+    found = Well.objects.filter(watershed=watershed, lat__isnull=False, lon__isnull=False)
+    return [
+        Spot(one.code, one.name, (one.lon, one.lat), f"{WELL} {one.role}")
+        for one in found.filter(watershed__in=access.watersheds(user))
+    ]
 
 
 def beds_of(user: User, watershed: Watershed) -> list[Bed]:

@@ -9,7 +9,7 @@ from structures.drawing.long_profile import draw_profile
 from structures.drawing.map import draw_map
 from structures.life.stages import STAGES
 from structures.queries.districts import visible_watersheds
-from structures.queries.map import beds_of, outlines_of, runs_of, spots_of
+from structures.queries.map import beds_of, outlines_of, runs_of, spots_of, well_spots_of
 from structures.queries.sites import visible_sites
 from structures.web.lists import sheet_of
 
@@ -24,11 +24,13 @@ def watersheds(request):
 def watershed(request, code):
     found = get_object_or_404(visible_watersheds(request.user), code=code)
     sites = visible_sites(request.user).filter(watershed=found)
-    shown = outlines_of([found]), spots_of(sites), runs_of([found])
+    spots = [*spots_of(sites), *well_spots_of(request.user, found)]
+    shown = outlines_of([found]), spots, runs_of([found])
     context = {
         "watershed": found,
         "page": sheet_of(request, sites),
         "stages": STAGES,
+        "uncharted": [one for one in found.streams.all() if one.course is None],
         "profiles": _profiles(request.user, found),
     }
     if any(shown):

@@ -6,7 +6,8 @@ import re
 
 import pytest
 
-from structures.drawing.map import WORDS, Outline, Run, Spot, draw_map, mark_of
+from structures.drawing.map import Outline, Run, Spot, draw_map
+from structures.drawing.map_marks import WELL_WORDS, WORDS, mark_of
 from structures.ground.place import distance_m
 from structures.life.stages import STAGES
 from tests.structures.drawing.paper import read, shapes, words
@@ -77,6 +78,31 @@ def test_every_stage_has_a_shape_that_the_key_explains():
     assert mark_of("digging") == "full square"
     assert mark_of("judged") == "full circle"
     assert mark_of("closed-off") == "cross"
+
+
+@pytest.mark.parametrize("narrow", [False, True])
+def test_wells_have_shapes_of_their_own_and_yield_to_sites(narrow):
+    """Law: a site keeps its name and its place on top; the key and the words name the wells."""
+    spots = [
+        Spot("OD-W01", "", WEST, "well upstream"),
+        Spot("OD-W07", "", EAST, "well control"),
+        Spot("OD-01", "", WEST, "drawn"),
+    ]
+    markup = draw_map([SHED], spots, narrow=narrow)
+    assert {mark_of(f"well {role}") for role in ("upstream", "downstream", "control")} == set(
+        WELL_WORDS
+    )
+    assert re.search(r'<text class="halo strong[^>]*>OD-01</text>', markup)
+    assert re.search(r'<text class="halo( mid| end)?"[^>]*>OD-W07</text>', markup)
+    assert markup.index('<rect class="p3') > markup.index("<circle")  # the site over the well
+    assert ">well or pipe</text>" in markup
+    assert ">control well</text>" in markup
+    assert "Wells: OD-W01 (well or pipe), OD-W07 (control well)." in markup
+
+
+def test_a_map_without_wells_explains_none():
+    markup = draw_map([SHED], [Spot("OD-01", "", WEST, "drawn")])
+    assert "well" not in markup
 
 
 @pytest.mark.parametrize("narrow", [False, True])
