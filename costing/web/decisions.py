@@ -16,18 +16,16 @@ from costing.actions.approval import Funding, Terms
 from costing.queries.decision_sheet import decision_sheet, visible_sanctions
 from costing.queries.decisions import waiting
 from costing.web.decision_forms import ApprovalForm, ReasonForm, TermsForm
+from costing.web.seen import priced_structure, signed_in_at
 from structures.access import Act, may
 from structures.actions.photos import keep_photo
 from structures.errors import Refused
 from structures.life.cautions import ALWAYS, CLOSING_SENTENCE
 from structures.queries.delegation import delegations_held
 from structures.queries.questions import questions_of
-from structures.queries.structures import visible_structures
 from structures.web.refusals import STATUS, refuse
 
 if TYPE_CHECKING:
-    from datetime import datetime
-
     from django.http import HttpRequest, HttpResponse
 
 SANCTION, APPROVE = "sanction", "approve"
@@ -46,7 +44,7 @@ def decisions(request: HttpRequest) -> HttpResponse:
 
 @require_safe
 def decision(request: HttpRequest, code: str) -> HttpResponse:
-    return _sheet(request, _visible(request, code))
+    return _sheet(request, priced_structure(request.user, code))
 
 
 @require_POST
@@ -55,14 +53,14 @@ def decide(request: HttpRequest, code: str, act: str) -> HttpResponse:
     acts = {"sanction": _sanction, "approve": _approve, "send-back": _send_back, "refuse": _refuse}
     if act not in acts:
         raise Http404
-    structure = _visible(request, code)
+    structure = priced_structure(request.user, code)
     sheet = decision_sheet(request.user, structure)
     form = _form(request, act, sheet, request.POST)
     if form.is_valid():
         try:
             told = acts[act](request, sheet, form.cleaned_data)
         except Refused as refused:
-            refuse(form, refused, fields={"maker": "", "role": ""})
+            refuse(form, refused)
         else:
             messages.success(request, told)
             return redirect("structures:structure", code)
@@ -79,20 +77,6 @@ def sanction_order(request: HttpRequest, pk: int) -> HttpResponse:
         "content": given.entry and given.entry.content,
     }
     return render(request, "costing/sanction_order.html", context)
-
-
-def signed_in_at(request: HttpRequest) -> datetime | None:
-    """When the session began by which something is decided; None where there is no session."""
-    if not request.session.session_key or "HTTP_AUTHORIZATION" in request.META:
-        return None
-    return request.user.last_login
-
-
-def _visible(request, code):
-    found = get_object_or_404(visible_structures(request.user), site__code=code)
-    if not may(request.user, Act.SEE_MONEY, found):
-        raise Http404
-    return found
 
 
 def _sheet(request, structure, bound=None):
