@@ -172,10 +172,13 @@ def moment(row: Node, zone: tzinfo, ledger: Ledger) -> datetime | None:
     return read_moment(node, zone, ledger)
 
 
-def dry_and_depth(row: Node, ledger: Ledger) -> tuple[bool, float | None]:
+def dry_and_depth(
+    row: Node, ledger: Ledger, *, field: Field = DEPTH
+) -> tuple[bool, float | None]:
     """Read whether the well was dry and the depth; a blank is not read, never zero.
 
-    A word for dry in the column of depths says dry and no depth; it is told.
+    A word for dry in the column of depths says dry and no depth; it is told. `field` is the depth
+    with its range, for callers that doubt what lies outside instead of refusing it.
     """
     dry = bool(given(row, DRY, ledger))
     node = row.named("depth_m")
@@ -183,7 +186,7 @@ def dry_and_depth(row: Node, ledger: Ledger) -> tuple[bool, float | None]:
     if word in UNREAD_WORDS:
         return dry, None
     if word not in DRY_WORDS:
-        return dry, given(row, DEPTH, ledger)
+        return dry, given(row, field, ledger)
     what = f"{shown(node.value)} is read as a dry well whose bottom is not known."
     remedy = "Write yes under dry and the depth of the bottom."
     ledger.add(node, what, remedy, level="warn", rule="LV-05")

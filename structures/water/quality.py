@@ -13,7 +13,7 @@ from itertools import pairwise
 from statistics import quantiles
 from typing import TYPE_CHECKING, Final
 
-from structures.errors import Finding
+from structures.intake.doubt import Doubt
 from structures.intake.fields import DEPTH_MOST_M
 from structures.intake.reading_checks import JUMP_FROM, JUMP_LEAST_M, JUMP_TIMES, ZERO_BESIDE_M
 from structures.units import FOOT_M
@@ -23,7 +23,6 @@ if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
     from datetime import datetime
 
-    from structures.errors import Level
     from structures.water.marks import Mark
 
 BELOW_BOTTOM_M: Final = 0.1  # LV-02
@@ -72,23 +71,6 @@ class Sent:
     depth_m: float | None
     mark: str | None = None
     again_m: float | None = None
-
-
-@dataclass(frozen=True, slots=True)
-class Doubt:
-    """One doubt. `raw` is what was sent in `field`, `suggested` what may have been meant or empty."""
-
-    rule: str
-    field: str
-    level: Level
-    what: str
-    remedy: str
-    raw: str = ""
-    suggested: str = ""
-
-    def finding(self, where: str) -> Finding:
-        """Give it as it is told to people."""
-        return Finding(where, self.field, self.what, self.remedy, self.level, self.rule)
 
 
 @dataclass(frozen=True, slots=True)
