@@ -65,17 +65,14 @@ def typed_of(content: Mapping[str, Any]) -> dict[str, str]:
 
 def told(paper: Paper, content: Mapping[str, Any]) -> list[dict[str, Any]]:
     """Give a filed paper as lines to read: label, value with its unit, rows as a table."""
-    return [
-        {
-            "field": field,
-            "rows": [
-                [_text(row.get(column.name)) for column in field.columns]
-                for row in content.get(field.name) or ()
-            ],
-            "value": _text(content.get(field.name)),
-        }
-        for field in paper.fields
-    ]
+    return [_told(field, content.get(field.name)) for field in paper.fields]
+
+
+def _told(field: PaperField, value: Any) -> dict[str, Any]:
+    if field.kind != "rows":
+        return {"field": field, "rows": [], "value": _text(value)}
+    rows = [[_text(row.get(column.name)) for column in field.columns] for row in value or ()]
+    return {"field": field, "rows": rows, "value": ""}
 
 
 def _box(
