@@ -5,7 +5,7 @@ from __future__ import annotations
 from django.urls import path
 from rest_framework.routers import SimpleRouter
 
-from structures.api import devices, schema, viewsets, works
+from structures.api import devices, schema, viewsets, wells, works
 
 router = SimpleRouter(trailing_slash=False)
 router.register("watersheds", viewsets.Watersheds, "watersheds")
@@ -14,6 +14,8 @@ router.register("surveys", viewsets.Surveys, "surveys")
 router.register("soundings", viewsets.Soundings, "soundings")
 router.register("structures", viewsets.Structures, "structures")
 router.register("strips", works.Strips, "strips")
+router.register("wells", wells.Wells, "wells")
+router.register("levels", wells.Levels, "levels")
 router.register("uploads", viewsets.Uploads, "uploads")
 router.register("runs", viewsets.Runs, "runs")
 

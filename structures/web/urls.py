@@ -21,6 +21,7 @@ from structures.web import (
     surveys,
     trench_urls,
     watersheds,
+    well_urls,
 )
 
 app_name = "structures"
@@ -83,4 +84,5 @@ urlpatterns = [
     path("runs/<uuid:run_id>/", runs.run, name="run"),
     path("runs/<uuid:run_id>/cancel/", runs.cancel, name="cancel-run"),
     *trench_urls.urlpatterns,
+    *well_urls.urlpatterns,
 ]

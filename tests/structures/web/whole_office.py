@@ -20,6 +20,7 @@ from structures.models import (
     Paper,
     PhoneRecord,
     Posting,
+    Repair,
     Role,
     Run,
     Site,
@@ -30,6 +31,7 @@ from structures.models import (
 from structures.runs.queue import execute
 from tests import factories as make
 from tests.papers import a_paper, a_photo
+from tests.structures.wells import a_well, readings_of
 
 SOUNDING = {
     "offset_m": 30.0,
@@ -107,6 +109,9 @@ class Office:
             ("at", "kind"): "look",
             ("holds", "hold_id"): self.site.structure.strips.get(number=1).holds.get().pk,
             ("clashes", "clash_id"): self.site.phone_records.get().clashes.get().pk,
+            ("wells", "code"): self.site.wells.get().code,
+            ("repairs", "repair_id"): Repair.objects.get(reading__well__site=self.site).pk,
+            ("levels", "pk"): self.site.wells.get().readings.first().pk,
             ("uploads", "pk"): self.upload.pk,
             ("runs", "pk"): self.run.pk,
         }[collection, name]
@@ -139,6 +144,7 @@ def whole_office(word: str, price: str) -> Office:
     estimates = tuple(Estimate.objects.filter(site=site).order_by("version"))
     assert len(estimates) == len(schedules)
     _trench(word, people, site)
+    _wells(word, people, site)
     return Office(
         people=people,
         site=site,
@@ -174,6 +180,17 @@ def _trench(word: str, people: dict[str, User], site: Site) -> None:
     )
     Clash.objects.create(
         record=record, content={**record.content, "people": 4}, digest="2" * 64, by=field
+    )
+
+
+def _wells(word: str, people: dict[str, User], site: Site) -> None:
+    """A well that was read, and one of its readings in doubt."""
+    field = people[Role.FIELD]
+    code, name = f"{word}-W1", f"{word} well"
+    well = a_well(site.watershed, field, code, site=site, name=name)
+    first = readings_of(well, field, count=3)[0]
+    Repair.objects.create(
+        reading=first, field="depth_m", rule="LV-10", raw="26.3", told=f"Feet at {word}?"
     )
 
 
