@@ -34,7 +34,8 @@ ROLE_ORDER: Final = ("upstream", "control", "downstream", "other")
 def visible_wells(user: User) -> QuerySet[Well]:
     """Wells with when they were last read and how many of their readings wait for a decision."""
     found = Well.objects.filter(watershed__in=access.watersheds(user))
-    return found.select_related("watershed__district", "site").annotate(
+    found = found.select_related("watershed__district", "site").order_by("code")
+    return found.annotate(
         last_read_at=Max("readings__read_at"),
         waiting=Count("readings", filter=Q(readings__standing=Reading.Standing.HELD)),
     )
