@@ -14,6 +14,7 @@ from structures.intake.survey_pack import read_pack_bytes
 from structures.models import Strip
 from structures.runs.queue import execute
 from tests import factories as make
+from tests.structures.wells import a_well, readings_of
 
 pytestmark = pytest.mark.django_db
 CONTENT = "application/json"
@@ -112,6 +113,7 @@ def test_answers_fit_their_schema(schema, site, engineer, office):
     accept_survey(site_id=site.pk, name="survey.json", data=pack, by=engineer)
     make.a_schedule(site.watershed.district, engineer)
     Strip.objects.create(structure=site.structure, number=1, from_m=8.88, to_m=14.88)
+    readings_of(a_well(site.watershed, engineer, site=site), engineer, count=2)
     asked = office.post(f"/api/v1/sites/{site.code}/estimates", {}, format="json")
     execute(asked.json()["id"])
     for path, method, operation in operations(schema):
