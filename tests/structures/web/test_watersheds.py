@@ -129,6 +129,19 @@ def test_watersheds_are_listed_with_their_sites(office):
     assert page.count('class="dw dw-wide"') == 1
 
 
+def test_a_stream_without_a_course_is_named_until_its_line_comes_in(office, site):
+    site.watershed.streams.create(name="Odre")
+    assert "The course of Odre was not handed in." in words(office.get("/watersheds/OD/"))
+    line = {"type": "LineString", "coordinates": [[77.42, 15.72], [77.47, 15.77]]}
+    course = {"type": "Feature", "properties": {"stream": "Odre"}, "geometry": line}
+    page = hand_in(office, "watersheds", json.dumps(course).encode(), "streams.geojson")
+    assert "OD Odre, course" in words(page)
+    keep(office, page)
+    page = words(office.get("/watersheds/OD/"))
+    assert "The course of Odre" not in page
+    assert page.count(">Odre</text>") == 2
+
+
 def test_another_district_sees_neither_watershed_nor_file(client, office, site):
     keep(office, hand_in(office, "sites", SITES))
     upload = Upload.objects.get()
