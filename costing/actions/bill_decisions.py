@@ -19,7 +19,7 @@ from costing.queries.bills import (
     released_lines,
     settlement_of,
 )
-from costing.queries.contracts import terms_of
+from costing.queries.contracts import terms_of_bill
 from structures.access import Act, insist
 from structures.actions.refusals import as_documents, refusal
 from structures.errors import Refused
@@ -88,7 +88,7 @@ def decide_bill(
     if judged.findings:
         raise refusal(judged.findings, "bill")
     lines = tuple(_as_said(line, said.get(line.asked.line_no, Said())) for line in judged.lines)
-    payable = explain(judged.asked, lines, terms_of(bill.contract))
+    payable = explain(judged.asked, lines, terms_of_bill(bill))
     _insist_payable(bill, payable)
     _keep_lines(bill, lines, said)
     for line in freed:

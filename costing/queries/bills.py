@@ -12,7 +12,7 @@ from costing.models import Bill, BillLine, LineDecision
 from costing.price.billing import BillLineAsked, JudgedLine, Release, judge_lines
 from costing.price.payable import NOTHING, BillAsked, JudgedBill, judge_bill
 from costing.price.settlement import Settlement, settle
-from costing.queries.contracts import contract_in_force, terms_of
+from costing.queries.contracts import contract_in_force, terms_of, terms_of_bill
 from costing.queries.measured import measured_book
 from structures import access
 
@@ -67,6 +67,12 @@ def visible_bills(user: User) -> QuerySet[Bill]:
     )
 
 
+def visible_lines(user: User) -> QuerySet[BillLine]:
+    """Lines of bills of all sites where the user may see money."""
+    seen = access.sites(user, access.Act.SEE_MONEY)
+    return BillLine.objects.filter(bill__structure__site__in=seen).select_related("bill")
+
+
 def lines_of(bill: Bill) -> list[BillLine]:
     """Lines of a bill with what was decided on them since, held ones first."""
     rows = bill.lines.select_related("entry__strip", "entry__measured_by", "entry__checked_by")
@@ -118,7 +124,7 @@ def judged_now(
         Today's values of the contract's price index.
     """
     said = said or {}
-    structure, terms = bill.structure, terms_of(bill.contract)
+    structure, terms = bill.structure, terms_of_bill(bill)
     lines = tuple(
         _asked(line, said.get(line.order, Said()), by)
         for line in bill.lines.select_related("entry").order_by("order")
@@ -164,7 +170,7 @@ def settlement_of(bill: Bill, book: Mapping[str, Measured] | None = None) -> Set
     return settle(
         measured_book(structure) if book is None else book,
         [_judged(row, "paid" if row.state == State.OPEN else row.state) for row in rows],
-        terms_of(bill.contract),
+        terms_of_bill(bill),
         retention_kept=-_taken(structure, "retention"),
         advance_recovered=-_taken(structure, "advance"),
     )

@@ -6,9 +6,10 @@ from dataclasses import dataclass
 from decimal import Decimal
 from typing import TYPE_CHECKING
 
-from costing.models import Contract, Estimate
+from costing.models import Bill, Contract, Estimate
 from costing.price.contract import Advance, ContractTerms, Deduction, IndexShare, PriceIndex
 from costing.price.money import line_amount
+from costing.price.rate_cells import BY_LIFTS
 from costing.price.rates import Rate
 from structures import access
 
@@ -42,6 +43,22 @@ def visible_contracts(user: User) -> QuerySet[Contract]:
 
 def contract_in_force(structure: Structure) -> Contract | None:
     return structure.contracts.prefetch_related("rates").order_by("-version").first()
+
+
+def terms_of_bill(bill: Bill) -> ContractTerms:
+    """Give the terms by which a bill is judged.
+
+    One that was taken over from before has no contract here: its own rates stand, and nothing is
+    kept back, recovered or deducted that nobody stated.
+    """
+    if bill.contract is not None:
+        return terms_of(bill.contract)
+    rates: dict[tuple[str, float | None], Rate] = {}
+    for line in bill.lines.select_related("entry").order_by("order"):
+        entry = line.entry
+        from_m = entry.from_m if entry.item == BY_LIFTS else None
+        rates.setdefault((entry.item, from_m), Rate(entry.item, entry.unit, line.rate, from_m))
+    return ContractTerms(bill.currency, tuple(rates.values()))
 
 
 def terms_of(contract: Contract) -> ContractTerms:

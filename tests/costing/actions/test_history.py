@@ -11,7 +11,9 @@ from uuid import UUID
 import pytest
 
 from costing.actions import demo
+from costing.actions.bill_decisions import decide_bill
 from costing.models import Bill, BillLine, Sanction
+from costing.queries.bills import Said
 from structures.access import Act, watersheds
 from structures.life.chain import content_digest
 from structures.models import (
@@ -247,6 +249,25 @@ def test_bills_stand_as_they_were_with_their_findings(loaded):
         f"TA-05-M07-{item}": ["BL-03", "BL-06"]
         for item in ("rock_key", "clay", "film", "centering")
     }
+
+
+def test_a_bill_of_before_is_decided_without_a_contract(loaded):
+    """Oracle: bills.csv by hand: all lines of TA-05-FB but the four that nobody could see."""
+    final = Bill.objects.get(number="TA-05-FB")
+    officer = User.objects.get(username="district-1")
+    held = {
+        line.order: Said("held", "covered before anybody saw it")
+        for line in final.lines.all()
+        if line.findings
+    }
+    decided = decide_bill(bill_id=final.pk, said=held, by=officer, signed_in_at=datetime.now(UTC))
+    paid = [
+        Decimal(row["amount"])
+        for row in rows("bills")
+        if row["bill_id"] == "TA-05-FB" and int(row["line_no"]) not in held
+    ]
+    assert (len(held), decided.payable) == (4, sum(paid))
+    assert {step["code"] for step in decided.account["steps"]} == {"gross", "held"}
 
 
 def test_sanctions_are_exact_and_without_an_entry(loaded):
