@@ -11,12 +11,9 @@ from typing import TYPE_CHECKING, Any, Final
 from django.db import transaction
 
 from costing.models import Bill, BillLine, Sanction
-from costing.price.billing import BillLineAsked, Measured, judge_lines
-from costing.price.contract import ContractTerms
 from costing.price.history_tables import MONEY_TABLES, PAID
 from costing.price.payable import Payable, Step
-from costing.price.rates import Rate
-from costing.queries.measured import measured_book
+from costing.queries.bills import judged_now
 from structures.actions.history import begin_taking, known_here, seal_history, take_over
 from structures.actions.refusals import as_documents
 from structures.intake.builder import refusal
@@ -27,13 +24,9 @@ if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
     from structures.actions.history import Taking
-    from structures.errors import Finding
     from structures.intake.history import HistoryRow
-    from structures.models import Structure, User
+    from structures.models import User
 
-STATES: Final = {PAID: Bill.State.DECIDED}  # any other is handed in and open
-LINES: Final = {PAID: BillLine.State.PAID}
-OF_THE_RATE: Final = "BL-04"
 WHY: Final = "Taken over: paid before the district was kept here, with no contract to judge it by."
 
 
@@ -87,32 +80,28 @@ def _take_sanctions(taking: Taking, rows: Sequence[HistoryRow]) -> None:
 
 def _take_bills(taking: Taking, rows: Sequence[HistoryRow]) -> None:
     """Keep the bills. The tables do not say who wrote one: it stands under who took it over."""
-    books: dict[str, dict[str, Measured]] = {}
     ordered = sorted(rows, key=lambda row: row.names(("billed_on", "bill_id", "line_no")))
     for number, group in groupby(ordered, key=lambda row: row["bill_id"]):
         lines = list(group)
-        head = lines[0]
-        structure = taking.structures[head["structure_id"]]
-        if head["structure_id"] not in books:
-            books[head["structure_id"]] = measured_book(structure)
-        _take_bill(taking, structure, number, lines, books[head["structure_id"]])
+        bill = _take_bill(taking, number, lines)
+        _take_lines(bill, lines)
+        # The rules of today speak beside each line; what was paid stays paid.
+        findings = {one.asked.line_no: one.findings for one in judged_now(bill).lines}
+        kept = list(bill.lines.all())
+        for line in kept:
+            line.findings = as_documents(findings[line.order])
+        BillLine.objects.bulk_update(kept, ["findings"])
 
 
-def _take_bill(
-    taking: Taking,
-    structure: Structure,
-    number: str,
-    rows: Sequence[HistoryRow],
-    book: dict[str, Measured],
-) -> None:
+def _take_bill(taking: Taking, number: str, rows: Sequence[HistoryRow]) -> Bill:
     head = rows[0]
     total = sum((row["amount"] for row in rows), start=Decimal("0.00"))
     paid = head["status"] == PAID
-    bill = Bill.objects.create(
-        structure=structure,
+    return Bill.objects.create(
+        structure=taking.structures[head["structure_id"]],
         number=number,
         kind=head["kind"],
-        state=STATES.get(head["status"], Bill.State.HANDED_IN),
+        state=Bill.State.DECIDED if paid else Bill.State.HANDED_IN,
         billed_on=head["billed_on"],
         currency=head["currency"],
         claimed=total,
@@ -120,11 +109,11 @@ def _take_bill(
         account=_account(head["currency"], total, len(rows)) if paid else None,
         made_by=taking.by,
     )
-    said = _judge(number, rows, book)
-    entries = {
-        one.code: one
-        for one in structure.measurements.filter(code__in=[row["entry_id"] for row in rows])
-    }
+
+
+def _take_lines(bill: Bill, rows: Sequence[HistoryRow]) -> None:
+    codes = [row["entry_id"] for row in rows]
+    entries = {one.code: one for one in bill.structure.measurements.filter(code__in=codes)}
     BillLine.objects.bulk_create(
         BillLine(
             bill=bill,
@@ -133,27 +122,10 @@ def _take_bill(
             quantity=row["quantity"],
             rate=row["rate"],
             amount=row["amount"],
-            state=LINES.get(row["status"], BillLine.State.OPEN),
-            findings=as_documents(said[row["line_no"]]),
+            state=BillLine.State.PAID if row["status"] == PAID else BillLine.State.OPEN,
         )
         for row in rows
     )
-
-
-def _judge(
-    number: str, rows: Sequence[HistoryRow], book: Mapping[str, Measured]
-) -> dict[int, tuple[Finding, ...]]:
-    """Judge lines against the measurement book; their rates are not judged, there is no contract."""
-    own = {row["item"]: Rate(row["item"], row["unit"], row["rate"]) for row in rows}
-    terms = ContractTerms(rows[0]["currency"], tuple(own.values()))
-    asked = [
-        BillLineAsked(*row.names(("line_no", "entry_id", "quantity", "rate", "amount")))
-        for row in rows
-    ]
-    return {
-        line.asked.line_no: tuple(one for one in line.findings if one.rule != OF_THE_RATE)
-        for line in judge_lines(number, asked, book, terms)
-    }
 
 
 def _account(currency: str, total: Decimal, lines: int) -> dict[str, Any]:
