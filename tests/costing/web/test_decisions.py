@@ -120,6 +120,12 @@ def test_what_stands_against_it_stands_on_the_sheet_and_nothing_is_lost(people, 
     assert not Sanction.objects.exists()
 
 
+def test_what_no_field_is_to_blame_for_stands_above_the_form(people, estimate):
+    answer = act(desk(people.district), "sanction", estimate.pk, **TERMS)
+    assert answer.status_code == 422
+    assert "No limit of the district office for the technical sanction is entered." in page(answer)
+
+
 def test_a_sheet_that_is_no_longer_the_newest_is_void(people, estimate):
     answer = act(desk(people.programme), "sanction", estimate.pk + 1, **TERMS)
     assert answer.status_code == 422
