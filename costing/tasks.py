@@ -7,17 +7,22 @@ from functools import partial
 
 from costing.actions.appraisals import APPRAISAL
 from costing.actions.estimate import PRICE, freeze_estimate
+from costing.actions.option import Asked, asked_before, freeze_forecast
 from costing.appraisal import METHOD, SEED, appraise
 from costing.documents.bundle import documents_of, figures_of
 from costing.documents.reading import reading_json
 from costing.documents.result import as_json
+from costing.forecast import forecast
+from costing.options import ways
 from costing.price.rates import read_rates
 from costing.queries.estimates import price_inputs
+from costing.queries.forecasts import WORKS_FORECAST, forecast_inputs, other_line
 from structures.errors import Refused
 from structures.intake.practice import practice_of
 from structures.intake.survey_pack import read_pack_bytes
 from structures.queries.runs import day_asked
 from structures.queries.survey_reading import READ, read_inputs
+from structures.runs.events import ROCK_FOUND, await_event
 from structures.runs.files import keep_bytes, kept_bytes
 from structures.runs.queue import Outcome, Work, register
 
@@ -83,3 +88,37 @@ def price_estimate(work: Work) -> Outcome:
         {"appraisal": as_json(found), "figures": figures_of(found), "documents": documents},
         partial(freeze_estimate, work.held.run_id, inputs, found),
     )
+
+
+@register(WORKS_FORECAST, version=METHOD)
+def forecast_works(work: Work) -> Outcome:
+    """Price a wall with the rock as found and weigh the ways on; the paper opens as the run ends."""
+    work.progress(0.05, "reading drawing, rock as found, rates and measurement book")
+    inputs = forecast_inputs(work.params["structure"])
+    said = work.params.get("asked")
+    asked = asked_before(inputs.structure) if said is None else Asked(**said)
+    counted = {"on": inputs.on, "practice": inputs.practice}
+    work.progress(0.15, "re-conditioning the rock line, pricing")
+    found = forecast(inputs.drawn, inputs.found, inputs.books, draws=inputs.draws, **counted)
+    options = ()
+    if found.appraisal.design is not None:
+        work.progress(0.6, "weighing four ways on")
+        rates = {"schedule": inputs.books.schedule, **counted}
+        other = None
+        if asked.other_survey is not None:
+            other = appraise(other_line(inputs.structure, asked.other_survey), **rates)
+        options = ways.weigh(
+            found,
+            appraise(inputs.drawn.pack, **rates),
+            inputs.on_site(found.measured and found.measured.amount),
+            inputs.season,
+            ways.Asked(asked.shelf_m, asked.reach_m, other, asked.licensed_design),
+        )
+    # Without a sum of money: whoever may see the run may read its result.
+    return Outcome(
+        {"levels": len(inputs.found), "total_known": found.total is not None},
+        partial(freeze_forecast, work.held.run_id, inputs, found, options, asked),
+    )
+
+
+await_event(ROCK_FOUND, kind=WORKS_FORECAST)

@@ -58,6 +58,19 @@ def clocks_of(
     return clocks
 
 
+def plan_of(structure: Structure) -> tuple[Plan, Progress]:
+    """Give first flow and reserve of one structure with the district's rates of progress.
+
+    The days needed are those of its season sheet, or not known.
+    """
+    district, today = structure.site.watershed.district, today_of(structure.site.watershed.district)
+    early = early_first_flow(_first_runs([structure]).get(structure.site.stream_id, ()), today)
+    progress, reserve = _rates(district)
+    sheet = _season_sheets([structure]).get(structure.pk)
+    plan = Plan(early, None, reserve) if sheet is None else _planned(early, sheet, today)
+    return plan, progress
+
+
 def _first_runs(rows: list[Structure]) -> dict[int | None, list[date]]:
     found: dict[int | None, list[date]] = defaultdict(list)
     streams = {row.site.stream_id for row in rows} - {None}

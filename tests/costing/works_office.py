@@ -58,7 +58,8 @@ def a_deal(**changes):
 
 
 def a_works_office(code="OD-01", district=None, **terms):
-    trench = a_trench(code, district)
+    """No sounding is read anew each time; the rock line of the survey was settled."""
+    trench = a_trench(code, district, without=("soundings", "refraction"))
     officer = a_user(Role.DISTRICT, trench.structure.site.watershed.district)
     contract = enter_contract(structure_id=trench.structure.pk, deal=a_deal(**terms), by=officer)
     return WorksOffice(trench, officer, contract)
