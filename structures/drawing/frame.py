@@ -155,6 +155,8 @@ def _lowest_m(view: SectionView) -> float:
         levels.append(float(low.min()))
     if view.wall is not None and len(view.wall.rock_m):
         levels.append(float(view.wall.rock_m.min()) - view.wall.key_m)
+    if view.built is not None and view.built.wall is not None and len(view.built.wall.rock_m):
+        levels.append(float(view.built.wall.rock_m.min()) - view.built.wall.key_m)
     return min(levels)
 
 

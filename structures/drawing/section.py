@@ -11,6 +11,12 @@ from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
+from structures.drawing.as_built import (
+    blank_missed,
+    built_words,
+    draw_built,
+    strips_row,
+)
 from structures.drawing.frame import (
     NARROW,
     WIDE,
@@ -84,9 +90,11 @@ def draw_section(view: SectionView, *, name: str = "section", narrow: bool = Fal
     _earth(board)
     if view.wall is not None:
         _wall(board, view.wall)
+    blank_missed(board)
     _ground(board)
+    draw_built(board)
     unnamed = _marks(board)
-    edge = offset_scale(board) if narrow else number_rows(board)
+    edge = strips_row(board, offset_scale(board) if narrow else number_rows(board))
     sheet.height_mm = round(notice(board, footing(board, edge, unnamed)) + 0.5, 2)
     return sheet.markup()
 
@@ -174,7 +182,8 @@ def _ground(board: Board) -> None:
     if view.rock is not None:
         if view.wall is None:
             _band(board)
-        sheet.path(frame.points(view.rock.offset_m, view.rock.level_m), "rock-read")
+        if view.built is None:
+            sheet.path(frame.points(view.rock.offset_m, view.rock.level_m), "rock-read")
     if view.wall is not None:
         for side in (0, 1):
             if view.wall.closed[side]:
@@ -242,6 +251,8 @@ def describe(view: SectionView) -> str:
         said += [f"Rock not surveyed from {a:.2f} to {b:.2f} m." for a, b in view.gaps]
     if view.wall is not None:
         said.append(_wall_words(view.wall))
+    if view.built is not None:
+        said += built_words(view.built)
     if view.water_m is not None:
         said.append(f"Water stands at {view.water_m:.2f} m.")
     said += [f"Caution: {caution_words(view)}", "The same values stand in the table of numbers."]

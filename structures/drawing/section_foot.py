@@ -48,8 +48,11 @@ def number_rows(board: Board) -> float:
     if view.rock is not None:
         first, last = view.rock.reach
         known = (chosen >= first) & (chosen <= last)
+        words = "settled" if view.rock.low_m is None else "50 %"
+        if view.built is not None:
+            known, words = known & view.built.levelled(chosen), "found"
         rock = np.where(known, view.rock.at(chosen), np.nan)
-        rows.append((f"rock m, {'settled' if view.rock.low_m is None else '50 %'}", rock))
+        rows.append((f"rock m, {words}", rock))
     x, y = frame.x(chosen), frame.foot
     for at in x:
         sheet.line((float(at), y), (float(at), y + 0.9), "p2")
@@ -156,11 +159,15 @@ def key_entries(view: SectionView) -> list[tuple[str, str]]:
     rock, wall = view.rock, view.wall
     wall = wall if wall is not None and len(wall.offset_m) else None
     banded = rock is not None and rock.low_m is not None
+    built = view.built
     entries = (
         ("ground", "ground", True),
         ("rock-seen", "rock seen", rock is not None and any(kind in SEEN for kind in kinds)),
         ("rock-read", "rock read, 50 %", banded),
-        ("rock-read", "rock, settled line", rock is not None and not banded),
+        ("rock-read", "rock, settled line", rock is not None and not banded and built is None),
+        ("p5", "rock as found, wall as built", built is not None),
+        ("wall-thin", "rock and wall as drawn", built is not None and built.line is not None),
+        ("rock-seen", "rock levelled in the trench", built is not None and bool(built.found)),
         ("band", "its 10 to 90 % range", banded),
         ("clay", "puddle clay, key", wall is not None),
         ("film", "film, fold over top", wall is not None and wall.film),

@@ -51,7 +51,7 @@ def view_section(
         ground_m=np.array([point.level_m for point in pack.ground]),
         toes_m=(pack.toes.left_m, pack.toes.right_m),
         rock=_rock(pack, rock),
-        wall=None if cutoff is None else _wall(cutoff, film=pack.wall.film_faces > 0),
+        wall=None if cutoff is None else wall_drawn(cutoff, film=pack.wall.film_faces > 0),
         tests=_tests(pack, rock, soundings),
         water_m=pack.ground_water.water_level_m,
         cautions=cautions,
@@ -73,7 +73,8 @@ def _rock(pack: SurveyPack, rock: RockLine) -> RockDrawn | None:
     return RockDrawn(at, *lines)
 
 
-def _wall(cutoff: Cutoff, *, film: bool) -> WallDrawn:
+def wall_drawn(cutoff: Cutoff, *, film: bool) -> WallDrawn:
+    """Give a wall of one rock line as it is drawn."""
     section, ends = cutoff.section, cutoff.ends
     there = cutoff.stands[0]
     both = (cutoff.left, cutoff.right)

@@ -126,11 +126,43 @@ class WallDrawn:
         return np.split(np.arange(len(self.offset_m)), apart) if len(self.offset_m) else []
 
 
+@dataclass(frozen=True, slots=True)
+class StripBuilt:
+    """One strip of a wall that was built, and what must be said of it for ever."""
+
+    number: int
+    from_m: float
+    to_m: float
+    unseen: str = ""
+
+
+@dataclass(frozen=True, eq=False, slots=True)
+class Built:
+    """What a sheet as built shows besides: the line and the wall as drawn, strips, levels found.
+
+    `measured` and `missed` are the stretches along which the rock was levelled and was not; `line`
+    and `wall` are None where no drawing is kept. `found` holds offset and level of each reading.
+    """
+
+    measured: tuple[Stretch, ...]
+    missed: tuple[Stretch, ...]
+    strips: tuple[StripBuilt, ...]
+    found: tuple[tuple[float, float], ...]
+    line: RockDrawn | None = None
+    wall: WallDrawn | None = None
+
+    def levelled(self, offset_m: NDArray) -> NDArray[np.bool_]:
+        """Tell for each offset whether it lies in a stretch that was levelled."""
+        inside = [(offset_m >= one.from_m) & (offset_m <= one.to_m) for one in self.measured]
+        return np.any(inside, axis=0) if inside else np.zeros(np.shape(offset_m), dtype=bool)
+
+
 @dataclass(frozen=True, eq=False, slots=True)
 class SectionView:
     """One section under the line. Rock None: not surveyed; wall None: not known.
 
-    `cautions` are all of the site's; the drawing carries those that belong on it.
+    `cautions` are all of the site's; the drawing carries those that belong on it. With `built` rock
+    and wall are those that were found and built, firm, over those that were drawn, thin.
     """
 
     site_code: str
@@ -143,6 +175,7 @@ class SectionView:
     tests: tuple[GroundTest, ...] = ()
     water_m: float | None = None
     cautions: tuple[Caution, ...] = ()
+    built: Built | None = None
 
     def __post_init__(self) -> None:
         object.__setattr__(self, "offset_m", rising(self.offset_m))
