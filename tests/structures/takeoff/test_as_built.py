@@ -72,7 +72,7 @@ def test_rock_found_as_drawn_differs_nowhere_and_strips_add_up_to_the_wall():
     found = tuple(
         FoundLevel(x, float(np.interp(x, *zip(*line, strict=True))), one.number)
         for one in strips
-        for x in (one.from_m, one.to_m)
+        for x in (one.from_m, *(b for b, _ in line if one.from_m < b < one.to_m), one.to_m)
     )
     compared = compare(drawn, wall_of(take_in(pack, found).pack), pack.wall, strips, found)
     whole = measure(drawn, pack.wall)
