@@ -88,6 +88,17 @@ def read_list_sheet(name: str, data: bytes, title: str, ledger: Ledger) -> Table
     return _table(name, found, rows, ledger)
 
 
+def read_sheets(name: str, data: bytes, ledger: Ledger) -> list[Sheet]:
+    """Read every sheet as it looks; none, with findings, where the workbook cannot be read."""
+    opened = _open(name, data, ledger)
+    if opened is None:
+        return []
+    sheets, formulas = opened
+    for title, rows in sheets:
+        _tell_formulas(name, title, rows, formulas.get(title, []), ledger)
+    return sheets
+
+
 def _open(
     name: str, data: bytes, ledger: Ledger
 ) -> tuple[list[Sheet], dict[str, list[str]]] | None:
