@@ -5,7 +5,7 @@
 (() => {
   const form = document.querySelector("form[data-record]");
   if (!form) return;
-  const { store, photo, send, say } = underbund;
+  const { store, photo, say } = underbund;
   const about = form.dataset, page = location.pathname;
   const steps = [...form.querySelectorAll("[data-step]")];
   const last = form.querySelector("[data-last]");
@@ -92,7 +92,7 @@
     const sends = {
       id: crypto.randomUUID(), type: about.record, site: about.site, device_time: made.toISOString(),
       ...(about.strip ? { strip: Number(about.strip) } : null), ...(names.length ? { photos: names } : null),
-      ...values,
+      ...(about.hold && !values.hold ? { hold: about.hold } : null), ...values,
     };
     await store.keep(
       { id: sends.id, sends, by: about.person, made: made.toISOString(), title: about.title, page, waits: true, result: "", findings: [] },
@@ -115,5 +115,4 @@
   });
   form.noValidate = true;
   begin();
-  void send;
 })();
