@@ -6,6 +6,8 @@ from http import HTTPStatus
 
 from django.conf import settings
 from django.contrib.auth import authenticate
+from django.contrib.auth.signals import user_login_failed
+from django.utils import timezone
 from drf_spectacular.extensions import OpenApiAuthenticationExtension
 from drf_spectacular.utils import OpenApiExample, OpenApiResponse, extend_schema
 from rest_framework import exceptions, serializers
@@ -14,8 +16,10 @@ from rest_framework.response import Response
 from rest_framework.throttling import AnonRateThrottle
 
 from structures.actions.devices import end_token, give_token
+from structures.actions.second_factor import take_code
 from structures.api.tokens import DeviceAuthentication
 from structures.api.views import OfficeView
+from structures.queries.second_factor import factor_of
 
 
 class DeviceScheme(OpenApiAuthenticationExtension):
@@ -43,6 +47,11 @@ class Locked(exceptions.Throttled):
 class Credentials(serializers.Serializer):
     username = serializers.CharField(max_length=150)
     password = serializers.CharField(trim_whitespace=False, max_length=4096)
+    one_time_code = serializers.CharField(
+        required=False,
+        max_length=40,
+        help_text="where the account has a second step: six digits, or a code of the printed list",
+    )
 
 
 class Token(serializers.Serializer):
@@ -61,7 +70,9 @@ class SignIn(OfficeView):
         request=Credentials,
         responses={
             200: Token,
-            401: OpenApiResponse(description="name and password do not fit"),
+            401: OpenApiResponse(
+                description="name and password do not fit, or the one-time code is missing or wrong"
+            ),
             429: OpenApiResponse(description="locked for a while, see Retry-After"),
         },
         auth=[],
@@ -82,21 +93,43 @@ class SignIn(OfficeView):
         said = Credentials(data=request.data)
         said.is_valid(raise_exception=True)
         page = request._request
+        code = said.validated_data.pop("one_time_code", "")
         user = authenticate(page, **said.validated_data)
-        if getattr(page, "axes_locked_out", False):
-            # The lock is that of the pages; its page is not for a device.
-            page.axes_locked_out = False
-            raise Locked(wait=settings.AXES_COOLOFF_TIME.total_seconds())
+        _stop_if_locked(page)
         if user is None:
             raise WrongPassword()
+        if factor_of(user) is not None:
+            if not code:
+                raise CodeMissing()
+            if not take_code(user_id=user.pk, code=code, now=timezone.now()):
+                # A wrong code counts like a wrong password.
+                known = {"username": user.username}
+                user_login_failed.send(sender=__name__, credentials=known, request=page)
+                _stop_if_locked(page)
+                raise WrongCode()
         token, expires = give_token(user=user)
         return Response(Token({"token": token, "expires": expires}).data)
+
+
+def _stop_if_locked(page):
+    """Answer a device in its own words; the lock is that of the pages, its page is not."""
+    if getattr(page, "axes_locked_out", False):
+        page.axes_locked_out = False
+        raise Locked(wait=settings.AXES_COOLOFF_TIME.total_seconds())
 
 
 class WrongPassword(exceptions.APIException):
     status_code = HTTPStatus.UNAUTHORIZED
     default_detail = "Name and password do not fit, or the account has ended."
     auth_header = "Token"
+
+
+class CodeMissing(WrongPassword):
+    default_detail = "This account has a second step: send `one_time_code` as well."
+
+
+class WrongCode(WrongPassword):
+    default_detail = "That one-time code does not fit, or it was used before. Send the next one."
 
 
 class SignOut(OfficeView):

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from django.contrib.auth.backends import ModelBackend
 from django.contrib.auth.hashers import UNUSABLE_PASSWORD_PREFIX
+from django.utils.crypto import constant_time_compare
 
 from structures.access import account_over
 from structures.models import User
@@ -19,3 +20,11 @@ class AccountBackend(ModelBackend):
 def anyone_has_a_password() -> bool:
     """Whether any account can be signed in to without a one-time word."""
     return User.objects.exclude(password__startswith=UNUSABLE_PASSWORD_PREFIX).exists()
+
+
+def account_that_waits(user_id: int, session_hash: str) -> User | None:
+    """The account of which the password was right, if it is in force and its password the same."""
+    user = User.objects.filter(pk=user_id, is_active=True).first()
+    if user is None or account_over(user):
+        return None
+    return user if constant_time_compare(user.get_session_auth_hash(), session_hash) else None

@@ -6,10 +6,10 @@ from datetime import timedelta
 
 from django.conf import settings
 from django.contrib import messages
-from django.contrib.auth import login, logout, update_session_auth_hash
+from django.contrib.auth import logout, update_session_auth_hash
 from django.contrib.auth.decorators import login_not_required
 from django.contrib.auth.views import LoginView
-from django.shortcuts import redirect, render
+from django.shortcuts import redirect, render, resolve_url
 from django.utils.translation import gettext as _
 from django.views.decorators.cache import never_cache
 from django.views.decorators.debug import sensitive_post_parameters
@@ -20,15 +20,18 @@ from structures.errors import Refused
 from structures.queries.people import own_postings
 from structures.web.account_forms import PasswordForm, SignInForm, WelcomeForm
 from structures.web.refusals import STATUS, refuse
+from structures.web.sessions import come_in
 
 TOO_MANY = 429  # too many requests (RFC 6585, 4)
-BACKEND = "structures.queries.accounts.AccountBackend"
 
 
 class SignIn(LoginView):
     template_name = "registration/sign_in.html"
     authentication_form = SignInForm
     redirect_authenticated_user = True
+
+    def form_valid(self, form):
+        return come_in(self.request, form.get_user(), self.get_success_url())
 
     def form_invalid(self, form):
         return self.render_to_response(self.get_context_data(form=form), status=STATUS)
@@ -74,8 +77,7 @@ def welcome(request):
         except Refused as refused:
             refuse(form, refused)
         else:
-            login(request, user, backend=BACKEND)
-            return redirect(settings.LOGIN_REDIRECT_URL)
+            return come_in(request, user, resolve_url(settings.LOGIN_REDIRECT_URL))
     context = {"form": form}
     return render(request, "registration/welcome.html", context, status=_status(form))
 

@@ -13,9 +13,11 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 
 from structures.actions import people as acts
 from structures.actions.enrolment import enrol
+from structures.actions.second_factor import ask_reset
 from structures.errors import Refused
 from structures.queries.frame import frame_of
 from structures.queries.people_review import people_to_review, person_to_review
+from structures.queries.second_factor import factor_of, open_reset_of
 from structures.web.lists import sheet_of
 from structures.web.people_forms import AccountForm, NewPersonForm, PostingForm
 from structures.web.refusals import STATUS, refuse
@@ -75,7 +77,13 @@ def person(request, user_id):
         else:
             messages.success(request, _("Kept."))
             return redirect("structures:person", user_id)
-    return _answer(request, "structures/person.html", {"form": form, "line": line}, form)
+    context = {
+        "form": form,
+        "line": line,
+        "factor": factor_of(line.person),
+        "reset": open_reset_of(line.person),
+    }
+    return _answer(request, "structures/person.html", context, form)
 
 
 @require_http_methods(["GET", "HEAD", "POST"])
@@ -113,6 +121,15 @@ def end_sessions(request, user_id):
     _line(request, user_id)
     acts.end_sessions(user_id=user_id, by=request.user)
     messages.success(request, _("Every session of this account has ended."))
+    return redirect("structures:person", user_id)
+
+
+@require_POST
+@keepers_only
+def ask_factor_reset(request, user_id):
+    _line(request, user_id)
+    ask_reset(user_id=user_id, reason=request.POST.get("reason", ""), by=request.user)
+    messages.success(request, _("Asked. An approver of the district must agree to it."))
     return redirect("structures:person", user_id)
 
 

@@ -16,6 +16,7 @@ from structures.actions.questions import ask
 from structures.actions.strips import cut_wall
 from structures.models import (
     Clash,
+    FactorReset,
     HoldPoint,
     Paper,
     PhoneRecord,
@@ -31,6 +32,7 @@ from structures.models import (
 from structures.runs.queue import execute
 from tests import factories as make
 from tests.papers import a_paper, a_photo
+from tests.structures.web.office_money import money_value, seed_money
 from tests.structures.wells import a_well, readings_of
 
 SOUNDING = {
@@ -102,6 +104,7 @@ class Office:
             ("sanctions", "pk"): self.sanction.pk,
             ("money-lines", "pk"): self.sanction.money_line.pk,
             ("moves", "to"): "walked",
+            **money_value(self.site),
             ("strips", "number"): 1,
             ("strips", "kind"): "found-level",
             ("strips", "pk"): self.site.structure.strips.get(number=1).pk,
@@ -114,6 +117,7 @@ class Office:
             ("levels", "pk"): self.site.wells.get().readings.first().pk,
             ("uploads", "pk"): self.upload.pk,
             ("runs", "pk"): self.run.pk,
+            ("factor-resets", "reset_id"): self.people[Role.DISTRICT].factor_resets.get().pk,
         }[collection, name]
 
 
@@ -145,6 +149,8 @@ def whole_office(word: str, price: str) -> Office:
     assert len(estimates) == len(schedules)
     _trench(word, people, site)
     _wells(word, people, site)
+    _lost_factor(word, people)
+    seed_money(word, price, people, site)
     return Office(
         people=people,
         site=site,
@@ -180,6 +186,16 @@ def _trench(word: str, people: dict[str, User], site: Site) -> None:
     )
     Clash.objects.create(
         record=record, content={**record.content, "people": 4}, digest="2" * 64, by=field
+    )
+
+
+def _lost_factor(word: str, people: dict[str, User]) -> None:
+    """A second step that was lost, so that another approver is asked."""
+    FactorReset.objects.create(
+        user=people[Role.DISTRICT],
+        reason=f"Telephone lost at {word}.",
+        asked_by=people[Role.ADMIN],
+        asked_at=timezone.now(),
     )
 
 
