@@ -4,7 +4,17 @@ from __future__ import annotations
 
 from django.urls import path
 
-from costing.web import decisions, estimates, front, money_lines, moves, schedules
+from costing.web import (
+    bills,
+    contracts,
+    decisions,
+    estimates,
+    front,
+    money_lines,
+    moves,
+    options,
+    schedules,
+)
 
 app_name = "costing"
 
@@ -29,6 +39,16 @@ urlpatterns = [
     path("money-lines/", money_lines.money_lines, name="money-lines"),
     path("money-lines/<int:pk>/", money_lines.money_line, name="money-line"),
     path("sites/<str:code>/moves/<str:to>/", moves.move, name="move"),
+    path("sites/<str:code>/contract/", contracts.contract, name="contract"),
+    path("sites/<str:code>/contract/new/", contracts.new_contract, name="new-contract"),
+    path("contracts/<int:pk>/", contracts.contract_version, name="contract-version"),
+    path("sites/<str:code>/bills/", bills.bills, name="bills"),
+    path("sites/<str:code>/bills/new/", bills.new_bill, name="new-bill"),
+    path("bills/<int:pk>/", bills.bill, name="bill"),
+    path("bills/<int:pk>/acts/<str:act>/", bills.bill_act, name="bill-act"),
+    path("bills/lines/<int:line>/", bills.held_line, name="held-line"),
+    path("sites/<str:code>/forecast/", options.forecast, name="forecast"),
+    path("options/<int:pk>/", options.option, name="option"),
     path("rates/", schedules.rates, name="rates"),
     path("rates/new/", schedules.new_schedule, name="new-schedule"),
     path("rates/<int:pk>/", schedules.schedule, name="schedule"),

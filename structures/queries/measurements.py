@@ -6,6 +6,7 @@ from collections import defaultdict
 from dataclasses import dataclass
 from decimal import Decimal
 from typing import TYPE_CHECKING, Final
+from urllib.parse import urlencode
 from zoneinfo import ZoneInfo
 
 from structures import access
@@ -65,6 +66,19 @@ class Offered:
     working: str
     relies_on: tuple[str, ...]
     seen: bool
+
+    @property
+    def asked(self) -> str:
+        """Give it as an address asks for it: what a form begins with."""
+        known = {
+            "strip": self.strip and self.strip.pk,
+            "item": self.item,
+            "from_m": self.from_m,
+            "to_m": self.to_m,
+            "quantity": f"{self.quantity:f}",
+            "working": self.working,
+        }
+        return urlencode({key: value for key, value in known.items() if value is not None})
 
 
 @dataclass(frozen=True, slots=True)

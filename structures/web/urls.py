@@ -6,11 +6,11 @@ from django.urls import path
 
 from structures.web import (
     accounts,
-    code_urls,
     delegation,
     entry,
     files,
     guide,
+    measurements,
     papers,
     people,
     photos,
@@ -66,6 +66,11 @@ urlpatterns = [
     ),
     path("sites/<str:code>/structure/", structures.structure, name="structure"),
     path("sites/<str:code>/draw/", structures.draw, name="draw"),
+    path("sites/<str:code>/measurements/", measurements.measurements, name="measurements"),
+    path(
+        "sites/<str:code>/measurements/new/", measurements.new_measurement, name="new-measurement"
+    ),
+    path("measurements/<uuid:entry_id>/", measurements.measurement, name="measurement"),
     path("sites/<str:code>/thread/", register.thread, name="thread"),
     path("sites/<str:code>/questions/", structures.ask, name="ask"),
     path("questions/<int:question_id>/", structures.answer, name="answer"),
@@ -84,7 +89,6 @@ urlpatterns = [
     path("runs/", runs.runs, name="runs"),
     path("runs/<uuid:run_id>/", runs.run, name="run"),
     path("runs/<uuid:run_id>/cancel/", runs.cancel, name="cancel-run"),
-    *code_urls.urlpatterns,
     *trench_urls.urlpatterns,
     *well_urls.urlpatterns,
 ]

@@ -33,6 +33,7 @@ from structures.runs.queue import execute
 from tests import factories as make
 from tests.papers import a_paper, a_photo
 from tests.structures.web.office_money import money_value, seed_money
+from tests.structures.web.office_money import money_value, seed_money
 from tests.structures.wells import a_well, readings_of
 
 SOUNDING = {
@@ -105,6 +106,7 @@ class Office:
             ("money-lines", "pk"): self.sanction.money_line.pk,
             ("moves", "to"): "walked",
             **money_value(self.site),
+            **money_value(self.site),
             ("strips", "number"): 1,
             ("strips", "kind"): "found-level",
             ("strips", "pk"): self.site.structure.strips.get(number=1).pk,
@@ -150,6 +152,7 @@ def whole_office(word: str, price: str) -> Office:
     _trench(word, people, site)
     _wells(word, people, site)
     _lost_factor(word, people)
+    seed_money(word, price, people, site)
     seed_money(word, price, people, site)
     return Office(
         people=people,
