@@ -8,7 +8,7 @@ left nothing behind and may come again.
 from __future__ import annotations
 
 import json
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import datetime
 from typing import TYPE_CHECKING, Any, Final
 from zoneinfo import ZoneInfo
@@ -17,12 +17,15 @@ from django.db import IntegrityError, transaction
 from django.utils import timezone
 
 from structures import access
+from structures.actions import readings
 from structures.actions.field_records import TAKE, Taken
 from structures.actions.holds import AskedBefore
 from structures.actions.refusals import as_documents, blocking
 from structures.actions.trench import locked
 from structures.errors import Finding, Refused
+from structures.intake.doubt import Doubt
 from structures.intake.field_records import KINDS, read_record
+from structures.intake.level_records import read_level_record, row_of
 from structures.intake.parcel import AGE_MOST, Sent, clock_doubts, read_parcel
 from structures.models import Clash, PhoneRecord, Strip
 from structures.queries.districts import today_of
@@ -38,6 +41,7 @@ KEPT: Final = "kept"
 ALREADY: Final = "already here"
 HELD: Final = "held"
 REFUSED: Final = "refused"
+LEVEL: Final = "level"  # a reading of a well
 ORDER: Final = tuple(KINDS)  # what opens the way for the next one comes first
 
 
@@ -76,10 +80,14 @@ def take_parcel(*, document: object, by: User) -> tuple[str, tuple[Answer, ...]]
         )
     times = Times(parcel.sent_at, timezone.now())
     doubts = clock_doubts(parcel.records, sent_at=times.sent_at, received_at=_received(by, times))
+    levels = [one for one in parcel.records if one.kind == LEVEL]
     answers = {
         one.place: take_record(sent=one, by=by, times=times, doubt=doubts.get(one.place))
         for one in sorted(parcel.records, key=_order)
+        if one.kind != LEVEL
     }
+    for one, taken in zip(levels, _take_levels(levels, doubts, zone, by), strict=True):
+        answers[one.place] = Answer(taken.id or one.id, taken.result, taken.findings)
     return parcel.name, tuple(answers[place] for place in sorted(answers))
 
 
@@ -95,6 +103,30 @@ def take_record(*, sent: Sent, by: User, times: Times, doubt: ClockDoubt | None 
         return _take(sent, site, by, times, doubt)
     except IntegrityError:  # the same identifier, at another site and in the same moment
         return _take(sent, site, by, times, doubt)
+
+
+def _take_levels(
+    levels: list[Sent], doubts: dict[int, ClockDoubt], zone: ZoneInfo, by: User
+) -> tuple[readings.Answer, ...]:
+    """Take readings of wells, which know for themselves what is there already and what clashes."""
+    told: set[str] = set()
+    records = []
+    for one in levels:
+        values = {**one.values, "id": None if one.id is None else str(one.id)}
+        values.setdefault("read_at", one.content.get("device_time"))
+        if one.photos:
+            values["photo"] = str(one.photos[0])
+        record = read_level_record(row_of(values, f"record {one.place}"), zone, told=told)
+        doubt = doubts.get(one.place)
+        if doubt is not None and record.read_at is not None:
+            raw, suggested = (
+                moment.isoformat(timespec="minutes") for moment in (record.read_at, doubt.suggested)
+            )
+            remedy = f"{suggested} is suggested. Decide."
+            said = Doubt("LV-11", "read_at", "hold", doubt.what, remedy, raw, suggested)
+            record = replace(record, doubts=(*record.doubts, said))
+        records.append(record)
+    return readings.take_readings(records=records, by=by) if records else ()
 
 
 @transaction.atomic
@@ -287,7 +319,7 @@ def _no_text(sent: Sent) -> Finding:
 def _nowhere(sent: Sent) -> Finding:
     where = f"record {sent.place}"
     if sent.kind not in TAKE:
-        known = ", ".join(TAKE)
+        known = ", ".join((*TAKE, LEVEL))
         return Finding(where, "type", "No such record is taken.", f"Known: {known}.")
     what = "There is no such site where you serve."
     return Finding(where, "site", what, "Look at the code; ask for a posting there.")

@@ -158,7 +158,9 @@ def _take(one: LevelRecord, place: _OneWell, batch: _Batch) -> Answer:
     sent = Sent(
         one.read_at.astimezone(place.zone), one.state, one.dry, one.depth_m, one.mark, one.again_m
     )
-    doubts = [*one.doubts, *doubts_of(sent, place.facts, place.past, now=place.now)]
+    own = {(doubt.field, doubt.rule) for doubt in one.doubts}  # who sent it knows more of its clock
+    judged = doubts_of(sent, place.facts, place.past, now=place.now)
+    doubts = [*one.doubts, *(doubt for doubt in judged if (doubt.field, doubt.rule) not in own)]
     before = batch.known.get(one.id) if one.id else None
     if before is not None and _same(before, one):
         return _answer(one, ALREADY, (_already(one),))

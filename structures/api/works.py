@@ -13,7 +13,7 @@ from rest_framework.parsers import MultiPartParser
 
 from structures.access import Act
 from structures.actions.devices import Answered
-from structures.actions.parcels import take_parcel
+from structures.actions.parcels import LEVEL, take_parcel
 from structures.actions.photos import Position, keep_photo
 from structures.actions.refusals import as_documents
 from structures.api.serializers import FindingSerializer, ProblemSerializer
@@ -28,10 +28,10 @@ PROBLEM = OpenApiResponse(ProblemSerializer, "what is wrong, and what to do")
 RESULTS = ("kept", "already here", "held", "refused")
 RECORD = {
     "type": "object",
-    "required": ["id", "type", "site"],
+    "required": ["id", "type"],
     "properties": {
         "id": {"type": "string", "format": "uuid", "description": "made on the phone"},
-        "type": {"enum": list(KINDS)},
+        "type": {"enum": [*KINDS, LEVEL]},
         "site": {"type": "string"},
         "strip": {"type": ["integer", "null"], "minimum": 1},
         "device_time": {"type": "string", "format": "date-time"},
