@@ -11,6 +11,7 @@ from django.utils import timezone
 
 from costing.actions.estimate import request_estimate
 from costing.models import Estimate, MoneyLine, RateSchedule, Sanction
+from structures.actions.complaints import take_complaint
 from structures.actions.day_book import tell_incident
 from structures.actions.questions import ask
 from structures.actions.strips import cut_wall
@@ -115,6 +116,7 @@ class Office:
             ("holds", "hold_id"): self.site.structure.strips.get(number=1).holds.get().pk,
             ("clashes", "clash_id"): self.site.phone_records.get().clashes.get().pk,
             ("wells", "code"): self.site.wells.get().code,
+            ("complaints", "code"): self.site.complaints.get().code,
             ("repairs", "repair_id"): Repair.objects.get(reading__well__site=self.site).pk,
             ("levels", "pk"): self.site.wells.get().readings.first().pk,
             ("uploads", "pk"): self.upload.pk,
@@ -210,6 +212,14 @@ def _wells(word: str, people: dict[str, User], site: Site) -> None:
     first = readings_of(well, field, count=3)[0]
     Repair.objects.create(
         reading=first, field="depth_m", rule="LV-10", raw="26.3", told=f"Feet at {word}?"
+    )
+    take_complaint(
+        site_id=site.pk,
+        received_on=date(2026, 3, 2),
+        from_whom=f"farmer at {word}",
+        text=f"The well at {word} went down.",
+        well=code,
+        by=people[Role.DISTRICT],
     )
 
 
