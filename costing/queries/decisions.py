@@ -7,8 +7,9 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
 from django.db.models import OuterRef, Subquery
+from django.utils import timezone
 
-from costing.models import Estimate, EstimateLine, Sanction
+from costing.models import Bill, Estimate, EstimateLine, OptionPaper, Sanction
 from costing.queries.standing import limit_of, within
 from structures import access
 from structures.access import Act
@@ -19,13 +20,13 @@ from structures.queries.season import clocks_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
-    from datetime import date
+    from datetime import date, datetime
     from decimal import Decimal
 
     from django.db.models import QuerySet
 
     from structures.life.season import Clock
-    from structures.models import User
+    from structures.models import Site, User
 
 # stage -> (what is decided, key of the limit of the district office)
 WAITS: Final[dict[str, tuple[str, str]]] = {
@@ -122,3 +123,35 @@ def quantities_of(rows: list[Structure]) -> dict[int, dict[str, float | None]]:
         known = quantity is not None and so_far is not None
         work[item] = so_far + float(quantity) if known else None
     return dict(found)
+
+
+@dataclass(frozen=True, slots=True)
+class WaitingPaper:
+    """A bill that was handed in, or an option paper that is open."""
+
+    kind: str
+    pk: int
+    site: Site
+    name: str
+    days: int
+
+
+def waiting_papers(user: User) -> list[WaitingPaper]:
+    """Option papers that are open and bills handed in, oldest first: a trench may wait for the first."""
+    options = OptionPaper.objects.filter(
+        way="", structure__site__in=access.sites(user, Act.DECIDE_OPTIONS)
+    ).select_related("structure__site__watershed__district")
+    bills = Bill.objects.filter(
+        state=Bill.State.HANDED_IN, structure__site__in=access.sites(user, Act.DECIDE_BILL)
+    ).select_related("structure__site__watershed__district")
+    found = [
+        *(_paper("option", one, one.cause, one.opened_at) for one in options),
+        *(_paper("bill", one, one.number, one.made_at) for one in bills),
+    ]
+    return sorted(found, key=lambda one: (one.kind != "option", -one.days))
+
+
+def _paper(kind: str, row: OptionPaper | Bill, name: str, since: datetime) -> WaitingPaper:
+    # Both days are those of the clock on the wall: an invented district stands still on its own.
+    days = (timezone.localdate() - timezone.localdate(since)).days
+    return WaitingPaper(kind, row.pk, row.structure.site, name, days)

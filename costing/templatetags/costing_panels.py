@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from django import template
 
+from costing.queries.decisions import waiting_papers
 from costing.queries.estimates import estimates_of, stale_reasons
 from costing.queries.ways import ways_of
 from structures.access import Act, may
@@ -32,3 +33,9 @@ def estimate_panel(context, site):
 def ways(context, structure):
     """What a structure waits for and where the reader may take it; without a sum of money."""
     return ways_of(context["user"], structure)
+
+
+@register.simple_tag(takes_context=True)
+def papers_waiting(context):
+    """Option papers and bills that the reader decides; each has a page of its own."""
+    return waiting_papers(context["user"])

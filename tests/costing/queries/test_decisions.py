@@ -9,8 +9,9 @@ import pytest
 from django.db import connection
 from django.test.utils import CaptureQueriesContext
 
+from costing.models import Bill, OptionPaper
 from costing.queries.decision_sheet import decision_sheet
-from costing.queries.decisions import waiting
+from costing.queries.decisions import waiting, waiting_papers
 from costing.queries.standing import within
 from costing.queries.ways import ways_of
 from structures.actions.settings import change_setting
@@ -146,3 +147,25 @@ def test_the_list_asks_the_database_as_often_for_many_as_for_few(district, peopl
 
     few = asked(3)
     assert asked(30) == few
+
+
+def test_bills_and_option_papers_wait_for_those_who_decide_them(district, people):
+    site = place(a_watershed(district), "EX-A", 15.75, None)
+    said = {"structure": site.structure, "currency": "INR", "claimed": Decimal("10.00")}
+    for number, state in (("RB-1", Bill.State.HANDED_IN), ("RB-2", Bill.State.DRAFT)):
+        Bill.objects.create(
+            number=number,
+            state=state,
+            kind="running",
+            billed_on=DAY,
+            made_by=people.engineer,
+            **said,
+        )
+    OptionPaper.objects.create(
+        structure=site.structure, version=1, cause="Rock 0.8 m deeper", ways=[], digest="d"
+    )
+    told = [(one.kind, one.name, one.days) for one in waiting_papers(people.district)]
+    assert told == [("option", "Rock 0.8 m deeper", 0), ("bill", "RB-1", 0)]
+    assert [one.kind for one in waiting_papers(people.programme)] == ["option"]
+    assert waiting_papers(people.engineer) == []
+    assert waiting_papers(a_user(Role.DISTRICT, a_district("NX"))) == []
