@@ -27,6 +27,7 @@ from costing.queries.standing import newest_sanction, standing_of
 from structures.access import Act, insist
 from structures.actions.refusals import refusal
 from structures.actions.register import append
+from structures.actions.second_factor import insist_given
 from structures.actions.stage import locked
 from structures.errors import Refused
 from structures.models import Entry, Photo
@@ -71,6 +72,7 @@ def sanction(
     terms: Terms,
     by: User,
     signed_in_at: datetime | None,
+    factor_given_at: datetime | None = None,
 ) -> Sanction:
     """Give technical sanction of an estimate, or a revised one where it was given before.
 
@@ -80,6 +82,8 @@ def sanction(
         The estimate that was looked at; a newer one makes the act void.
     signed_in_at
         When the person signed in to the session by which this is given; None for a device's token.
+    factor_given_at
+        When a one-time code was last given in that session; None where none was.
 
     Raises
     ------
@@ -88,6 +92,7 @@ def sanction(
         their own work, or the estimate cannot be sanctioned; `findings` says why.
     """
     structure = _opened(structure_id, Act.SANCTION, by, signed_in_at)
+    _insist_factor(structure, by, factor_given_at)
     estimate = _newest(structure, estimate_id)
     before = newest_sanction(structure, Sanction.Kind.TECHNICAL)
     revised = is_revision(structure, SANCTIONED, before)
@@ -123,6 +128,7 @@ def approve(
     terms: Terms,
     by: User,
     signed_in_at: datetime | None,
+    factor_given_at: datetime | None = None,
 ) -> Sanction:
     """Give administrative approval of an amount from a money line, or a revised one.
 
@@ -138,6 +144,7 @@ def approve(
         is below the technical sanction.
     """
     structure = _opened(structure_id, Act.APPROVE, by, signed_in_at)
+    _insist_factor(structure, by, factor_given_at)
     technical = newest_sanction(structure, Sanction.Kind.TECHNICAL)
     if technical is None or technical.pk != sanction_id:
         raise Refused(
@@ -193,7 +200,13 @@ def send_back(
 
 @transaction.atomic
 def refuse(
-    *, structure_id: int, estimate_id: int, reason: str, by: User, signed_in_at: datetime | None
+    *,
+    structure_id: int,
+    estimate_id: int,
+    reason: str,
+    by: User,
+    signed_in_at: datetime | None,
+    factor_given_at: datetime | None = None,
 ) -> Entry:
     """Refuse the estimate that waits: it is never sanctioned; the wall is drawn anew or set aside.
 
@@ -203,6 +216,7 @@ def refuse(
         If nothing waits for a decision, or no reason is given.
     """
     structure = _opened(structure_id, Act.SANCTION, by, signed_in_at)
+    _insist_factor(structure, by, factor_given_at)
     if structure.stage not in ASKS.values():
         raise Refused(
             f"{structure.site.code} waits for no sanction and no approval.",
@@ -234,6 +248,10 @@ def _opened(structure_id: int, act: Act, by: User, signed_in_at: datetime | None
         )
     insist(by, act, structure)
     return structure
+
+
+def _insist_factor(structure: Structure, by: User, given_at: datetime | None) -> None:
+    insist_given(by=by, district=structure.site.watershed.district, given_at=given_at)
 
 
 def _newest(structure: Structure, estimate_id: int) -> Estimate:

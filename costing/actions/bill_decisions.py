@@ -22,6 +22,7 @@ from costing.queries.bills import (
 from costing.queries.contracts import terms_of_bill
 from structures.access import Act, insist
 from structures.actions.refusals import as_documents, refusal
+from structures.actions.second_factor import insist_given
 from structures.errors import Refused
 from structures.queries.delegation import delegator_of
 from structures.queries.districts import today_of
@@ -49,6 +50,7 @@ def decide_bill(
     said: Mapping[int, Said],
     by: User,
     signed_in_at: datetime | None,
+    factor_given_at: datetime | None = None,
     indices: Mapping[str, Decimal] | None = None,
 ) -> Bill:
     """Decide every line of a bill; a hold keeps its line apart and the rest is paid.
@@ -60,6 +62,8 @@ def decide_bill(
         holds is paid only with a reason, one that a rule blocks never.
     signed_in_at
         When the person signed in; None for a device's token, which decides nothing.
+    factor_given_at
+        When a one-time code was last given in that session; None where none was.
     indices
         Today's values of the contract's price index.
 
@@ -71,6 +75,7 @@ def decide_bill(
     """
     bill = locked_bill(bill_id)
     _insist_person(bill, by, signed_in_at)
+    _insist_factor(bill, by, factor_given_at)
     if bill.state != Bill.State.HANDED_IN:
         raise Refused(
             f"Bill {bill.number} is {bill.get_state_display()}.",
@@ -121,7 +126,13 @@ def decide_bill(
 
 @transaction.atomic
 def decide_held_line(
-    *, line_id: int, state: str, why: str, by: User, signed_in_at: datetime | None
+    *,
+    line_id: int,
+    state: str,
+    why: str,
+    by: User,
+    signed_in_at: datetime | None,
+    factor_given_at: datetime | None = None,
 ) -> LineDecision:
     """Release a line that its bill held, to be paid with the next, or refuse it for good.
 
@@ -134,6 +145,7 @@ def decide_held_line(
     owner = BillLine.objects.values_list("bill_id", flat=True).get(pk=line_id)
     bill = locked_bill(owner)
     _insist_person(bill, by, signed_in_at)
+    _insist_factor(bill, by, factor_given_at)
     line = next(one for one in lines_of(bill) if one.pk == line_id)
     where = f"line {line.order} of bill {bill.number}"
     if bill.state != Bill.State.DECIDED or line.state != State.HELD or is_released(line):
@@ -199,6 +211,11 @@ def _insist_person(bill: Bill, by: User, signed_in_at: datetime | None) -> None:
             "A device's token decides nothing.", remedy="Sign in on the page and decide there."
         )
     insist(by, Act.DECIDE_BILL, bill.structure)
+
+
+def _insist_factor(bill: Bill, by: User, given_at: datetime | None) -> None:
+    district = bill.structure.site.watershed.district
+    insist_given(by=by, district=district, given_at=given_at)
 
 
 def _as_said(line: JudgedLine, said: Said) -> JudgedLine:

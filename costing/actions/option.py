@@ -18,6 +18,7 @@ from costing.queries.standing import standing_of
 from structures.access import Act, insist
 from structures.actions.refusals import as_documents
 from structures.actions.register import append
+from structures.actions.second_factor import insist_given
 from structures.actions.stage import locked
 from structures.errors import Refused
 from structures.life.chain import content_digest
@@ -133,7 +134,14 @@ def freeze_forecast(
 
 @transaction.atomic
 def decide_option(
-    *, paper_id: int, way: str, why: str, seen: str, by: User, signed_in_at: datetime | None
+    *,
+    paper_id: int,
+    way: str,
+    why: str,
+    seen: str,
+    by: User,
+    signed_in_at: datetime | None,
+    factor_given_at: datetime | None = None,
 ) -> OptionPaper:
     """Decide how it goes on. On "go on" and "step" the strips go on once nothing is to be revised.
 
@@ -143,6 +151,8 @@ def decide_option(
         Digest of the figures that were looked at; others by now make the act void.
     signed_in_at
         When the person signed in; None for a device's token, which decides nothing.
+    factor_given_at
+        When a one-time code was last given in that session; None where none was.
 
     Raises
     ------
@@ -157,6 +167,8 @@ def decide_option(
             "A device's token decides nothing.", remedy="Sign in on the page and decide there."
         )
     insist(by, Act.DECIDE_OPTIONS, structure)
+    district = structure.site.watershed.district
+    insist_given(by=by, district=district, given_at=factor_given_at)
     _insist_open(paper, seen, why, by)
     chosen = next((one for one in paper.ways["ways"] if one["way"] == way), None)
     if chosen is None:

@@ -31,6 +31,7 @@ from structures.access import Act, may
 from structures.errors import Refused
 from structures.queries.districts import today_of
 from structures.web.refusals import STATUS, refuse
+from structures.web.sessions import second_factor_given
 
 if TYPE_CHECKING:
     from django.http import HttpRequest, HttpResponse
@@ -119,6 +120,7 @@ def held_line(request: HttpRequest, line: int) -> HttpResponse:
                 why=form.cleaned_data["why"],
                 by=request.user,
                 signed_in_at=signed_in_at(request),
+                factor_given_at=second_factor_given(request),
             )
         except Refused as refused:
             refuse(form, refused)
@@ -196,6 +198,7 @@ def _carry_out(request, bill, act, forms):
         said=said,
         by=by,
         signed_in_at=signed_in_at(request),
+        factor_given_at=second_factor_given(request),
         indices=forms["indices"].values(),
     )
     return _("Bill %(number)s is decided.") % told
@@ -206,7 +209,7 @@ def _sheet(request, bill, *, forms=None, refused=None, line_forms=None):
     shown = {**_forms(bill), **(forms or {})}
     may_decide = may(user, Act.DECIDE_BILL, structure)
     going = bill.state != "decided"
-    judged = judged_now(bill) if going and bill.contract is not None else None
+    judged = judged_now(bill) if going else None
     now = {} if judged is None else {line.asked.line_no: line for line in judged.lines}
     lines = [
         {

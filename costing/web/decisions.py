@@ -24,6 +24,7 @@ from structures.life.cautions import ALWAYS, CLOSING_SENTENCE
 from structures.queries.delegation import delegations_held
 from structures.queries.questions import questions_of
 from structures.web.refusals import STATUS, refuse
+from structures.web.sessions import second_factor_given
 
 if TYPE_CHECKING:
     from django.http import HttpRequest, HttpResponse
@@ -132,6 +133,7 @@ def _sanction(request, sheet, said):
         terms=_terms(said),
         by=request.user,
         signed_in_at=signed_in_at(request),
+        factor_given_at=second_factor_given(request),
     )
     return _("Technical sanction %(number)s is given.") % {"number": given.number}
 
@@ -153,6 +155,7 @@ def _approve(request, sheet, said):
         terms=_terms(said),
         by=request.user,
         signed_in_at=signed_in_at(request),
+        factor_given_at=second_factor_given(request),
     )
     return _("Administrative approval %(number)s is given.") % {"number": given.number}
 
@@ -177,6 +180,7 @@ def _refuse(request, sheet, said):
         reason=said["reason"],
         by=request.user,
         signed_in_at=signed_in_at(request),
+        factor_given_at=second_factor_given(request),
     )
     return _("The estimate is refused, with your reason.")
 

@@ -20,6 +20,7 @@ from structures.access import Act, may
 from structures.errors import Refused
 from structures.web.measurement_forms import NumberField
 from structures.web.refusals import STATUS
+from structures.web.sessions import second_factor_given
 
 if TYPE_CHECKING:
     from django.http import HttpRequest, HttpResponse
@@ -170,5 +171,6 @@ def _carry_out(request, paper, act, form):
         seen=request.POST.get("seen", ""),
         by=request.user,
         signed_in_at=signed_in_at(request),
+        factor_given_at=second_factor_given(request),
     )
     return _("It is decided: %(way)s.") % {"way": form.cleaned_data["way"]}
