@@ -12,6 +12,7 @@ from costing.price.money import line_amount
 from costing.price.rate_cells import BY_LIFTS
 from costing.price.rates import Rate
 from structures import access
+from structures.takeoff.quantity import ITEMS
 
 if TYPE_CHECKING:
     from django.db.models import QuerySet
@@ -108,7 +109,10 @@ def value_of(contract: Contract) -> Decimal | None:
 
 
 def offered_rates(structure: Structure) -> tuple[OfferedRate, ...]:
-    """List the lines of the newest estimate with the rate in force, before a contract its own."""
+    """List the lines of the newest estimate, at the contract's rates once there is one.
+
+    What neither holds stands below them, blank.
+    """
     estimate = Estimate.objects.filter(site=structure.site_id).order_by("-version").first()
     contract = contract_in_force(structure)
     agreed = {} if contract is None else {(r.item, r.from_m): r for r in contract.rates.all()}
@@ -131,5 +135,11 @@ def offered_rates(structure: Structure) -> tuple[OfferedRate, ...]:
         OfferedRate(one.item, one.from_m, one.unit, one.quantity, one.rate, None)
         for place, one in agreed.items()
         if place not in listed
+    ]
+    there = {one.item for one in found}
+    found += [
+        OfferedRate(item, None, unit, None, None, None)
+        for item, unit in ITEMS.items()
+        if item not in there
     ]
     return tuple(found)
