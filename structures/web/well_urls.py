@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from django.urls import path
 
-from structures.web import effect, hydrograph, reading_files, repairs, wells
+from structures.web import effect, hydrograph, reading_files, repairs, well_round, wells
 
 urlpatterns = [
     path("wells/", wells.wells, name="wells"),
@@ -13,6 +13,8 @@ urlpatterns = [
     path("wells/<str:code>/edit/", wells.edit_well, name="well-edit"),
     path("wells/<str:code>/mark/", wells.new_mark, name="new-mark"),
     path("wells/<str:code>/apart/", wells.keep_apart, name="well-apart"),
+    path("today/wells/", well_round.round_of_today, name="well-round"),
+    path("today/wells/<str:code>/", well_round.read_well, name="read-well"),
     path("hydrograph/", hydrograph.hydrograph, name="hydrograph"),
     path("hydrograph/drawing.svg", hydrograph.drawing_svg, name="hydrograph-svg"),
     path("hydrograph/drawing.pdf", hydrograph.drawing_pdf, name="hydrograph-pdf"),
