@@ -40,7 +40,7 @@ if TYPE_CHECKING:
 METHODS: Final = ["GET", "HEAD", "POST"]
 # What a page of the phone needs besides itself, in the order in which scripts are run.
 SCRIPTS: Final = tuple(
-    f"underbund/field/{name}.js" for name in ("store", "shell", "photo", "send", "form", "box")
+    f"underbund/field/{name}.js" for name in ("store", "shell", "photo", "send", "form", "well", "box")
 )
 SHEETS: Final = tuple(
     f"underbund/{name}.css" for name in ("tokens", "page", "forms", "drawing", "field/field")

@@ -69,6 +69,20 @@ underbund.send = (() => {
     }
   }
 
+  /* Readings of wells go by their own door; the answers come in the order of the readings. */
+  async function sendLevels(records) {
+    const list = records.map(({ sends: { type, photos, ...values } }) => (
+      photos ? { ...values, photo: photos[0] } : values
+    ));
+    const { ok, said } = await post(underbund.addresses.levels, JSON.stringify(list), {
+      "Content-Type": "application/json",
+    });
+    if (!ok) throw new Stopped("parcel-refused", said.detail);
+    for (const [place, record] of records.entries()) {
+      await write(record, said[place].result, said[place].findings);
+    }
+  }
+
   const write = (record, result, findings) =>
     store.put("records", {
       ...record, result, findings, answered: new Date().toISOString(),
@@ -99,7 +113,10 @@ underbund.send = (() => {
           if (wrong.length) await write(record, "refused", wrong);
           else ready.push(record);
         }
-        if (ready.length) await sendParcel(ready);
+        const levels = ready.filter((one) => one.sends.type === "level");
+        const rest = ready.filter((one) => one.sends.type !== "level");
+        if (rest.length) await sendParcel(rest);
+        if (levels.length) await sendLevels(levels);
       }
     }
   }

@@ -4,7 +4,7 @@
 
 window.underbund = window.underbund || {};
 
-underbund.addresses = { parcels: "/api/v1/parcels", photos: "/api/v1/photos", box: "/today/parcel/" };
+underbund.addresses = { parcels: "/api/v1/parcels", levels: "/api/v1/levels", photos: "/api/v1/photos", box: "/today/parcel/" };
 
 underbund.say = (name, filled = {}) => {
   const found = document.querySelector(`#words [data-word="${name}"]`);
