@@ -23,3 +23,13 @@ class EstimateFilter(filters.FilterSet):
     run = filters.UUIDFilter("run_id")
     complete = filters.BooleanFilter("complete")
     method = filters.CharFilter("method")
+
+
+class BillFilter(filters.FilterSet):
+    site = filters.CharFilter("structure__site__code")
+    watershed = filters.CharFilter("structure__site__watershed__code")
+    district = filters.CharFilter("structure__site__watershed__district__code")
+    number = filters.CharFilter("number")
+    kind = filters.CharFilter("kind")
+    state = filters.CharFilter("state")
+    billed_on = filters.DateFilter("billed_on")

@@ -146,3 +146,62 @@ class MissingSerializer(serializers.Serializer):
     next_stage = serializers.ChoiceField(list(STAGES), allow_null=True)
     may_go_on = serializers.BooleanField(help_text="whether your role makes the next move")
     missing = MissingLineSerializer(many=True)
+
+
+class BillLineSerializer(serializers.Serializer):
+    line = serializers.IntegerField(source="order")
+    entry = serializers.CharField(source="entry.code")
+    item = serializers.CharField(source="entry.item")
+    from_m = serializers.FloatField(source="entry.from_m", allow_null=True)
+    to_m = serializers.FloatField(source="entry.to_m", allow_null=True)
+    unit = serializers.CharField(source="entry.unit")
+    quantity = _money()
+    rate = _money()
+    amount = _money()
+    state = serializers.CharField(help_text="open, paid, held or refused")
+    why = serializers.CharField()
+    findings = FindingSerializer(many=True)
+
+
+class BillSerializer(serializers.Serializer):
+    id = serializers.IntegerField()
+    site = serializers.CharField(source="structure.site.code")
+    number = serializers.CharField()
+    kind = serializers.CharField(help_text="running or final")
+    state = serializers.CharField(help_text="draft, handed in or decided")
+    billed_on = serializers.DateField()
+    currency = serializers.CharField()
+    claimed = _money(help_text="sum of the lines as billed")
+    held = _money(source="held_sum", allow_null=True, help_text="of held lines; null: none is")
+    payable = _money(allow_null=True, help_text="null until it is decided")
+    account = serializers.JSONField(allow_null=True, help_text="the amount payable step by step")
+    contract = serializers.CharField(source="contract.number", default=None, allow_null=True)
+    made_by = serializers.CharField(source="made_by.username")
+    decided_by = serializers.CharField(source="decided_by.username", default=None, allow_null=True)
+    paid_on = serializers.DateField(allow_null=True)
+
+
+class BillWholeSerializer(BillSerializer):
+    lines = BillLineSerializer(many=True)
+
+
+class BillLineGivenSerializer(serializers.Serializer):
+    line = serializers.IntegerField(min_value=1)
+    entry = serializers.CharField(max_length=60)
+    quantity = _money()
+    rate = _money()
+    amount = _money(required=False, allow_null=True)
+
+
+class BillGivenSerializer(serializers.Serializer):
+    """A draft; without lines it takes every accepted entry that no bill has."""
+
+    site = serializers.CharField()
+    number = serializers.CharField(max_length=60)
+    kind = serializers.ChoiceField(["running", "final"], default="running")
+    billed_on = serializers.DateField()
+    lines = BillLineGivenSerializer(many=True, required=False)
+    total = _money(required=False, allow_null=True)
+    id = serializers.UUIDField(
+        required=False, help_text="the write's own name, see Idempotency-Key"
+    )

@@ -10,6 +10,7 @@ from costing.api import viewsets
 router = SimpleRouter(trailing_slash=False)
 router.register("rate-schedules", viewsets.RateSchedules, "rate-schedules")
 router.register("estimates", viewsets.Estimates, "estimates")
+router.register("bills", viewsets.Bills, "bills")
 
 urlpatterns = [
     path(

@@ -10,9 +10,12 @@ from rest_framework.generics import get_object_or_404
 from rest_framework.response import Response
 from rest_framework.reverse import reverse
 
+from costing.actions.bills import BillGiven, write_bill
 from costing.actions.estimate import request_estimate
 from costing.actions.schedule import import_schedule, preview_schedule
 from costing.api import filters, serializers
+from costing.price.billing import BillLineAsked
+from costing.queries.bills import visible_bills
 from costing.queries.estimates import visible_estimates
 from costing.queries.schedules import visible_schedules
 from costing.queries.ways import ways_of
@@ -140,6 +143,61 @@ class SiteEstimates(Estimates):
             )
             place = reverse("runs-detail", [run.pk], request=request)
             return Answered(HTTPStatus.ACCEPTED, RunSerializer(run).data, {"Location": place})
+
+        return once(request, write)
+
+
+class Bills(Collection):
+    """Bills; a draft is written here, and decided by a person on the page only."""
+
+    serializer_class = serializers.BillSerializer
+    whole_serializer_class = serializers.BillWholeSerializer
+    filterset_class = filters.BillFilter
+    ordering_fields = ("billed_on", "number", "claimed", "payable")
+    ordering = ("-billed_on", "-id")
+    lookup_value_regex = "[0-9]+"
+    query = staticmethod(visible_bills)
+
+    @extend_schema(
+        summary="Write a bill",
+        description=(
+            "Keeps a draft, which an engineer hands in and the district office decides on the page. "
+            "An entry is billed once; a line that a rule blocks refuses the bill whole."
+        ),
+        parameters=[KEY],
+        request=serializers.BillGivenSerializer,
+        responses={
+            201: serializers.BillWholeSerializer,
+            403: PROBLEM,
+            404: PROBLEM,
+            409: PROBLEM,
+            422: PROBLEM,
+        },
+        filters=False,
+    )
+    def create(self, request):
+        said = serializers.BillGivenSerializer(data=request.data)
+        said.is_valid(raise_exception=True)
+        wanted = said.validated_data
+        structure = get_object_or_404(visible_structures(request.user), site__code=wanted["site"])
+        insist(request.user, Act.WRITE_BILL, structure)
+        lines = None
+        if "lines" in wanted:
+            lines = tuple(
+                BillLineAsked(
+                    one["line"], one["entry"], one["quantity"], one["rate"], one.get("amount")
+                )
+                for one in wanted["lines"]
+            )
+        given = BillGiven(
+            wanted["number"], wanted["kind"], wanted["billed_on"], lines, wanted.get("total")
+        )
+
+        def write():
+            kept = write_bill(structure_id=structure.pk, given=given, by=request.user)
+            told = serializers.BillWholeSerializer(visible_bills(request.user).get(pk=kept.pk)).data
+            place = reverse("bills-detail", [kept.pk], request=request)
+            return Answered(HTTPStatus.CREATED, told, {"Location": place})
 
         return once(request, write)
 

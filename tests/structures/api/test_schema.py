@@ -11,9 +11,10 @@ from rest_framework.test import APIClient
 
 from structures.actions.surveys import accept_survey
 from structures.intake.survey_pack import read_pack_bytes
-from structures.models import Strip
+from structures.models import Role, Strip
 from structures.runs.queue import execute
 from tests import factories as make
+from tests.structures.web.office_money import seed_money
 from tests.structures.wells import a_well, readings_of
 
 pytestmark = pytest.mark.django_db
@@ -113,6 +114,8 @@ def test_answers_fit_their_schema(schema, site, engineer, office):
     accept_survey(site_id=site.pk, name="survey.json", data=pack, by=engineer)
     make.a_schedule(site.watershed.district, engineer)
     Strip.objects.create(structure=site.structure, number=1, from_m=8.88, to_m=14.88)
+    others = {role: make.a_user() for role in (Role.DISTRICT, Role.PROGRAMME)}
+    seed_money("Alder", "61.00", {Role.ENGINEER: engineer, **others}, site)
     readings_of(a_well(site.watershed, engineer, site=site), engineer, count=2)
     asked = office.post(f"/api/v1/sites/{site.code}/estimates", {}, format="json")
     execute(asked.json()["id"])
