@@ -81,7 +81,7 @@ def against_entering(
         at = f"{look.looked_at:%H:%M}" + ("" if look.strip is None else f" into {look.strip}")
         what = f"The look of {at} says {look.result}. Nobody goes in."
         found.append(Finding(where, "look", what, "Mend the cause and look again.", rule="TR-01"))
-    elif not standing and (wet := _since_alarm(look, alarms, structure)) is not None:
+    elif not standing and (wet := alarm_since(look, alarms, structure)) is not None:
         what = f"Since the look of {look.looked_at:%H:%M} there was an alarm: {wet.why}."
         remedy = "Nobody goes in until the trench was looked at again."
         found.append(Finding(where, "look", what, remedy, rule="TR-02"))
@@ -91,8 +91,11 @@ def against_entering(
     return tuple(found)
 
 
-def _since_alarm(look: TrenchLook, alarms: Iterable[Alarm], structure: Structure) -> Alarm | None:
-    """Give an alarm that was set after a look; by receiving, where a district stands on one day."""
+def alarm_since(look: TrenchLook, alarms: Iterable[Alarm], structure: Structure) -> Alarm | None:
+    """Give an alarm that was set after a look, lifted or not; the look does not answer it (TR-02).
+
+    Where a district stands still on a day, both are compared by when they came.
+    """
     if structure.site.watershed.district.as_of is not None:
         looked = look.received_at
     else:

@@ -8,6 +8,7 @@ from structures.life.chain import content_digest
 from structures.life.moves import Evidence
 from structures.life.stages import COVERED, DIGGING, RISING
 from structures.models import HoldPoint, TrenchLook
+from structures.queries.trench_day import alarm_since, look_that_counts
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -36,7 +37,7 @@ def trench_evidence(structure: Structure, today: date) -> Iterable[Evidence]:
         told = {"seen": [[str(one.pk), one.hold, one.result] for one in rows]}
         last = rows[-1]
         yield Evidence("hold-points", content_digest(told), last.seen_by.username, last.seen_at)
-    look = _look_of(structure, today)
+    look = look_that_counts(structure, today)
     if look is not None and look.result == TrenchLook.Result.NONE_FOUND:
         told = {"look": [str(look.pk), str(look.day), look.result]}
         yield Evidence("trench-look", content_digest(told), look.by.username, look.received_at)
@@ -45,10 +46,12 @@ def trench_evidence(structure: Structure, today: date) -> Iterable[Evidence]:
 def trench_facts(structure: Structure, to: str, today: date) -> dict[str, Any]:
     """Give the facts of the trench; what nobody wrote down is left out."""
     strips = list(structure.strips.prefetch_related("holds").order_by("number"))
-    look = _look_of(structure, today)
+    look = look_that_counts(structure, today)
     known: dict[str, Any] = {
         "alarm_set": structure.alarms.filter(lifted_at__isnull=True).exists(),
-        "trench_look_today": look is not None and look.result == TrenchLook.Result.NONE_FOUND,
+        "trench_look_today": look is not None
+        and look.result == TrenchLook.Result.NONE_FOUND
+        and alarm_since(look, structure.alarms.all(), structure) is None,
     }
     open_now = tuple(str(one) for one in strips if one.stands in ("open", "halted"))
     never = tuple(f"{one}, not begun" for one in strips if one.stands == "not begun")
@@ -62,11 +65,6 @@ def trench_facts(structure: Structure, to: str, today: date) -> dict[str, Any]:
     if to in ASKED:
         known["holds_not_seen"] = _not_seen(ASKED[to], strips, seen, every=to == COVERED)
     return known
-
-
-def _look_of(structure: Structure, day: date) -> TrenchLook | None:
-    looks = structure.looks.filter(day=day).select_related("by")
-    return looks.order_by("-looked_at", "-received_at").first()
 
 
 def _seen(strip: Strip) -> frozenset[str]:

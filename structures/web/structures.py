@@ -16,6 +16,7 @@ from structures.queries.evidence import papers_of
 from structures.queries.photos import visible_photos
 from structures.queries.questions import questions_of, visible_questions
 from structures.queries.structures import moves_of, visible_structures
+from structures.queries.works import unseen_strips
 
 PHOTOS_SHOWN = 12
 
@@ -28,6 +29,7 @@ def structure(request, code):
     filed = papers_of(found)
     context = {
         "site": found.site,
+        "unseen": unseen_strips(found),
         "structure": found,
         "stage_words": STAGES[found.stage],
         "line": line_of(found.stage),
