@@ -60,7 +60,7 @@ def test_a_strip_covered_unseen_says_so_on_every_sheet(trench):
     strip = dig(trench)
     cover_strip(strip_id=strip.pk, on=DAY, by=trench.field, knows_unseen=True)
     said = "H3 rock cleaned and seen, H4 key cut, H6 film, lower face, H8 film, upper face and top"
-    for place in (WORKS, f"{WORKS}strips/1/", "/sites/OD-01/"):
+    for place in (WORKS, f"{WORKS}strips/1/", "/sites/OD-01/", "/sites/OD-01/structure/"):
         page = text(at(trench.engineer).get(place))
         assert "covered unseen" in page, place
         assert said in page, place
