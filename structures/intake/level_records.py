@@ -189,7 +189,7 @@ def _depth(row: Node, state: str, ledger: Ledger) -> tuple[bool, float | None, t
         if depth_m is not None:
             what = f"The well is {state}, yet {depth_m:g} m was written."
             ledger.add(node, what, "Leave one of the two out.")
-    elif depth_m is None and ledger.blocks == blocks and word not in DRY_WORDS:
+    elif depth_m is None and not dry and ledger.blocks == blocks and word not in DRY_WORDS:
         what = "No depth was read. A blank is not zero."
         ledger.add(node, what, "Write the depth, or say obstructed, flowing or flooded.")
     return dry, depth_m, ()
