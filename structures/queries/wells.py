@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 from zoneinfo import ZoneInfo
 
-from django.db.models import Count, Max, Q
+from django.db.models import Count, Max, OuterRef, Q, Subquery
 
 from structures import access
 from structures.drawing.map import Spot
@@ -198,4 +198,12 @@ def wells_of_site(site: Site) -> list[Well]:
     found = Well.objects.filter(watershed=site.watershed_id).filter(
         Q(site=site) | Q(role=Well.Role.CONTROL)
     )
+    return sorted(found, key=lambda one: (ROLE_ORDER.index(one.role), one.code))
+
+
+def pipes_of(user: User, site: Site) -> list[Well]:
+    """Observation pipes of a site, each with the level of the mark in use as `mark_level_m`."""
+    now = MeasuringPoint.objects.filter(well=OuterRef("pk"), valid_to__isnull=True)
+    found = visible_wells(user).filter(site=site, kind=Well.Kind.PIPE)
+    found = found.annotate(mark_level_m=Subquery(now.values("level_m")[:1]))
     return sorted(found, key=lambda one: (ROLE_ORDER.index(one.role), one.code))
