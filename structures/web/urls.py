@@ -6,6 +6,7 @@ from django.urls import path
 
 from structures.web import (
     accounts,
+    completion_urls,
     delegation,
     entry,
     files,
@@ -89,6 +90,7 @@ urlpatterns = [
     path("runs/", runs.runs, name="runs"),
     path("runs/<uuid:run_id>/", runs.run, name="run"),
     path("runs/<uuid:run_id>/cancel/", runs.cancel, name="cancel-run"),
+    *completion_urls.urlpatterns,
     *trench_urls.urlpatterns,
     *well_urls.urlpatterns,
 ]
