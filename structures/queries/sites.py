@@ -10,6 +10,7 @@ from django.db.models import OuterRef, Q, Subquery
 
 from structures import access
 from structures.models import LongProfilePoint, RockLine, Site, Survey
+from structures.queries.verdicts import with_verdict
 
 if TYPE_CHECKING:
     from django.db.models import QuerySet
@@ -18,10 +19,10 @@ if TYPE_CHECKING:
 
 
 def visible_sites(user: User) -> QuerySet[Site]:
-    """Sites with stage, watershed, stream and what was handed in last."""
+    """Sites with stage, watershed, stream, what was handed in last and the word on their wall."""
     newest = Survey.objects.filter(site=OuterRef("pk")).order_by("-version")
     return (
-        access.sites(user)
+        with_verdict(access.sites(user))
         .select_related("watershed__district", "stream", "structure")
         .annotate(
             newest_survey_id=Subquery(newest.values("pk")[:1]),

@@ -108,6 +108,7 @@ class Office:
             ("moves", "to"): "walked",
             **money_value(self.site),
             **money_value(self.site),
+            ("as-built", "form"): "svg",
             ("strips", "number"): 1,
             ("strips", "kind"): "found-level",
             ("strips", "pk"): self.site.structure.strips.get(number=1).pk,
