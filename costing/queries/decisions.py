@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from collections import defaultdict
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
 from django.db.models import OuterRef, Subquery
 from django.utils import timezone
 
-from costing.models import Bill, Estimate, EstimateLine, OptionPaper, Sanction
-from costing.queries.standing import limit_of, within
+from costing.models import Bill, Estimate, OptionPaper, Sanction
+from costing.queries.standing import limit_of, within, work_of
 from structures import access
 from structures.access import Act
 from structures.life.people import DISTRICT, PROGRAMME
@@ -113,16 +112,9 @@ def _line(
 
 
 def quantities_of(rows: list[Structure]) -> dict[int, dict[str, float | None]]:
-    """Give the work of each structure's newest estimate by item; None where a lift is not known."""
+    """Give the work of each structure's newest estimate by item."""
     by_estimate = {one.newest_estimate: one.pk for one in rows if one.newest_estimate}
-    found: dict[int, dict[str, float | None]] = defaultdict(dict)
-    lines = EstimateLine.objects.filter(estimate__in=by_estimate)
-    for estimate, item, quantity in lines.values_list("estimate", "item", "quantity"):
-        work = found[by_estimate[estimate]]
-        so_far = work.get(item, 0.0)
-        known = quantity is not None and so_far is not None
-        work[item] = so_far + float(quantity) if known else None
-    return dict(found)
+    return {by_estimate[number]: work for number, work in work_of(by_estimate).items()}
 
 
 @dataclass(frozen=True, slots=True)

@@ -2,14 +2,25 @@
 
 from __future__ import annotations
 
+from collections import defaultdict
 from dataclasses import dataclass
 from datetime import date
 from typing import TYPE_CHECKING, Any
 
-from costing.models import Bill, BillLine, Contract, Estimate, Forecast, OptionPaper, Sanction
+from costing.models import (
+    Bill,
+    BillLine,
+    Contract,
+    Estimate,
+    EstimateLine,
+    Forecast,
+    OptionPaper,
+    Sanction,
+)
 from costing.price.money import gated
 from structures.life.chain import content_digest
 from structures.life.moves import Evidence
+from structures.queries.season import clocks_of
 from structures.queries.settings import settings_in_force
 
 if TYPE_CHECKING:
@@ -53,6 +64,7 @@ def standing_of(structure: Structure) -> Standing:
         **_of_the_contract(contract),
         **_of_the_bills(structure),
         **_of_the_option(structure, option, technical, administrative),
+        **_of_the_season(structure, estimate),
     }
     return Standing(estimate, technical, administrative, contract, option, evidence, facts)
 
@@ -176,6 +188,25 @@ def _of_the_option(
     forecast = Forecast.objects.filter(structure=structure).order_by("-at").first()
     known["revisions_missing"] = _revisions(structure, forecast, technical, administrative)
     return known
+
+
+def _of_the_season(structure: Structure, estimate: Estimate | None) -> dict[str, Any]:
+    """Read the clock with the work of the estimate, where no season sheet says how long it takes."""
+    work = {} if estimate is None else {structure.pk: work_of([estimate.pk])[estimate.pk]}
+    last = clocks_of([structure], work)[structure.pk].last_opening_day
+    return {} if last is None else {"last_opening_day": last}
+
+
+def work_of(estimates: Iterable[int]) -> dict[int, dict[str, float | None]]:
+    """Give the work of estimates by item, by their numbers; None where a lift is not known."""
+    found: dict[int, dict[str, float | None]] = defaultdict(dict)
+    lines = EstimateLine.objects.filter(estimate__in=estimates)
+    for estimate, item, quantity in lines.values_list("estimate", "item", "quantity"):
+        work = found[estimate]
+        so_far = work.get(item, 0.0)
+        known = quantity is not None and so_far is not None
+        work[item] = so_far + float(quantity) if known else None
+    return found
 
 
 def _revisions(

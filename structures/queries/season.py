@@ -103,8 +103,9 @@ def _planned(early: EarlyFlow | None, sheet: Paper, today: date) -> Plan:
     """Take days and reserve from the sheet; its date of first flow where no list is kept."""
     said = sheet.content
     on = date.fromisoformat(said["early_flow_on"])
-    if early is None and on >= today:
-        early = EarlyFlow(on, 0)
+    # Of the list and the sheet the earlier day counts.
+    if on >= today and (early is None or on < early.on):
+        early = EarlyFlow(on, 0 if early is None else early.years)
     return Plan(early, said["days_needed"], said["reserve_days"], said["days_needed_deep"])
 
 

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from datetime import datetime, time
 from typing import TYPE_CHECKING
+from zoneinfo import ZoneInfo
 
 from structures import access
 from structures.models import Move, Paper, Structure
@@ -29,6 +31,17 @@ def visible_papers(user: User) -> QuerySet[Paper]:
         .prefetch_related("photos")
         .order_by("-at", "-pk")
     )
+
+
+def moves_before(structure: Structure) -> QuerySet[Move]:
+    """Moves taken over from before the register: of them only the day is known."""
+    return structure.moves.filter(entry__isnull=True).select_related("by").order_by("number")
+
+
+def midnight_of(move: Move) -> datetime:
+    """The moment by which a move of which only the day is known stands among others."""
+    zone = ZoneInfo(move.structure.site.watershed.district.zone)
+    return datetime.combine(move.day, time(), tzinfo=zone)
 
 
 def moves_of(structure: Structure) -> QuerySet[Move]:

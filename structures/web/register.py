@@ -17,7 +17,7 @@ from structures.queries.register import (
     newest_entries,
     with_acts,
 )
-from structures.queries.structures import visible_structures
+from structures.queries.structures import midnight_of, moves_before, visible_structures
 from structures.web.lists import sheet_of
 
 DASH = "\N{EN DASH}"
@@ -56,7 +56,8 @@ def thread(request, code):
         (one.received_at, "photo", one)
         for one in visible_photos(request.user).filter(site=structure.site)
     ]
-    lines = sorted(entries + photos, key=lambda line: line[0])
+    moves = [(midnight_of(one), "move", one) for one in moves_before(structure)]
+    lines = sorted(entries + photos + moves, key=lambda line: line[0])
     context = {"site": structure.site, "structure": structure, "page": sheet_of(request, lines)}
     return render(request, "structures/thread.html", context)
 

@@ -10,7 +10,7 @@ from django.views.decorators.http import require_POST, require_safe
 from structures.access import Act, may, place_of, roles
 from structures.actions import questions as question_actions
 from structures.actions.stage import draw_wall
-from structures.life.papers import WRITTEN_HERE
+from structures.life.papers import PAPERS, WRITTEN_HERE
 from structures.life.stages import ON_THE_LINE, STAGES
 from structures.queries.evidence import papers_of
 from structures.queries.photos import visible_photos
@@ -74,7 +74,10 @@ def newest_first(papers):
     seen = {}
     for paper in papers:
         seen.setdefault((paper.kind, paper.about), []).append(paper)
-    return [{"newest": versions[0], "older": versions[1:]} for versions in seen.values()]
+    return [
+        {"title": PAPERS[kind].title, "newest": versions[0], "older": versions[1:]}
+        for (kind, _about), versions in seen.items()
+    ]
 
 
 @require_POST

@@ -12,7 +12,7 @@ from django.test.utils import CaptureQueriesContext
 from costing.models import Bill, OptionPaper
 from costing.queries.decision_sheet import decision_sheet
 from costing.queries.decisions import waiting, waiting_papers
-from costing.queries.standing import within
+from costing.queries.standing import standing_of, within
 from costing.queries.ways import ways_of
 from structures.actions.settings import change_setting
 from structures.models import FirstRun, Role, Stream, Structure
@@ -169,3 +169,14 @@ def test_bills_and_option_papers_wait_for_those_who_decide_them(district, people
     assert [one.kind for one in waiting_papers(people.programme)] == ["option"]
     assert waiting_papers(people.engineer) == []
     assert waiting_papers(a_user(Role.DISTRICT, a_district("NX"))) == []
+
+
+def test_the_clock_of_the_list_stands_among_the_facts_of_a_move(district, people, schedule):
+    """Oracle: the last opening day of the list, which the estimate's work and the stream give."""
+    watershed = a_watershed(district)
+    site = place(watershed, "EX-A", 15.75, a_stream(watershed, "Odre", date(2025, 6, 12)))
+    heard(site, people, schedule)
+    [line] = waiting(people.programme)
+    facts = standing_of(site.structure).facts
+    assert line.clock.last_opening_day is not None
+    assert facts["last_opening_day"] == line.clock.last_opening_day

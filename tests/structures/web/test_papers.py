@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from datetime import date
+
 import pytest
 from django.core.files.uploadedfile import SimpleUploadedFile
 from django.test import Client
 
-from structures.models import Entry, Paper, Photo, Role
+from structures.models import Entry, Move, Paper, Photo, Role
 from tests.factories import a_district, a_site, a_user, a_watershed
 from tests.papers import GIVEN, People, a_paper, a_photo
 from tests.pictures import jpeg
@@ -162,3 +164,18 @@ def test_the_thread_and_an_entry_by_the_code_on_paper(site, people):
     assert client.get("/register/0000-0000-0001/").status_code == 404
     assert "paper filed" in page(client.get("/register/", {"q": "survey plan"}))
     assert "No entry is found." in page(client.get("/register/", {"q": "nothing of the kind"}))
+
+
+def test_moves_from_before_stand_in_the_thread_on_their_day(site, people):
+    Move.objects.create(
+        structure=site.structure,
+        number=1,
+        from_stage="",
+        to_stage="noted",
+        day=date(2024, 3, 1),
+        by=people.field,
+    )
+    a_paper(site.structure, "survey-permission", people.engineer)
+    text = page(desk(people.engineer).get("/sites/EX-A/thread/"))
+    assert text.index("1 Mar 2024") < text.index("paper filed")
+    assert "taken over from before" in text
