@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any, Final
 import numpy as np
 
 from structures.queries.runs import runs_of_kind
+from structures.queries.sites import newest_rock_line, newest_survey
 from structures.queries.survey_reading import READ
 from structures.queries.surveys import pack_of
 from structures.wall.wall import design_wall
@@ -16,7 +17,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from structures.intake.pack import SurveyPack
-    from structures.models import Design, Structure, Survey
+    from structures.models import Design, RockLine, Structure, Survey
     from structures.wall.wall import Wall
 
 # Taken where no test gives the line a range (project choice): rock further below it was not drawn.
@@ -25,9 +26,12 @@ ALLOWED_M: Final = 0.50
 
 @dataclass(frozen=True, slots=True, eq=False)
 class DrawnWall:
-    """A frozen design with its rock line, shapes (n,); the range is None where no test gives one."""
+    """A wall with its rock line, shapes (n,); the range is None where no test gives one.
 
-    design: Design
+    `design` is the frozen one, None for a survey that nobody drew.
+    """
+
+    design: Design | None
     pack: SurveyPack
     wall: Wall
     offset_m: NDArray[np.float64]
@@ -71,35 +75,45 @@ def drawn_wall(structure: Structure) -> DrawnWall | None:
         .order_by("-version")
         .first()
     )
-    if design is None:
-        return None
-    read = _newest_reading(design.survey)
-    points = _points(design, read)
+    return (
+        None if design is None else _wall_of(design.survey, design.rock_line, design.wall, design)
+    )
+
+
+def surveyed_wall(structure: Structure) -> DrawnWall | None:
+    """Give the wall that the newest survey has, for a sheet of works taken over from before.
+
+    Nothing is judged by it: nobody froze it. None where the survey knows no rock line.
+
+    Raises
+    ------
+    Refused
+        If its ground and rock line share no stretch.
+    """
+    survey = newest_survey(structure.site)
+    return None if survey is None else _wall_of(survey, newest_rock_line(survey), {}, None)
+
+
+def _wall_of(
+    survey: Survey, line: RockLine | None, wall: dict[str, Any], design: Design | None
+) -> DrawnWall | None:
+    read = _newest_reading(survey)
+    own = survey.pack.get("rock_line") or read.get("estimated") or []
+    points = own if line is None else line.points
     if not points:
         return None
-    pack = pack_of(
-        design.survey,
-        points=None if design.rock_line is None else points,
-        wall=design.wall,
-    )
+    pack = pack_of(survey, points=None if line is None else points, wall=wall)
     offset, level = _columns(points, "offset_m", "level_m")
-    wall, _ = design_wall(pack.ground, pack.toes, offset, level, pack.wall)
+    drawn, _ = design_wall(pack.ground, pack.toes, offset, level, pack.wall)
     estimated = read.get("estimated") or []
     spread = _columns(estimated, "offset_m", "low_m", "high_m") if estimated else (None, None, None)
-    return DrawnWall(design, pack, wall, offset, level, *spread)
+    return DrawnWall(design, pack, drawn, offset, level, *spread)
 
 
 def _newest_reading(survey: Survey) -> dict[str, Any]:
     runs = runs_of_kind(READ).filter(params__survey=survey.pk, state="done")
     run = runs.order_by("-created_at").first()
     return {} if run is None else run.result
-
-
-def _points(design: Design, read: dict[str, Any]) -> list[dict[str, float]]:
-    if design.rock_line is not None:
-        return design.rock_line.points
-    own = design.survey.pack.get("rock_line")
-    return own or read.get("estimated") or []
 
 
 def _columns(points: list[dict[str, float]], *names: str) -> tuple[NDArray[np.float64], ...]:

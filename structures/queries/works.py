@@ -14,9 +14,17 @@ from structures.drawing.strips import StripDrawn, StripsView
 from structures.intake.field_records import HOLDS, point_of
 from structures.life.holds import LAYERS, next_hold
 from structures.life.stages import CLEARED, DIGGING, HALTED, RISING
-from structures.models import Clash, HoldPoint, PhoneRecord, Strip, Structure, TrenchLook
+from structures.models import (
+    Clash,
+    HoldPoint,
+    PhoneRecord,
+    Photo,
+    Strip,
+    Structure,
+    TrenchLook,
+)
 from structures.queries.districts import today_of
-from structures.queries.drawn_wall import drawn_wall
+from structures.queries.drawn_wall import drawn_wall, surveyed_wall
 from structures.queries.trench_day import against_entering, last_look, so_far
 
 if TYPE_CHECKING:
@@ -197,9 +205,14 @@ def records_of(user: User) -> QuerySet[PhoneRecord]:
     return found.order_by("-received_at")
 
 
-def waiting_counts(user: User) -> dict[str, int]:
-    """Count what waits for an engineer: hold points to see, records of which two forms came."""
-    return {"holds": hold_requests(user).count(), "clashes": open_clashes(user).count()}
+def photos_of_strip(strip: Strip) -> QuerySet[Photo]:
+    """Photos that came with records of a strip, newest first; hold points show their own."""
+    records = PhoneRecord.objects.filter(
+        site=strip.structure.site_id, content__strip=strip.number, content__has_key="photos"
+    )
+    names = [name for one in records for name in one.content["photos"]]
+    found = Photo.objects.filter(pk__in=names, site=strip.structure.site_id)
+    return found.select_related("by").order_by("-received_at")
 
 
 def _with_works(found: QuerySet[Structure]) -> QuerySet[Structure]:
@@ -264,8 +277,11 @@ def _cell(point: str, holds: list[HoldPoint], strip: Strip) -> Cell:
 
 
 def strips_view(works: Works) -> StripsView | None:
-    """Give what a drawing of the strips shows; None where no strip is cut or no drawing frozen."""
-    drawn = drawn_wall(works.structure)
+    """Give what a drawing of the strips shows; None where no strip is cut or no line known.
+
+    Works taken over from before have no frozen drawing; they stand on the newest survey.
+    """
+    drawn = drawn_wall(works.structure) or surveyed_wall(works.structure)
     if drawn is None or not works.lines:
         return None
     ground = drawn.pack.ground

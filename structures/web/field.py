@@ -40,7 +40,8 @@ if TYPE_CHECKING:
 METHODS: Final = ["GET", "HEAD", "POST"]
 # What a page of the phone needs besides itself, in the order in which scripts are run.
 SCRIPTS: Final = tuple(
-    f"underbund/field/{name}.js" for name in ("store", "shell", "photo", "send", "form", "well", "box")
+    f"underbund/field/{name}.js"
+    for name in ("store", "shell", "photo", "send", "form", "well", "box")
 )
 SHEETS: Final = tuple(
     f"underbund/{name}.css" for name in ("tokens", "page", "forms", "drawing", "field/field")
@@ -174,6 +175,7 @@ def _keep(request: HttpRequest, found: Works, number: int | None, form: RecordFo
         refuse(form, refused)
         return None
     said = form.said()
+    photos = {} if photo is None else {"photos": [str(photo.pk)]}
     sent = Sent(
         place=1,
         id=name,
@@ -182,7 +184,7 @@ def _keep(request: HttpRequest, found: Works, number: int | None, form: RecordFo
         strip=number,
         photos=() if photo is None else (photo.pk,),
         made_at=now,
-        content={"type": form.kind.name, "site": site.code, "strip": number, **said},
+        content={"type": form.kind.name, "site": site.code, "strip": number, **photos, **said},
         values=said,
     )
     answer = take_record(sent=sent, by=request.user, times=Times(now, now))

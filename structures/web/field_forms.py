@@ -11,6 +11,7 @@ from django.utils.translation import gettext_lazy
 
 from structures.intake.field_records import HOLD_READINGS, RecordField, RecordKind, point_of
 from structures.life.holds import LAYERS, MUST_SEE
+from structures.web.typed import NumberField
 
 YES_NO: Final = (("yes", gettext_lazy("yes")), ("no", gettext_lazy("no")))
 HOLD_READING_KEYS: Final = frozenset(one.key for many in HOLD_READINGS.values() for one in many)
@@ -124,6 +125,15 @@ class ReasonForm(forms.Form):
     why = forms.CharField(
         label=gettext_lazy("Why?"), widget=forms.Textarea(attrs={"rows": 2}), max_length=300
     )
+
+
+class ClaySourceForm(forms.Form):
+    """A borrow pit; what is not known stays blank."""
+
+    name = forms.CharField(label=gettext_lazy("Name of the pit"), max_length=120)
+    proven_m3 = NumberField(label=gettext_lazy("Clay proven, m³"), low=0, high=1e6)
+    distance_km = NumberField(label=gettext_lazy("Distance to the site, km"), low=0, high=500)
+    from_bund_m = NumberField(label=gettext_lazy("Distance from a tank's bund, m"), low=0, high=1e5)
 
 
 class ClashForm(forms.Form):

@@ -9,6 +9,7 @@ from structures.web import field, works
 urlpatterns = [
     path("sites/<str:code>/works/", works.works, name="works"),
     path("sites/<str:code>/works/strips/<int:number>/", works.strip, name="strip"),
+    path("sites/<str:code>/works/clay/", works.clay, name="clay"),
     path("holds/", works.desk, name="desk"),
     path("holds/<uuid:hold_id>/", works.hold, name="hold"),
     path("clashes/<int:clash_id>/", works.clash, name="clash"),

@@ -6,6 +6,7 @@ from typing import Final
 from uuid import uuid4
 
 from django.contrib import messages
+from django.db import transaction
 from django.http import Http404
 from django.shortcuts import get_object_or_404, redirect, render
 from django.utils.translation import gettext as _
@@ -15,22 +16,25 @@ from structures.access import Act, may
 from structures.actions import strips as strip_actions
 from structures.actions.alarms import lift_alarm, set_alarm
 from structures.actions.clashes import decide_clash
+from structures.actions.clay import enter_clay_source
 from structures.actions.holds import see_hold
 from structures.drawing.strips import draw_strips
 from structures.errors import Refused
 from structures.intake.field_records import HOLD_READINGS, KINDS, point_of
 from structures.life.cautions import CLOSING_SENTENCE
 from structures.life.holds import NINE
+from structures.queries.settings import settings_in_force
 from structures.queries.works import (
     hold_requests,
     looks_missing_today,
     open_clashes,
+    photos_of_strip,
     strips_view,
     visible_clashes,
     visible_holds,
     works_of,
 )
-from structures.web.field_forms import ClashForm, DayForm, ReasonForm, SeeForm
+from structures.web.field_forms import ClashForm, ClaySourceForm, DayForm, ReasonForm, SeeForm
 from structures.web.field_photos import PhotoForm
 from structures.web.refusals import STATUS, refuse
 
@@ -100,12 +104,42 @@ def strip(request, code, number):
         "looks": kept.looks.select_related("by")[:20],
         "clay": kept.clay_tests.select_related("by"),
         "incidents": kept.incidents.select_related("by"),
+        "photos": photos_of_strip(kept),
         "nine": NINE,
         "may_record": may(request.user, Act.RECORD_WORKS, found.structure),
         "closing": CLOSING_SENTENCE,
     }
     status = STATUS if form.is_bound and form.errors else 200
     return render(request, "structures/works/strip.html", context, status=status)
+
+
+@require_http_methods(METHODS)
+def clay(request, code):
+    """Where the clay comes from: pits with what is proven, and every test."""
+    found = _found(request, code)
+    structure = found.structure
+    site = structure.site
+    form = ClaySourceForm(request.POST or None)
+    if request.method == "POST" and form.is_valid():
+        try:
+            _enter_pit(request, site, form.cleaned_data)
+        except Refused as refused:
+            refuse(form, refused)
+        else:
+            messages.success(request, _("The pit is entered."))
+            return redirect("structures:clay", code)
+    context = {
+        "site": site,
+        "works": found,
+        "form": form,
+        "sources": site.clay_sources.select_related("by", "consent"),
+        "tests": structure.clay_tests.select_related("by", "strip"),
+        "least_m": settings_in_force(site.watershed.district)["clay_pit_from_bund_m"].value,
+        "may_record": may(request.user, Act.RECORD_WORKS, site),
+        "closing": CLOSING_SENTENCE,
+    }
+    status = STATUS if form.is_bound and form.errors else 200
+    return render(request, "structures/works/clay.html", context, status=status)
 
 
 @require_safe
@@ -202,6 +236,7 @@ def _reading(field, key, value):
     return (key, value, "") if field is None else (field.asks, value, field.unit)
 
 
+@transaction.atomic
 def _see(request, found, site, said):
     """Say what was seen, and keep the seer's own photo with it, or neither."""
     what = f"{found.hold} of strip {found.strip.number}"
@@ -210,6 +245,15 @@ def _see(request, found, site, said):
     )
     photos = [] if photo is None else [photo.pk]
     see_hold(hold_id=found.pk, by=request.user, photos=photos, **said)
+
+
+@transaction.atomic
+def _enter_pit(request, site, said):
+    """Enter a pit with the scan of the consent, or neither."""
+    consent = PhotoForm(request.POST, request.FILES).keep(
+        site=site, photo_id=uuid4(), what=f"consent for {said['name']}", by=request.user
+    )
+    enter_clay_source(site_id=site.pk, by=request.user, consent=consent, **said)
 
 
 def _found(request, code):

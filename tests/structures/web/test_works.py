@@ -254,3 +254,23 @@ def test_an_alarm_stops_the_round(trench):
     look(trench, day=TODAY, strip=strip)
     set_alarm(structure_id=trench.structure.pk, why="The stream rises", by=trench.field)
     assert "An alarm is set: The stream rises." in text(at(trench.field).get("/today/"))
+
+
+def test_a_pit_too_near_a_bund_asks_for_consent(trench):
+    """Rule DW-07."""
+    place = f"{WORKS}clay/"
+    sent = {"name": "Tank bed", "proven_m3": "900", "distance_km": "1,5", "from_bund_m": "40"}
+    answer = at(trench.field).post(place, sent)
+    assert answer.status_code == 422
+    assert answer.context["form"].errors.keys() == {"from_bund_m"}
+    assert not trench.structure.site.photos.exists()
+    at(trench.field).post(place, {**sent, "photo": jpeg_file()})
+    source = trench.structure.site.clay_sources.get()
+    assert (source.distance_km, source.consent is not None) == (1.5, True)
+    assert "Tank bed" in text(at(trench.engineer).get(place))
+
+
+def test_photos_of_a_strip_are_shown_with_it(trench):
+    dig(trench)
+    at(trench.field).post(f"{RECORD}strips/1/look/", typed(photo=jpeg_file()))
+    assert "does not say where" in text(at(trench.engineer).get(f"{WORKS}strips/1/"))

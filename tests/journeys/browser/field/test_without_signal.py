@@ -250,6 +250,7 @@ def test_what_one_person_wrote_down_is_not_sent_by_another(phone, site, people):
         "/today/at/OD-01/alarm/",
         "/sites/OD-01/works/",
         "/sites/OD-01/works/strips/1/",
+        "/sites/OD-01/works/clay/",
         "/holds/",
     ],
 )
