@@ -171,6 +171,7 @@ def forecast(
             *_why_no_total(walk),
             *_of_the_line(as_found, lines),
             *_of_the_range(surprises, len(as_found.found)),
+            *_off_the_middle(total, spread),
             *((f"P10 to P90 are not known: {spread.why}.",) if spread and spread.why else ()),
             *books.sums.lacking,
             *why_not,
@@ -233,6 +234,17 @@ def _of_the_line(as_found: AsFound, lines: DrawnLines | None) -> Iterable[str]:
         )
     if as_found.pack.rock_line is not None and lines is None:
         yield "No range was recorded with the drawn line: there is no P10 and no P90."
+
+
+def _off_the_middle(total: Decimal | None, spread: Spread | None) -> Iterable[str]:
+    """Say that a total lies outside its own percentiles, as where a line stands on its bounds."""
+    if None in (total, spread) or None in (spread.p10, spread.p90):
+        return
+    if not spread.p10 <= total <= spread.p90:
+        yield (
+            "The exact total lies outside P10 to P90: the line stands where rock may only lie "
+            "deeper, or only higher. The exact total is compared; reckon with the range."
+        )
 
 
 def _of_the_range(surprises: tuple[Surprise, ...], count: int) -> Iterable[str]:

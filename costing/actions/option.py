@@ -282,14 +282,12 @@ def _hold(structure: Structure, found: pure.Forecast) -> list[Strip]:
 
 
 def _cause(found: pure.Forecast, strips: list[Strip]) -> str:
-    said = [
+    said = [f"On hold: {', '.join(str(one) for one in strips)}."] if strips else []
+    said += [
         f"Strip {one.strip}: rock at {one.found_m:.2f} m, drawn {one.low_m:.2f} to {one.high_m:.2f}."
         for one in found.surprises
     ]
-    said += [one.what for one in found.findings]
-    if not said:
-        said = [f"Halted: {', '.join(str(one) for one in strips)}."]
-    return " ".join(said)
+    return " ".join([*said, *(one.what for one in found.findings)])
 
 
 def _told(option: Option, found: pure.Forecast) -> dict[str, Any]:

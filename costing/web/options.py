@@ -109,7 +109,9 @@ def option(request: HttpRequest, pk: int) -> HttpResponse:
     """The four ways side by side; the engineer has them weighed again, the office decides."""
     paper = get_object_or_404(visible_papers(request.user), pk=pk)
     structure, act = paper.structure, request.POST.get("act", "")
-    surveys = structure.site.surveys.order_by("-version").values_list("version", flat=True)
+    drawn = structure.designs.filter(frozen=True).order_by("-version").values("survey")[:1]
+    others = structure.site.surveys.exclude(pk__in=drawn).order_by("-version")
+    surveys = others.values_list("version", flat=True)
     sent = request.POST if request.method == "POST" else None
     ask = AskedForm(
         sent if act == "weigh" else None, surveys=surveys, initial=(paper.ways or {}).get("asked")

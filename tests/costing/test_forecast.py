@@ -215,6 +215,21 @@ def test_a_recorded_range_gives_percentiles_around_the_total():
     assert spreads[0] < spreads[1]
 
 
+def test_a_total_outside_its_percentiles_is_told():
+    """Law: the demo's OD-03 with all of its range under the line: where the line was lowered to the
+    foot of a test every draw lies deeper, so each costs more than the total.
+    """
+    drawn = tuple(
+        DrawnRange(one.offset_m, one.low_m, one.likely_m, one.likely_m) for one in ranges("OD-03")
+    )
+    for given, outside in ((drawn, True), (ranges("OD-03"), False)):
+        told = forecast(Drawn(survey("OD-03"), given), found("OD-03"), Books(demo_rates()), on=ON)
+        within = told.spread.p10 <= told.total <= told.spread.p90
+        said = any(one.startswith("The exact total lies outside") for one in told.reasons)
+        assert said is not within
+        assert not (outside and within)
+
+
 def test_draws_that_dig_lifts_without_a_rate_have_no_percentiles_and_say_why():
     """Oracle: the examples' schedule prices lifts to 7.5 m; some draws of a wide range go below."""
     wide = tuple(
