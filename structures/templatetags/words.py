@@ -65,5 +65,6 @@ def kind_word(kind):
         "appraisal": _("Appraisal of a pack"),
         "survey.read": _("Reading of a survey"),
         "estimate.price": _("Estimate"),
+        "works.forecast": _("Forecast with the rock as found"),
     }
     return words.get(kind, kind)
