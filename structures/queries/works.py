@@ -115,6 +115,11 @@ class Works:
         return tuple(line for line in self.lines if line.open)
 
     @property
+    def begun(self) -> bool:
+        """Whether a strip was ever opened: from then on the wall is not cut anew."""
+        return any(line.strip.opened_on is not None for line in self.lines)
+
+    @property
     def at_hand(self) -> tuple[StripLine, ...]:
         """Strips that are open, and the next to begin: what a round goes by."""
         begun = [line for line in self.lines if line.strip.opened_on is None]

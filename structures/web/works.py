@@ -39,6 +39,7 @@ from structures.web.field_photos import PhotoForm
 from structures.web.refusals import STATUS, refuse
 
 METHODS: Final = ["GET", "HEAD", "POST"]
+LOOKS_SHOWN: Final = 8  # of the whole trench; the sheet of a strip shows its own
 
 
 @require_http_methods(METHODS)
@@ -60,7 +61,7 @@ def works(request, code):
         "nine": NINE,
         "incidents": structure.incidents.select_related("by", "strip"),
         "sheets": structure.day_sheets.select_related("by")[:10],
-        "looks": structure.looks.select_related("by", "strip")[:20],
+        "looks": structure.looks.select_related("by", "strip")[:LOOKS_SHOWN],
         "clay": structure.clay_tests.select_related("by", "strip")[:10],
         "clashes": open_clashes(request.user).filter(record__site=site),
         "may_cut": may(request.user, Act.DRAW, site),
