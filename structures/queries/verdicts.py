@@ -5,7 +5,7 @@ Every wall that is covered starts at "not known"; only a reviewed verdict says a
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import date
 from typing import TYPE_CHECKING, Any, Final
 from zoneinfo import ZoneInfo
@@ -36,6 +36,8 @@ NOT_KNOWN: Final = Verdict.Word.NOT_KNOWN.value
 SENT_BACK: Final = "verdict sent back"
 COUNTS: Final = (Reading.Standing.TAKEN, Reading.Standing.REPAIRED)
 CONTROLS: Final = Well.Role.CONTROL
+NO_WELL: Final = "No well was read."  # as the rule says it where it is handed no comparison
+NOT_COMPARED: Final = "Wells: no comparison computed yet."
 
 
 def visible_verdicts(user: User) -> QuerySet[Verdict]:
@@ -165,9 +167,18 @@ def evidence_of(structure: Structure) -> Evidence:
         controls,
         upstream,
         waiting,
-        judge(across, measured, limits),
+        _judged(across, measured, limits),
         tuple(_unknown(completed, pipes, across, measured, controls, waiting, limits)),
     )
+
+
+def _judged(head: Head | None, wells: Measured | None, limits: Limits) -> Suggestion:
+    """Give what the rule says; that nobody compared the wells yet is not that nobody read them."""
+    said = judge(head, wells, limits)
+    if wells is not None:
+        return said
+    reasons = tuple(NOT_COMPARED if one == NO_WELL else one for one in said.reasons)
+    return replace(said, reasons=reasons)
 
 
 def rules_of(district: District) -> EffectRules:

@@ -14,6 +14,7 @@ from django.views.decorators.http import require_http_methods
 from structures.access import Act, may
 from structures.actions.pipes import Pipe, enter_pipes
 from structures.errors import Refused
+from structures.intake.values import with_point
 from structures.queries.districts import today_of
 from structures.queries.structures import visible_structures
 from structures.queries.wells import pipes_of
@@ -83,10 +84,15 @@ class PipesForm(forms.Form):
         """Sides of which something was measured."""
         said = self.cleaned_data
         return [
-            Pipe(side, *(said[f"{side}.{key}"] for key, _label, _help in ASKED))
+            Pipe(side, *(_typed(key, said[f"{side}.{key}"]) for key, _label, _help in ASKED))
             for side, _words, _letter in SIDES
             if any(said[f"{side}.{key}"].strip() for key in NEEDED)
         ]
+
+
+def _typed(key: str, text: str) -> str:
+    """Take a decimal comma for what it is; words stay as they are."""
+    return with_point(text) if key.endswith("_m") else text
 
 
 @require_http_methods(METHODS)
