@@ -78,7 +78,10 @@ class AsBuiltSheet:
 
     @property
     def missed(self) -> tuple[Missed, ...]:
-        return tuple(one for row in self.rows for one in row.missed)
+        """Stretches that were covered and that nobody measured."""
+        return tuple(
+            one for row in self.rows if row.strip.covered_on is not None for one in row.missed
+        )
 
     @property
     def unseen(self) -> tuple[Strip, ...]:

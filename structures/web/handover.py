@@ -45,7 +45,7 @@ def handover(request: HttpRequest, code: str) -> HttpResponse:
     context = {
         "site": structure.site,
         "sheet": sheet,
-        "language": language,
+        "spoken": language,
         "languages": LANGUAGES,
         "word": WORDS[sheet.word],
         "rows": [(one, ROLES[one.well.role]) for one in sheet.wells],
