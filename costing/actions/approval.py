@@ -14,6 +14,7 @@ from costing.actions.approval_checks import (
     REFUSED,
     SANCTIONED,
     is_revision,
+    judge_drawing,
     judge_estimate,
     judge_limit,
     judge_line,
@@ -100,6 +101,7 @@ def sanction(
         *judge_estimate(structure, estimate, by),
         *judge_terms(structure, terms, Sanction.Kind.TECHNICAL, revised=revised),
         *judge_limit(structure, SANCTIONED, estimate.sanction, by),
+        *(judge_drawing(structure) if revised else ()),
     ]
     if found:
         raise refusal(found, SANCTIONED)

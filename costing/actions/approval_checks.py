@@ -6,13 +6,15 @@ from typing import TYPE_CHECKING, Final
 
 from costing.models import Sanction
 from costing.queries.money_lines import left_on
-from costing.queries.standing import limit_of, within
+from costing.queries.standing import limit_of, standing_of, within
 from structures.access import place_of, roles
 from structures.errors import Finding, Refused
+from structures.life.blocks import BLOCKS
 from structures.life.people import DISTRICT, PROGRAMME
 from structures.life.stages import HALTED, LINE, before
 from structures.models import Entry
 from structures.queries.districts import today_of
+from structures.queries.evidence import records_of, settle
 
 if TYPE_CHECKING:
     from decimal import Decimal
@@ -25,6 +27,12 @@ SANCTIONED: Final = "technical sanction"
 APPROVED: Final = "administrative approval"
 REFUSED: Final = "refused"
 ASKS: Final = {SANCTIONED: "heard", APPROVED: "sanctioned"}  # the stage that waits for the act
+OF_THE_DRAWING: Final = (
+    "estimate-of-other-design",
+    "check-of-other-design",
+    "check-open",
+    "schedule-ended",
+)
 LIMITS: Final = {
     SANCTIONED: "technical_sanction_limit",
     APPROVED: "administrative_approval_limit",
@@ -71,6 +79,23 @@ def judge_estimate(structure: Structure, estimate: Estimate, by: User) -> list[F
     if refused is not None:
         what = f"{refused.by_name} refused this estimate: {refused.content['reason']}"
         found.append(Finding(where, "estimate", what, "Draw and price another wall."))
+    return found
+
+
+def judge_drawing(structure: Structure) -> list[Finding]:
+    """Say what a move would have said of drawing, check and schedule: a revision is no move."""
+    facts = settle(records_of(structure).facts, standing_of(structure).facts)
+    found = []
+    for name in OF_THE_DRAWING:
+        block, stands = BLOCKS[name], BLOCKS[name].judge(facts)
+        if stands is None:
+            what = f"Cannot be judged: {block.doubt}."
+            found.append(
+                Finding(structure.site.code, name, what, "Enter it first.", rule=block.rule)
+            )
+        elif stands:
+            what = block.says.format(list=", ".join(stands))
+            found.append(Finding(structure.site.code, name, what, block.remedy, rule=block.rule))
     return found
 
 

@@ -6,6 +6,8 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 from costing.models import Estimate, Sanction
+from costing.price.money import gated
+from costing.price.revision import exceeds
 from costing.queries.changes import line_changes, sum_changes
 from costing.queries.decisions import WAITS, quantities_of, waiting_structures
 from costing.queries.money_lines import LineSheet, money_line_sheets
@@ -40,10 +42,7 @@ class Excess:
     given: Decimal
     percent: float
     allowed: float
-
-    @property
-    def over(self) -> bool:
-        return self.percent > self.allowed
+    over: bool
 
 
 @dataclass(frozen=True, slots=True)
@@ -159,6 +158,7 @@ def _excesses(structure: Structure, estimate: Estimate | None, standing: Any) ->
             given.amount,
             float((estimate.sanction - given.amount) / given.amount * 100),
             lines[key].value,
+            over=exceeds(given.amount, estimate.sanction, gated(lines[key].value)),
         )
         for what, given, key in asked
         if given is not None and given.estimate_id != estimate.pk

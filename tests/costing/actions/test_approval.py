@@ -2,23 +2,27 @@
 
 from __future__ import annotations
 
-from datetime import UTC, date, datetime
+from datetime import UTC, date, datetime, timedelta
 from decimal import Decimal
 
 import pytest
+from django.utils import timezone
 
 from costing.actions.approval import Funding, Terms, approve, refuse, sanction, send_back
 from costing.actions.approval_checks import judge_estimate
 from costing.actions.estimate import request_estimate
 from costing.actions.money_lines import LineTerms, change_money_line, enter_money_line
 from costing.models import Estimate, MoneyLine, Sanction
+from costing.queries.decision_sheet import decision_sheet
 from costing.queries.money_lines import money_line_sheets
 from structures.actions.settings import change_setting
 from structures.errors import Refused
 from structures.models import Entry, Role
 from structures.queries.register import check_registers, entries_of
+from structures.queries.structures import visible_structures
 from tests.factories import a_district, a_posting, a_schedule, a_site, a_user, a_watershed
-from tests.papers import DAY, People, a_photo, heard, on, read_all
+from tests.papers import DAY, People, a_paper, a_photo, heard, on, read_all
+from tests.structures.actions.test_second_factor import ask_for_it, set_up
 
 pytestmark = pytest.mark.django_db
 SIGNED_IN = datetime(2026, 4, 10, 3, 12, tzinfo=UTC)
@@ -312,3 +316,54 @@ def test_lines_are_kept_by_the_programme_and_entered(site, people):
         a_line(district, people.programme)
     [entry] = Entry.objects.filter(act="money line entered")
     assert entry.content["amount"] == "900000.00"
+
+
+def test_where_the_district_asks_a_fresh_one_time_code_comes_first(site, people, estimate):
+    """Oracle: the office's practice, second factor for approvers; a working day of 12 hours."""
+    district = site.watershed.district
+    limited(district, people.programme)
+    ask_for_it(district)
+    with pytest.raises(Refused, match="none set up"):
+        sanctioned(estimate, people.district)
+    set_up(people.district)
+    now = timezone.now()
+    for late in (None, now - timedelta(hours=13)):
+        with pytest.raises(Refused, match="within the last 12 hours"):
+            sanctioned(estimate, people.district, factor_given_at=late)
+    # A device's token decides nothing, whatever code it brings.
+    with pytest.raises(Refused, match="token decides nothing"):
+        sanctioned(estimate, people.district, signed_in_at=None, factor_given_at=now)
+    assert stage(site) == "heard"
+    assert sanctioned(estimate, people.district, factor_given_at=now).pk
+
+
+def test_a_dearer_wall_asks_for_both_again_and_for_its_check(
+    site, people, schedule, estimate, line
+):
+    """Oracle: ES-03 and ES-04, more than 5 and more than 10 percent over what was given."""
+    first = sanctioned(estimate, people.programme)
+    approved(first, line, people.programme)
+    request_estimate(
+        site_id=site.pk, by=people.engineer, schedule_id=schedule.pk, wall={"thickness_m": 1.5}
+    )
+    read_all()
+    newer = Estimate.objects.get(version=2)
+    structure = visible_structures(people.programme).get(site=site)
+    sheet = decision_sheet(people.programme, structure)
+    percent = float((newer.sanction - first.amount) / first.amount * 100)
+    assert percent > 10
+    assert [(one.percent, one.over) for one in sheet.excesses] == [(percent, True)] * 2
+    assert (sheet.acts, sheet.before) == (("sanction", "approve"), estimate)
+    again = Terms("TS-1R", YEAR_END, why="A thicker wall on the weathered side.")
+    with pytest.raises(Refused, match="check is of another drawing"):
+        sanctioned(newer, people.programme, terms=again)
+    a_paper(site.structure, "check", people.checker)
+    revised = sanctioned(newer, people.programme, terms=again)
+    paid = approved(
+        revised, line, people.programme, terms=Terms("AA-1R", YEAR_END, why="As sanctioned.")
+    )
+    assert (revised.revision, paid.revision, stage(site)) == (1, 1, "approved")
+    after = decision_sheet(people.programme, structure)
+    assert not any(one.over for one in after.excesses)
+    [sheet] = money_line_sheets(people.programme)
+    assert sheet.promised == paid.amount
