@@ -6,6 +6,7 @@ import os
 import sys
 from datetime import timedelta
 from pathlib import Path
+from urllib.parse import parse_qs, unquote, urlsplit
 
 import dj_database_url
 from csp.constants import NONE, SELF
@@ -105,6 +106,18 @@ RUN_RESEND_SECONDS = 30  # a run that waits longer has lost its message
 RUN_SWEEP_SECONDS = 5
 RUN_ATTEMPTS = 5
 WORKER_SILENT_SECONDS = 30  # without a sign of life for longer, a worker does not count
+
+# --- Mail -------------------------------------------------------------------------------------
+_MAIL = urlsplit(ENVIRONMENT.email_url)
+MAIL_IS_SET = bool(ENVIRONMENT.email_url)
+EMAIL_HOST = _MAIL.hostname or "localhost"
+EMAIL_PORT = _MAIL.port or {"smtps": 465, "smtp+tls": 587}.get(_MAIL.scheme, 25)  # RFC 8314, 6409
+EMAIL_HOST_USER = unquote(_MAIL.username or "")
+EMAIL_HOST_PASSWORD = unquote(_MAIL.password or "")
+EMAIL_USE_TLS = _MAIL.scheme == "smtp+tls"
+EMAIL_USE_SSL = _MAIL.scheme == "smtps"
+EMAIL_TIMEOUT = 20
+DEFAULT_FROM_EMAIL = parse_qs(_MAIL.query).get("from", ["underbund@localhost"])[0]
 
 # --- People -----------------------------------------------------------------------------------
 AUTH_USER_MODEL = "structures.User"

@@ -7,6 +7,7 @@ from functools import partial
 
 from costing.actions.appraisals import APPRAISAL
 from costing.actions.estimate import PRICE, freeze_estimate
+from costing.actions.mail import DAILY_MAIL, send_daily_mail
 from costing.actions.option import Asked, asked_before, freeze_forecast
 from costing.appraisal import METHOD, SEED, appraise
 from costing.documents.bundle import documents_of, figures_of
@@ -22,6 +23,7 @@ from structures.intake.practice import practice_of
 from structures.intake.survey_pack import read_pack_bytes
 from structures.queries.runs import day_asked
 from structures.queries.survey_reading import READ, read_inputs
+from structures.runs.clock import every_day
 from structures.runs.events import ROCK_FOUND, await_event
 from structures.runs.files import keep_bytes, kept_bytes
 from structures.runs.queue import Outcome, Work, register
@@ -122,3 +124,12 @@ def forecast_works(work: Work) -> Outcome:
 
 
 await_event(ROCK_FOUND, kind=WORKS_FORECAST)
+
+
+@register(DAILY_MAIL, version="1")
+def mail_of_the_day(work: Work) -> Outcome:
+    """Write to everyone for whom something stands in today's list, once."""
+    return Outcome({"sent": send_daily_mail(day=date.fromisoformat(work.params["day"]))})
+
+
+every_day(DAILY_MAIL, kind=DAILY_MAIL)

@@ -13,6 +13,7 @@ from django.views.decorators.http import require_GET, require_http_methods, requ
 from costing.actions.appraisals import APPRAISAL, start_appraisal
 from costing.web.forms import AppraisalForm
 from costing.web.handing import answer_with_file
+from costing.web.notices import first_lines_of
 from structures.errors import Refused
 from structures.intake.pack_schema import pack_schema as schema_of_packs
 from structures.life.cautions import ALWAYS, CLOSING_SENTENCE, caution
@@ -46,6 +47,7 @@ def front(request: HttpRequest) -> HttpResponse:
         "form": form,
         "findings": findings,
         "parts": readiness(),
+        "waiting": first_lines_of(request.user),
         "cautions": [caution(code) for code in ("geophysics", "downstream", "raw-water")],
         "closing": CLOSING_SENTENCE,
     }

@@ -12,6 +12,7 @@ from costing.web import (
     front,
     money_lines,
     moves,
+    notices,
     options,
     schedules,
 )
@@ -32,6 +33,7 @@ urlpatterns = [
         name="estimate-against",
     ),
     path("estimates/<int:pk>/<str:name>", estimates.estimate_document, name="estimate-document"),
+    path("notices/", notices.notices, name="notices"),
     path("decisions/", decisions.decisions, name="decisions"),
     path("decisions/<str:code>/", decisions.decision, name="decision"),
     path("decisions/<str:code>/acts/<str:act>/", decisions.decide, name="decide"),

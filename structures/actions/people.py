@@ -137,9 +137,14 @@ def end_sessions(*, user_id: int, by: User) -> None:
 
 @transaction.atomic
 def edit_person(
-    *, user_id: int, licence_number: str, account_ends_on: date | None, by: User
+    *,
+    user_id: int,
+    licence_number: str,
+    account_ends_on: date | None,
+    by: User,
+    email: str | None = None,
 ) -> User:
-    """Change an engineer's licence number or the last day of an account.
+    """Change an engineer's licence number, the last day of an account, or (unless None) its address.
 
     Raises
     ------
@@ -150,6 +155,7 @@ def edit_person(
     insist_keeps(by, user)
     user.licence_number = licence_number.strip()
     user.account_ends_on = account_ends_on
+    user.email = user.email if email is None else email
     user.save()
     return user
 

@@ -18,9 +18,12 @@ from structures.errors import Refused
 from structures.queries.frame import frame_of
 from structures.queries.people_review import people_to_review, person_to_review
 from structures.queries.second_factor import factor_of, open_reset_of
+from structures.queries.upkeep import last_restore_trial
 from structures.web.lists import sheet_of
 from structures.web.people_forms import AccountForm, NewPersonForm, PostingForm
 from structures.web.refusals import STATUS, refuse
+
+ACCOUNT = ("licence_number", "email", "account_ends_on")
 
 
 def keepers_only(view):
@@ -43,6 +46,7 @@ def people(request):
     context = {
         "page": sheet_of(request, lines),
         "doubtful": sum(bool(line.doubts) for line in lines),
+        "trial": last_restore_trial(),
         "text": text,
     }
     return render(request, "structures/people.html", context)
@@ -67,7 +71,7 @@ def new_person(request):
 @keepers_only
 def person(request, user_id):
     line = _line(request, user_id)
-    account = {key: getattr(line.person, key) for key in ("licence_number", "account_ends_on")}
+    account = {key: getattr(line.person, key) for key in ACCOUNT}
     form = AccountForm(request.POST or None, initial=account)
     if request.method == "POST" and form.is_valid():
         try:

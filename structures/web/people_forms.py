@@ -80,6 +80,11 @@ class AccountForm(forms.Form):
     licence_number = forms.CharField(
         label=_("Licence number of an engineer"), max_length=LICENCE_MOST, required=False
     )
+    email = forms.EmailField(
+        label=_("E-mail address"),
+        required=False,
+        help_text=_("The daily list is sent there; without one it stands on the page only."),
+    )
     account_ends_on = day_field(
         _("Last day of the account"),
         required=False,
