@@ -31,7 +31,7 @@ HEALTHY_AFTER_S: Final = 60.0  # a child that lived so long begins again with th
 PR_SET_PDEATHSIG: Final = 1  # from linux/prctl.h
 OPEN_TO_OTHERS: Final = (
     "Other machines can reach this address, without encryption. Phones keep pages for places "
-    "without signal only over TLS: put a proxy with a certificate in front and set ALLOWED_HOSTS."
+    "without signal only over TLS: config/deploy/ and the README, 'On a server', say how."
 )
 
 
