@@ -105,7 +105,7 @@ def _highest_word(view: SectionView, frame: Frame) -> float:
     draw_levels(board)
     named, _ = name_tests(board)
     labels = [label for _, label in named]
-    if view.wall is not None:
+    if view.wall is not None and view.ends_known:
         labels += draw_open_flanks(board, view.wall)
     tops = [label.box(frame.form.text_mm, frame.form.step_mm).top for label in labels]
     return min([-5.0, *(top - 1.0 for top in tops)])
@@ -225,7 +225,7 @@ def _marks(board: Board) -> int:
         x, top = frame.point(test.offset_m, float(view.ground(test.offset_m)))
         foot = float(frame.y(float(view.ground(test.offset_m)) - test.foot_m))
         board.places.take(Box(x - 1.3, top, x + 1.3, foot + 2.6))
-    if view.wall is not None:
+    if view.wall is not None and view.ends_known:
         for label in draw_open_flanks(board, view.wall):
             write(board, label, "t-stop halo")
         draw_ends(board, view.wall)
@@ -249,8 +249,11 @@ def describe(view: SectionView) -> str:
     else:
         said.append(f"Rock is lowest at {view.lowest_rock_m:.2f} m.")
         said += [f"Rock not surveyed from {a:.2f} to {b:.2f} m." for a, b in view.gaps]
-    if view.wall is not None:
+    if view.wall is not None and view.ends_known:
         said.append(_wall_words(view.wall))
+    elif view.wall is not None:
+        left, right = view.wall.ends_m
+        said.append(f"The wall was found from {left:.2f} to {right:.2f} m; beyond is not known.")
     if view.built is not None:
         said += built_words(view.built)
     if view.water_m is not None:

@@ -218,6 +218,11 @@ class SectionView:
         return np.interp(offset_m, self.offset_m, self.ground_m)
 
     @property
+    def ends_known(self) -> bool:
+        """Whether the rock is known beyond the strips: without a drawing nobody looked there."""
+        return self.built is None or self.built.line is not None
+
+    @property
     def lowest_rock_m(self) -> float | None:
         """Lowest level of the rock line."""
         return None if self.rock is None else float(self.rock.level_m.min())
