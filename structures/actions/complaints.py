@@ -92,7 +92,7 @@ def answer_complaint(
     evidence: dict[str, Any] = {
         "since": None if looked.since is None else looked.since.isoformat(),
         "completed": None if looked.completed is None else looked.completed.isoformat(),
-        "sentences": list(looked.explained.sentences()) if looked.explained else [],
+        "sentences": list(looked.sentences),
     }
     if looked.explained is not None:
         found = looked.explained

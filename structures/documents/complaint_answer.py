@@ -22,6 +22,25 @@ NEXT: Final = (
 )
 
 
+def mark_sentences(explained: Explained) -> tuple[str, ...]:
+    """Say which measuring points of the well moved, and that the comparison allows for it.
+
+    People see the tape, not the level: from a raised parapet the same water reads deeper.
+    """
+    told = []
+    for one in explained.marks:
+        if one.well != explained.well:
+            continue
+        raised = one.change_m > 0.0
+        told.append(
+            f"The measuring point of {one.well} was {'raised' if raised else 'lowered'} by "
+            f"{abs(one.change_m):.2f} m before {one.day}: read from it the same water lies "
+            f"{abs(one.change_m):.2f} m {'deeper' if raised else 'higher'}. This is allowed for "
+            "above; whoever measures from the parapet sees it as well."
+        )
+    return tuple(told)
+
+
 def draft_answer(
     received_on: date, well: str, completed: date | None, explained: Explained | None
 ) -> str:
@@ -45,5 +64,5 @@ def draft_answer(
     lines.append(f"The wall was completed on {completed:%d %B %Y}.")
     if explained is None:
         return "\n\n".join([*lines, TOO_LITTLE, NEXT])
-    lines += [*explained.sentences(), NEXT]
+    lines += [*explained.sentences(), *mark_sentences(explained), NEXT]
     return "\n\n".join(lines)

@@ -34,12 +34,16 @@ LAST_MONTH: Final = 12
 
 @dataclass(frozen=True, slots=True)
 class Point:
-    """One reading: its level, or of a dry well that of its bottom; `doubted` is not decided yet."""
+    """One reading: its level, or of a dry well that of its bottom; `doubted` is not decided yet.
+
+    `pumped` says that the water was not at rest.
+    """
 
     day: date
     level_m: float
     dry: bool = False
     doubted: bool = False
+    pumped: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,6 +76,7 @@ WIDE: Final = Form(180.0, 15.0, 3.0, 16.0, 34.0, TEXT_MM, SMALL_MM, "dw-wide")
 NARROW: Final = Form(97.0, 14.0, 2.0, 14.0, 36.0, PHONE_TEXT_MM, PHONE_SMALL_MM, "dw-narrow")
 HEAD_MM: Final = 6.0  # room above the rain, and above each well for its name
 FOOT_MM: Final = 12.0
+LEAD_EM: Final = 1.5  # a line of words above everything, in heights of its letters
 
 
 def draw_hydrograph(
@@ -112,7 +117,9 @@ def draw_hydrograph(
     axis = _Axis(form, *_span(tracks, rain, completed, first, last))
     title = "Water levels of " + ", ".join(track.code for track in tracks)
     sheet = Sheet(name, form.width_mm, title, _describe(tracks, rain, completed), form.css)
-    top = _rain(sheet, axis, rain) if rain else 2.0
+    shown = completed is not None and axis.holds(completed)
+    lead = LEAD_EM * form.text_mm if shown else 0.0
+    top = _rain(sheet, axis, rain, lead) if rain else lead + 2.0
     bands = [
         _Band(axis, track, top + place * (form.well_mm + HEAD_MM))
         for place, track in enumerate(tracks)
@@ -120,8 +127,8 @@ def draw_hydrograph(
     for band in bands:
         band.draw(sheet)
     foot = bands[-1].foot
-    if completed is not None and axis.holds(completed):
-        _completion(sheet, axis, completed, 2.0, foot)
+    if shown:
+        _completion(sheet, axis, completed, foot)
     sheet.height_mm = _time(sheet, axis, foot, key=_key_of(tracks))
     return sheet.markup()
 
@@ -238,6 +245,8 @@ class _Band:
         run: list[tuple[float, float]] = []
         before: Point | None = None
         for one in self.points:
+            if one.pumped and not one.dry:
+                continue  # the water was drawn down: no part of how the well stood
             broken = one.dry or one.doubted
             far = before is not None and (one.day - before.day).days > GAP_DAYS
             if (broken or far) and run:
@@ -259,21 +268,26 @@ class _Band:
             if one.dry:
                 # The water stands below: an open mark that points down from the bottom of the well.
                 sheet.area([(x - DRY_MM, y), (x + DRY_MM, y), (x, y + 1.6 * DRY_MM)], "dry")
+            elif one.pumped:
+                for rise in (-DOT_MM, DOT_MM):
+                    sheet.line((x - DOT_MM, y - rise), (x + DOT_MM, y + rise), "p1")
             elif one.doubted:
                 sheet.circle((x, y), 1.6 * DOT_MM, "obs")
             else:
                 sheet.circle((x, y), DOT_MM, css)
 
 
-def _rain(sheet: Sheet, axis: _Axis, rain: Sequence[tuple[date, float | None]]) -> float:
+def _rain(
+    sheet: Sheet, axis: _Axis, rain: Sequence[tuple[date, float | None]], lead: float
+) -> float:
     """Hang the months' rain from the top edge; gives where the wells begin."""
     form = axis.form
     known = [mm for day, mm in rain if mm is not None and axis.holds(day)]
     step = round_step(max([*known, 10.0]) / 2.0)
     top_mm = math.ceil(max([*known, step]) / step) * step
     scale = form.rain_mm / top_mm
-    top = HEAD_MM - 1.0
-    sheet.text((0.4, 3.0), "rain, mm a month", "small quiet")
+    top = lead + HEAD_MM - 1.0
+    sheet.text((0.4, lead + 3.0), "rain, mm a month", "small quiet")
     sheet.line((form.left_mm, top), (axis.right, top), "p1")
     for place in range(1, round(top_mm / step) + 1):
         y = top + place * step * scale
@@ -299,12 +313,13 @@ def _next_month(day: date) -> date:
     return date(day.year, day.month + 1, 1)
 
 
-def _completion(sheet: Sheet, axis: _Axis, completed: date, top: float, foot: float) -> None:
+def _completion(sheet: Sheet, axis: _Axis, completed: date, foot: float) -> None:
+    """Draw the day of completion through all wells, its words on a line of their own above them."""
     x = axis.x(completed)
-    sheet.line((x, top), (x, foot), "event")
+    sheet.line((x, 1.0), (x, foot), "event")
     words = f"wall completed {completed:%d %b %Y}"
     left = x + width_mm(words, axis.form.text_mm) + 2.0 > axis.right
-    place = (x - 0.8 if left else x + 0.8, top + 1.4)
+    place = (x - 0.8 if left else x + 0.8, 1.1 * axis.form.text_mm)
     sheet.text(place, words, f"halo strong{' end' if left else ''}")
 
 
@@ -343,6 +358,8 @@ def _key_of(tracks: Sequence[Track]) -> list[str]:
     key = ["levels in m; no line across more than two months"]
     if any(one.dry for one in points):
         key.append("open mark down: dry, water below")
+    if any(one.pumped for one in points):
+        key.append("cross: pump running or just stopped")
     if any(one.doubted for one in points):
         key.append("ring: raw value, not decided")
     return key

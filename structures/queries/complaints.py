@@ -7,7 +7,7 @@ from datetime import date
 from typing import TYPE_CHECKING, Final
 
 from structures import access
-from structures.documents.complaint_answer import draft_answer
+from structures.documents.complaint_answer import draft_answer, mark_sentences
 from structures.models import Complaint, Well
 from structures.queries.wells_of_wall import completed_on, rain_of, readings_for, rules_of
 from structures.water.one_well import explain_well
@@ -29,6 +29,12 @@ class Looked:
     completed: date | None
     explained: Explained | None
     draft: str
+
+    @property
+    def sentences(self) -> tuple[str, ...]:
+        """What was measured, in plain words; none where the readings are too few."""
+        found = self.explained
+        return () if found is None else (*found.sentences(), *mark_sentences(found))
 
 
 def visible_complaints(user: User) -> QuerySet[Complaint]:

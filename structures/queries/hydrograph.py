@@ -20,6 +20,7 @@ if TYPE_CHECKING:
     from structures.models import User, Well
 
 WELLS_MOST: Final = 12
+MOVING: Final = (Reading.State.PUMPING, Reading.State.RECOVERING)
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,6 +80,7 @@ def _track(well: Well, readings: Sequence[Reading], marks: Sequence[MeasuringPoi
                 row.level_m,
                 row.dry,
                 row.standing == Reading.Standing.HELD,
+                row.state in MOVING,
             )
             for row in readings
             if row.level_m is not None

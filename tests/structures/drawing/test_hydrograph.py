@@ -53,6 +53,14 @@ def test_dry_readings_are_open_marks_and_break_the_line():
     assert "open mark down: dry, water below" in markup
 
 
+def test_a_pumped_reading_is_a_cross_beside_the_line():
+    pumped = Point(date(2024, 2, 20), 408.0, pumped=True)
+    points = sorted((*monthly([410.0, 410.2, 410.1]), pumped), key=lambda one: one.day)
+    markup = draw_hydrograph([Track("W1", "upstream", tuple(points))])
+    assert [len(line) for line in lines(markup)] == [3]
+    assert "cross: pump running or just stopped" in markup
+
+
 def test_a_level_that_is_doubted_and_impossible_does_not_flatten_the_drawing():
     slip = Point(date(2024, 4, 5), 12.0, doubted=True)
     track = Track("W1", "upstream", (*monthly([410.0, 410.6]), slip), (), 404.0, 415.0)

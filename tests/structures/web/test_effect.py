@@ -108,6 +108,14 @@ def test_a_well_gone_down_comes_out_as_drought_and_a_raised_parapet(client):
         answer_complaint(complaint_id=complaint.pk, text="More.", by=complaint.by)
 
 
+def test_a_raised_parapet_that_was_entered_is_told_as_well():
+    """Oracle: the district's files: mark M2 lies 400.05 - 399.45 = 0.60 m above M1."""
+    looked = look_into(a_complaint(a_demo_site()))
+    assert any("raised by 0.60 m" in one for one in looked.sentences)
+    assert "raised by 0.60 m" in looked.draft
+    assert looked.explained.rest.low_m <= 0.0 <= looked.explained.rest.high_m
+
+
 def test_a_complaint_without_a_well_gets_no_series_made_up():
     site = a_demo_site()
     looked = look_into(a_complaint(site, well=""))
