@@ -34,7 +34,6 @@ from structures.runs.queue import execute
 from tests import factories as make
 from tests.papers import a_paper, a_photo
 from tests.structures.web.office_money import money_value, seed_money
-from tests.structures.web.office_money import money_value, seed_money
 from tests.structures.wells import a_well, readings_of
 
 SOUNDING = {
