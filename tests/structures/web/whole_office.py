@@ -106,7 +106,6 @@ class Office:
             ("money-lines", "pk"): self.sanction.money_line.pk,
             ("moves", "to"): "walked",
             **money_value(self.site),
-            **money_value(self.site),
             ("as-built", "form"): "svg",
             ("strips", "number"): 1,
             ("strips", "kind"): "found-level",
@@ -154,7 +153,6 @@ def whole_office(word: str, price: str) -> Office:
     _trench(word, people, site)
     _wells(word, people, site)
     _lost_factor(word, people)
-    seed_money(word, price, people, site)
     seed_money(word, price, people, site)
     return Office(
         people=people,
