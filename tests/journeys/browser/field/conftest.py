@@ -22,6 +22,7 @@ SEED = """
 import json, os, django
 os.environ["DJANGO_SETTINGS_MODULE"] = "config.settings"
 django.setup()
+from tests.structures.wells import a_well, readings_of
 from tests.trench import DAY, TODAY, a_trench, dig, look
 trench = a_trench()
 for person in (trench.field, trench.engineer, trench.other):
@@ -30,6 +31,8 @@ for person in (trench.field, trench.engineer, trench.other):
 for number in (1, 2):
     strip = dig(trench, number)
     look(trench, day=TODAY, strip=strip)
+place = trench.structure.site
+readings_of(a_well(place.watershed, trench.field, site=place), trench.field)
 names = ("field", "engineer", "other")
 print(json.dumps({{name: getattr(trench, name).username for name in names}}))
 """
