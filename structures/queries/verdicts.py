@@ -14,13 +14,15 @@ from django.db.models import Case, CharField, OuterRef, Subquery, Value, When
 from django.db.models.functions import Coalesce
 
 from structures import access
+from structures.documents.effect_result import effect_json
 from structures.intake.readings import WellReading
 from structures.life.stages import COVERED, LINE
-from structures.life.verdict import Head, Limits, Measured, Suggestion, judge
+from structures.life.verdict import Head, Limits, Measured, Suggestion, from_readings, judge
 from structures.models import Entry, Reading, Verdict, Well
 from structures.queries.districts import today_of
 from structures.queries.runs import runs_of_kind, site_subject
 from structures.queries.settings import settings_in_force
+from structures.queries.wells_of_wall import wall_wells
 from structures.water.head import head_across
 from structures.water.rules import EffectRules
 
@@ -269,7 +271,12 @@ def _effect(site: Site) -> tuple[dict[str, Any] | None, date | None]:
         .first()
     )
     if run is None:
-        return None, None
+        compared = wall_wells(site)
+        if compared.effect is None:
+            return None, None
+        said = from_readings(compared.effect.measured, compared.effect.limits)
+        today = today_of(site.watershed.district)
+        return effect_json(compared.effect, said, compared.completed), today
     whole = run.result.get("effect") or run.result
     return (whole if "readings" in whole else None), run.created_at.date()
 
