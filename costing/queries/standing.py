@@ -186,7 +186,7 @@ def _of_the_option(
     if option is not None:
         known = {"cost_moves": True, "option_way": option.way}
     forecast = Forecast.objects.filter(structure=structure).order_by("-at").first()
-    known["revisions_missing"] = _revisions(structure, forecast, technical, administrative)
+    known["revisions_missing"] = _revisions(structure, forecast, option, technical, administrative)
     return known
 
 
@@ -212,16 +212,24 @@ def work_of(estimates: Iterable[int]) -> dict[int, dict[str, float | None]]:
 def _revisions(
     structure: Structure,
     forecast: Forecast | None,
+    option: OptionPaper | None,
     technical: Sanction | None,
     administrative: Sanction | None,
 ) -> tuple[str, ...]:
-    """Name what must be revised: given before the forecast, and passed by more than the setting."""
+    """Name what must be revised: given before the forecast, and passed by more than the setting.
+
+    Once a way is decided its own cost counts: a step costs less than the forecast.
+    """
     if forecast is None:
         return ()
     lines = settings_in_force(structure.site.watershed.district)
+    over = (forecast.technical_excess_percent, forecast.administrative_excess_percent)
+    if option is not None and option.way and option.forecast_id == forecast.pk:
+        way = next(one for one in option.ways["ways"] if one["way"] == option.way)
+        over = (way["technical_excess_percent"], way["administrative_excess_percent"])
     asked = (
-        (forecast.technical_excess_percent, "excess_technical_percent", technical),
-        (forecast.administrative_excess_percent, "excess_administrative_percent", administrative),
+        (over[0], "excess_technical_percent", technical),
+        (over[1], "excess_administrative_percent", administrative),
     )
     words = ("revised technical sanction", "revised administrative approval")
     return tuple(

@@ -203,6 +203,24 @@ def test_work_goes_on_once_the_sanction_is_revised(office):
     assert "strips go on" in Entry.objects.values_list("act", flat=True)
 
 
+def test_a_step_is_revised_by_its_own_cost(office):
+    """Oracle: ES-03 on the total of the step as the paper states it, not on that of the forecast."""
+    strip, _ = deeper(office)
+    shelf = float(drawn_wall(office.structure).level_m.min())
+    asked = Asked(shelf_m=shelf, reach_m=300.0, licensed_design="SD-14")
+    request_forecast(structure_id=office.structure.pk, by=office.engineer, asked=asked)
+    read_all()
+    paper = decide(office, OptionPaper.objects.get(), "step")
+    step = next(one for one in paper.ways["ways"] if one["way"] == "step")
+    sanction = Estimate.objects.get().total
+    over = (Decimal(step["total"]) - sanction) * 100 / sanction
+    missing = standing_of(office.structure).facts["revisions_missing"]
+    assert ("revised technical sanction" in missing) is (over > 5)
+    assert over < paper.forecast.technical_excess_percent
+    strip.refresh_from_db()
+    assert strip.halted is bool(missing)
+
+
 def test_closing_leaves_the_strips_on_hold(office):
     strip, _ = deeper(office)
     paper = decide(office, OptionPaper.objects.get(), "close")
