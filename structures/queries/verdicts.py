@@ -272,7 +272,7 @@ def _effect(site: Site) -> tuple[dict[str, Any] | None, date | None]:
     )
     if run is None:
         compared = wall_wells(site)
-        if compared.effect is None:
+        if compared.effect is None or not compared.effect.taken:  # nothing was read at rest
             return None, None
         said = from_readings(compared.effect.measured, compared.effect.limits)
         today = today_of(site.watershed.district)
