@@ -6,7 +6,6 @@ kept with the file.
 
 from __future__ import annotations
 
-from collections import Counter
 from dataclasses import dataclass, replace
 from datetime import date, datetime, time
 from typing import TYPE_CHECKING, Final
@@ -28,7 +27,7 @@ from structures.intake.sheet_columns import DATE, DEPTH, TIME, VALUE, WELL, prop
 from structures.intake.tree import Ledger, Node, shown
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Iterator, Mapping, Sequence
+    from collections.abc import Iterable, Iterator, Mapping
     from datetime import tzinfo
 
     from structures.intake.doubt import Doubt
@@ -36,7 +35,6 @@ if TYPE_CHECKING:
     from structures.intake.sheet_columns import Columns
 
 MONTH_DAY: Final = 15  # a column of a month names no day; its middle stands for it, and is told
-FEET_FROM: Final = 0.5  # share of cells with marks of feet from which the whole column is in feet
 YES: Final = "yes"
 KEPT_APART: Final = frozenset({"total", "average", "mean", "sum", "min", "max"})
 
@@ -537,8 +535,3 @@ def _no_depth(where: str) -> Finding:
 
 def _no_number(where: str, text: str) -> Finding:
     return Finding(where, "depth_m", f"{shown(text)} is not a number.", "Type the number.", "block")
-
-
-def headings_of(sheets: Sequence[Sheet]) -> Counter[str]:
-    """Give the headings of all tables with how often each stands there."""
-    return Counter(name for sheet in sheets for name in sheet.columns.headings if name)
