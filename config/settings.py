@@ -209,7 +209,7 @@ FILE_UPLOAD_PERMISSIONS = 0o640
 # --- Language and time ------------------------------------------------------------------------
 LANGUAGE_CODE = "en"
 LANGUAGES = [("en", "English")]
-LOCALE_PATHS = [ROOT / "locale"]
+LOCALE_PATHS = [ROOT / "config" / "locale"]
 USE_TZ = True
 TIME_ZONE = ENVIRONMENT.time_zone
 

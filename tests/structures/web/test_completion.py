@@ -17,7 +17,7 @@ from tests.factories import a_user
 from tests.trench import DAY, a_trench
 
 pytestmark = pytest.mark.django_db
-CATALOGUE = Path("locale/hi/LC_MESSAGES")
+CATALOGUE = Path("config/locale/hi/LC_MESSAGES")
 SHEET = Path("templates/structures/_handover_sheet.html")
 DEEPER_M = 0.4
 
