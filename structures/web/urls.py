@@ -6,6 +6,7 @@ from django.urls import path
 
 from structures.web import (
     accounts,
+    code_urls,
     completion_urls,
     delegation,
     entry,
@@ -90,6 +91,7 @@ urlpatterns = [
     path("runs/", runs.runs, name="runs"),
     path("runs/<uuid:run_id>/", runs.run, name="run"),
     path("runs/<uuid:run_id>/cancel/", runs.cancel, name="cancel-run"),
+    *code_urls.urlpatterns,
     *completion_urls.urlpatterns,
     *trench_urls.urlpatterns,
     *well_urls.urlpatterns,
