@@ -193,7 +193,7 @@ def test_another_district_sees_and_finds_nothing(site, as_user):
 
 
 def test_an_address_that_is_not_there_is_a_problem(client):
-    answer = client.get("/api/v1/strips/9")
+    answer = client.get("/api/v1/culverts/9")
     assert answer.status_code == 404
     assert answer["Content-Type"] == "application/problem+json"
 
