@@ -172,9 +172,7 @@ def moment(row: Node, zone: tzinfo, ledger: Ledger) -> datetime | None:
     return read_moment(node, zone, ledger)
 
 
-def dry_and_depth(
-    row: Node, ledger: Ledger, *, field: Field = DEPTH
-) -> tuple[bool, float | None]:
+def dry_and_depth(row: Node, ledger: Ledger, *, field: Field = DEPTH) -> tuple[bool, float | None]:
     """Read whether the well was dry and the depth; a blank is not read, never zero.
 
     A word for dry in the column of depths says dry and no depth; it is told. `field` is the depth
