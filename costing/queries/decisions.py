@@ -19,7 +19,7 @@ from structures.queries.season import clocks_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
-    from datetime import date, datetime
+    from datetime import date
     from decimal import Decimal
 
     from django.db.models import QuerySet
@@ -125,6 +125,7 @@ class WaitingPaper:
     pk: int
     site: Site
     name: str
+    since: date
     days: int
 
 
@@ -137,13 +138,20 @@ def waiting_papers(user: User) -> list[WaitingPaper]:
         state=Bill.State.HANDED_IN, structure__site__in=access.sites(user, Act.DECIDE_BILL)
     ).select_related("structure__site__watershed__district")
     found = [
-        *(_paper("option", one, one.cause, one.opened_at) for one in options),
-        *(_paper("bill", one, one.number, one.made_at) for one in bills),
+        *(_option(one) for one in options),
+        *(_bill(one) for one in bills),
     ]
     return sorted(found, key=lambda one: (one.kind != "option", -one.days))
 
 
-def _paper(kind: str, row: OptionPaper | Bill, name: str, since: datetime) -> WaitingPaper:
+def _option(paper: OptionPaper) -> WaitingPaper:
     # Both days are those of the clock on the wall: an invented district stands still on its own.
-    days = (timezone.localdate() - timezone.localdate(since)).days
-    return WaitingPaper(kind, row.pk, row.structure.site, name, days)
+    since = timezone.localdate(paper.opened_at)
+    days = (timezone.localdate() - since).days
+    return WaitingPaper("option", paper.pk, paper.structure.site, paper.cause, since, days)
+
+
+def _bill(bill: Bill) -> WaitingPaper:
+    site = bill.structure.site
+    days = (today_of(site.watershed.district) - bill.billed_on).days
+    return WaitingPaper("bill", bill.pk, site, bill.number, bill.billed_on, days)

@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
-from datetime import timedelta
 from typing import TYPE_CHECKING
 
-from django.utils import timezone
 from django.utils.translation import gettext as _
 
 from costing.queries.decisions import waiting, waiting_papers
@@ -24,15 +22,13 @@ def notices_of(user: User) -> list[Notice]:
 
 
 def _papers(user: User) -> Iterator[Notice]:
-    today = timezone.localdate()
     for one in waiting_papers(user):
-        since = today - timedelta(days=one.days)
         if one.kind == "option":
             said = _("Rock runs deeper: the option paper is open and its strips stand still.")
-            yield Notice(one.site.code, said, since, "costing:option", (one.pk,), hold=True)
+            yield Notice(one.site.code, said, one.since, "costing:option", (one.pk,), hold=True)
         else:
             said = _("Bill %(number)s waits to be decided.") % {"number": one.name}
-            yield Notice(one.site.code, said, since, "costing:bill", (one.pk,))
+            yield Notice(one.site.code, said, one.since, "costing:bill", (one.pk,))
 
 
 def _decisions(user: User) -> Iterator[Notice]:
