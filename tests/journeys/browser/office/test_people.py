@@ -104,4 +104,4 @@ def test_the_second_district_sees_nothing_of_the_first(desk, totals):
     for path in ("", "estimates/", "surveys/1/", "rock/", "try/", "edit/"):
         assert page.request.get(f"/sites/{PRICED}/{path}").status == 404
     page.goto("/sites/?q=Nolkurava")
-    expect(page.locator("main")).to_contain_text("No site is found.")
+    expect(page.locator("main")).to_contain_text("no site to show")
