@@ -58,7 +58,7 @@ def measure(page, item, quantity, strip=""):
 def test_a_piece_of_work_is_measured_checked_billed_held_decided_and_closed(desk):
     """Oracle: 2 x 3900.00 + 7 x 650.00 = 12,350.00 payable; 1.50 x 763.00 = 1,144.50 held."""
     maker, checker = desk("engineer-2", **PHONE), desk("engineer-3", **PHONE)
-    officer, field = desk("district-1", **PHONE), desk("field-1", **PHONE)
+    officer, field = desk("district-1", **PHONE), desk("field-5", **PHONE)
     agree(officer)
 
     for item, quantity, strip in (
@@ -120,4 +120,5 @@ def test_a_piece_of_work_is_measured_checked_billed_held_decided_and_closed(desk
     # Field staff see the book and no money.
     assert field.request.get(f"/sites/{CODE}/bills/").status == 404
     field.goto(f"/sites/{CODE}/measurements/")
+    expect(field.locator("main")).to_contain_text("marker")
     assert "INR" not in field.content()
