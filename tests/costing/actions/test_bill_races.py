@@ -2,12 +2,9 @@
 
 from __future__ import annotations
 
-import threading
-from concurrent.futures import ThreadPoolExecutor
 from decimal import Decimal
 
 import pytest
-from django.db import connection
 
 from costing.actions.bill_decisions import decide_bill, decide_held_line, mark_paid
 from costing.actions.bills import BillGiven, hand_in_bill, write_bill
@@ -16,6 +13,7 @@ from structures.actions.measurements import Work, enter_measurement
 from structures.errors import Refused
 from structures.models import MeasurementEntry
 from structures.queries.register import check_registers
+from tests.at_once import at_once
 from tests.costing.works_office import (
     SIGNED_IN,
     a_bill,
@@ -32,23 +30,6 @@ HANDS = 8
 @pytest.fixture
 def office():
     return a_works_office()
-
-
-def at_once(*acts):
-    """Do all of it at the same moment; give what each gave, or its refusal."""
-    gate = threading.Barrier(len(acts))
-
-    def go(act):
-        try:
-            gate.wait()
-            return act()
-        except Refused as refused:
-            return refused
-        finally:
-            connection.close()
-
-    with ThreadPoolExecutor(len(acts)) as hands:
-        return list(hands.map(go, acts))
 
 
 def done(answers):
