@@ -40,11 +40,11 @@ SEASON_FROM: Final = 2  # full water years a side for annual terms (handbook 10.
 
 @dataclass(frozen=True, slots=True)
 class Share:
-    """A part of a change with its range; ends are None where there is no more than one value."""
+    """A part of a change with its range; ends are None where none can be told."""
 
     change_m: float
-    low_m: float | None
-    high_m: float | None
+    low_m: float | None = None
+    high_m: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,7 +62,8 @@ class Explained:
 
     `change_m` = rain + measuring point + rest, negative where the water reads lower. `marks` are
     the moved measuring points that the readings name and that are allowed for already; `rain_mm`
-    the rain of the same months before and since.
+    the rain of the same months before and since. `dry` counts the pairs before and since in which
+    the well or the control wells were dry: with any, rain and rest are bounds without a range.
     """
 
     well: str
@@ -76,6 +77,7 @@ class Explained:
     controls: tuple[str, ...]
     marks: tuple[MovedMark, ...]
     rain_mm: tuple[float, float] | None = None
+    dry: tuple[int, int] = (0, 0)
 
     def sentences(self) -> tuple[str, ...]:
         """Say it in plain words, the largest matters first."""
@@ -84,6 +86,11 @@ class Explained:
             f"Since {self.since} {self.well} reads {abs(self.change_m):.2f} m {lower} than in the same "
             f"months before the wall ({self.pairs[0]} pairs before, {self.pairs[1]} since)."
         )
+        if any(self.dry):
+            change += (
+                f" {self.dry[0]} of the pairs before and {self.dry[1]} since were dry: there the water "
+                "stood lower than was read, nobody knows by how much."
+            )
         rain = (
             f"{_signed(self.rain.change_m)} m{_range(self.rain)} of it the control wells "
             f"{', '.join(self.controls)} made as well: the rain of these years."
@@ -107,6 +114,8 @@ class Explained:
         return tuple(said)
 
     def _verdict_of_rest(self) -> str:
+        if any(self.dry):
+            return "whether the wall has part in it is not known, as wells were dry."
         if self.rest.low_m is None or self.rest.low_m <= 0.0 <= self.rest.high_m:
             return "nothing that these readings can lay to the wall."
         way = "lower" if self.rest.high_m < 0.0 else "higher"
@@ -163,18 +172,22 @@ def explain_well(
     rest_m = change_m - rain_m - mark_m
     low, high = law.interval(rules.confidence)
     middle = law.quantile(0.5)
+    dry = tuple(int((pairs.bounded & (side > 0)).sum()) for side in (weight_before, weight_now))
+    bound = any(dry)
+    ends = _ends_of_controls(controls, own, pairs, completed, since, rules)
     return Explained(
         well,
         since,
         change_m,
-        Share(rain_m, *_ends_of_controls(controls, own, pairs, completed, since, rules)),
+        Share(rain_m) if bound else Share(rain_m, *ends),
         None if step is None else _mark(step, pairs, own, rules),
         mark_m,
-        Share(rest_m, rest_m + low - middle, rest_m + high - middle),
+        Share(rest_m) if bound else Share(rest_m, rest_m + low - middle, rest_m + high - middle),
         counts,
         pairs.control_wells,
         tuple(one for one in moved_marks(own) if one.day >= completed),
         None if rain is None else rain_of_like_months(rain, since, pairs.days[-1], completed),
+        dry,
     )
 
 

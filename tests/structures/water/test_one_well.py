@@ -112,6 +112,24 @@ def test_a_well_behind_the_wall_stands_higher_than_the_rain_explains():
     assert "the wall is one cause" in found.sentences()[-1]
 
 
+def test_of_a_well_that_ran_dry_the_rest_is_not_known():
+    """Law: a dry well stands lower than its bottom, so no rest may clear the wall."""
+    found = readings(new_mark=True)
+    dry = [
+        replace(one, dry=True) if one.well == "BI-W05" and one.day >= date(2026, 2, 1) else one
+        for one in found
+    ]
+    told = explain_well(dry, "BI-W05", COMPLETED, SINCE, EffectRules())
+    assert told.dry[0] == 0 < told.dry[1] < told.pairs[1]
+    assert (told.rest.low_m, told.rest.high_m, told.rain.low_m) == (None, None, None)
+    said = told.sentences()
+    assert f"0 of the pairs before and {told.dry[1]} since were dry" in said[0]
+    assert said[-1].endswith(
+        "is left: whether the wall has part in it is not known, as wells were dry."
+    )
+    assert explain_well(found, "BI-W05", COMPLETED, SINCE, EffectRules()).dry == (0, 0)
+
+
 def test_shares_that_were_put_in_come_back():
     """Oracle: all wells 0.7 m lower in the last year, this one 0.4 m lower since completion and
     read from 0.5 m higher for its last eighteen months.
