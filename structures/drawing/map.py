@@ -28,11 +28,13 @@ if TYPE_CHECKING:
     from structures.drawing.svg import Point
 
 Position = tuple[float, float]  # longitude, latitude in degrees, WGS 84
+Cell = tuple[int, int]  # of paper, BESIDE_MM wide and high: across, down
 
 EDGE_MM: Final = 6.0  # paper around what is drawn
 LEAST_SPAN_M: Final = 500.0  # [A] a lone site is shown with some land around it
 BAR_SHARE: Final = 0.2  # of the width, that the scale bar takes at least
 BESIDE_MM: Final = 0.6  # room that a stream's line takes
+TRIED: Final = 100  # [A] points of a stream, or up to twice as many, beside which its name is tried
 KM_M: Final = 1000.0  # exact
 COURSE: Final = "stream"  # in the key
 
@@ -120,12 +122,12 @@ def draw_map(
     for outline in outlines:
         for ring in outline.rings:
             sheet.area(on_paper.points(ring), "gap-wash p3")
-    beside: list[Box] = []
+    beside: set[Cell] = set()
     for run in runs:
         for line in run.lines:
             points = on_paper.points(line)
             sheet.path(points, "level-a")
-            beside += _along(points)
+            beside.update(_along(points))
     sites, wells = _apart(spots)
     for found in (wells, sites):  # where the two meet the site lies on top
         _marks(sheet, places, on_paper, found)
@@ -171,8 +173,7 @@ class _Paper:
 
 def _apart(spots: Sequence[Spot]) -> tuple[list[Spot], list[Spot]]:
     """Give the sites and the wells."""
-    wells = [spot for spot in spots if is_well(spot.stage)]
-    return [spot for spot in spots if spot not in wells], wells
+    return tuple([one for one in spots if is_well(one.stage) is well] for well in (False, True))
 
 
 def _marks(sheet: Sheet, places: Places, paper: _Paper, spots: Sequence[Spot]) -> None:
@@ -182,7 +183,7 @@ def _marks(sheet: Sheet, places: Places, paper: _Paper, spots: Sequence[Spot]) -
 
 
 def _name_spots(
-    sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, spots: Sequence[Spot]
+    sheet: Sheet, places: Places, beside: set[Cell], paper: _Paper, spots: Sequence[Spot]
 ) -> None:
     for (x, y), spot in zip(paper.points([one.position for one in spots]), spots, strict=True):
         strong = not is_well(spot.stage)
@@ -210,7 +211,7 @@ def _name_spots(
 
 
 def _name_outline(
-    sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, outline: Outline
+    sheet: Sheet, places: Places, beside: set[Cell], paper: _Paper, outline: Outline
 ) -> None:
     """Write the name where there is room inside the outline's box, from its middle outwards."""
     xs, ys = zip(*paper.points(outline.rings[0]), strict=True)
@@ -230,11 +231,12 @@ def _name_outline(
         sheet.text((label.x, label.y), label.lines[0], "halo quiet mid")
 
 
-def _name_run(sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, run: Run) -> None:
+def _name_run(sheet: Sheet, places: Places, beside: set[Cell], paper: _Paper, run: Run) -> None:
     """Write the stream's name beside its line where there is room, from its middle outwards."""
     points = paper.points(max(run.lines, key=len))
     middle = len(points) // 2
-    near = sorted(range(len(points)), key=lambda place: abs(place - middle))
+    tried = range(0, len(points), max(1, len(points) // TRIED))
+    near = sorted(tried, key=lambda place: abs(place - middle))
     label = _put(
         places,
         beside,
@@ -256,23 +258,31 @@ def _name_run(sheet: Sheet, places: Places, beside: list[Box], paper: _Paper, ru
         sheet.text((label.x, label.y), run.name, f"halo t-water{end}")
 
 
-def _put(places: Places, beside: list[Box], candidates: Iterable[Label]) -> Label | None:
+def _put(places: Places, beside: set[Cell], candidates: Iterable[Label]) -> Label | None:
     """Take the first free place, one off the streams before one over them."""
 
     def over(label: Label) -> bool:
         box = label.box(places.size_mm, places.step_mm)
-        return any(box.meets(one) for one in beside)
+        return any(
+            (across, down) in beside
+            for across in range(_cell(box.left), _cell(box.right) + 1)
+            for down in range(_cell(box.top), _cell(box.bottom) + 1)
+        )
 
     return places.put(sorted(candidates, key=over))
 
 
-def _along(points: Sequence[Point]) -> Iterator[Box]:
-    """Small boxes along a line, so that words keep off it."""
+def _along(points: Sequence[Point]) -> Iterator[Cell]:
+    """Give the cells of paper that a line runs through, so that words keep off it."""
     for (x1, y1), (x2, y2) in pairwise(points):
-        steps = max(1, round(math.hypot(x2 - x1, y2 - y1) / BESIDE_MM))
+        steps = max(1, math.ceil(2.0 * math.hypot(x2 - x1, y2 - y1) / BESIDE_MM))
         for step in range(steps + 1):
             x, y = (start + (stop - start) * step / steps for start, stop in ((x1, x2), (y1, y2)))
-            yield Box(x - BESIDE_MM / 2, y - BESIDE_MM / 2, x + BESIDE_MM / 2, y + BESIDE_MM / 2)
+            yield _cell(x), _cell(y)
+
+
+def _cell(place_mm: float) -> int:
+    return math.floor(place_mm / BESIDE_MM)
 
 
 def _foot(sheet: Sheet, paper: _Paper, spots: Sequence[Spot], *, streams: bool) -> float:

@@ -8,6 +8,7 @@ import pytest
 
 from structures.drawing.map import Outline, Run, Spot, draw_map
 from structures.drawing.map_marks import WELL_WORDS, WORDS, mark_of
+from structures.ground.course import COURSE_MOST
 from structures.ground.place import distance_m
 from structures.life.stages import STAGES
 from tests.structures.drawing.paper import read, shapes, words
@@ -65,6 +66,13 @@ def test_words_keep_off_the_stream_s_line(narrow):
     for word in found:
         for x, y in line:
             assert not (word.left < x < word.right and word.top < y < word.bottom), word
+
+
+def test_a_course_of_very_many_points_is_named_all_the_same():
+    """As many points as a course may have; a search over all of them would take minutes."""
+    course = tuple((77.41 + 4e-6 * n, 15.75 + 1.2e-6 * n) for n in range(COURSE_MOST))
+    root = read(draw_map([SHED], [Spot("OD-1", "", course[0], "noted")], [Run("Odre", (course,))]))
+    assert {"Odre", "OD-1"} <= {word.words for word in words(root)}
 
 
 def test_a_map_without_streams_explains_none():
