@@ -17,7 +17,7 @@ from structures.intake.doubt import Doubt
 from structures.intake.fields import DEPTH_MOST_M
 from structures.intake.reading_checks import JUMP_FROM, JUMP_LEAST_M, JUMP_TIMES, ZERO_BESIDE_M
 from structures.units import FOOT_M
-from structures.water.marks import level_below_m, mark_on
+from structures.water.marks import level_below_m, mark_on, moved_m
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
@@ -221,9 +221,9 @@ def _mark(sent: Sent, well: WellFacts, mark: Mark | None) -> Iterable[Doubt]:
 
 
 def _higher(old: Mark, new: Mark) -> str:
-    if old.level_m is None or new.level_m is None:
+    step_m = moved_m(old, new)
+    if step_m is None:
         return ""
-    step_m = new.level_m - old.level_m
     return f" ({abs(step_m):.2f} m {'higher' if step_m > 0 else 'lower'})"
 
 
@@ -259,10 +259,10 @@ def _depth(sent: Sent, well: WellFacts, mark: Mark | None, past: Past) -> Iterab
     surprises = expected is not None and level_m is not None and not expected.holds(level_m)
     if not too_deep and not surprises:
         return
-    as_level = None if mark is None or mark.level_m is None else mark.level_m - depth_m
-    if too_deep and as_level is not None and _inside(as_level, bottom, expected, mark):
-        what = f"{raw} looks like a level, not a depth. As a depth it would be {as_level:.2f} m."
-        yield say("LV-09", what=what, remedy="Decide.", suggested=f"{as_level:.2f}")
+    # A level below the mark and a depth below it are the same difference, so one is the other.
+    if too_deep and level_m is not None and _inside(level_m, bottom, expected, mark):
+        what = f"{raw} looks like a level, not a depth. As a depth it would be {level_m:.2f} m."
+        yield say("LV-09", what=what, remedy="Decide.", suggested=f"{level_m:.2f}")
         return
     for factor, rule, words in SLIPS:
         fits = depth_m * factor
