@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Final
 
 from structures.life.cautions import caution
+from structures.units import DAYS_PER_YEAR
 
 if TYPE_CHECKING:
     from structures.intake.rain import Rain
@@ -64,7 +65,7 @@ def doubts(
     trend = rivals.trend
     if trend is not None and trend.p_two_sided < SURE_TREND_P:
         span = pairs.middle_day[pairs.after].mean() - pairs.middle_day[~pairs.after].mean()
-        drift_m = trend.m_per_year * span / 365.25
+        drift_m = trend.m_per_year * span / DAYS_PER_YEAR
         if abs(drift_m) >= rules.least_effect_m / 2.0:
             told.append(
                 caution("effect-trend-before", m_per_year=trend.m_per_year, drift_m=drift_m)

@@ -28,7 +28,6 @@ if TYPE_CHECKING:
     from structures.water.serial import Mixture
 
 SERIAL_FROM: Final = 24  # pairs; with fewer, serial correlation is not judged (handbook 10.2)
-SEASON_FROM: Final = 2  # full water years a side for annual terms (handbook 10.5)
 DRY_MOST: Final = 1 / 20  # share of dry pairs up to which they are left out (handbook 10.1)
 MORE_YEARS: Final = 2  # of readings, for what they would show
 
@@ -89,10 +88,7 @@ def estimate_step(
     if not fitted and used.sum() < SERIAL_FROM:
         told.append(caution("effect-serial-not-judged", count=int(used.sum()), least=SERIAL_FROM))
         return _pooled(pairs, used, rules), tuple(told)
-    seasons = min(len(pairs.full_before), len(pairs.full_after)) >= SEASON_FROM
-    columns = np.column_stack(
-        [np.ones(used.size), pairs.after, *(pairs.season().T if seasons else ())]
-    )
+    columns = np.column_stack([np.ones(used.size), pairs.after, pairs.annual_terms()])
     short = find_filling(pairs, columns, completed, rules)
     if short is None:
         return _serial(pairs, used, columns, rules, rng), tuple(told)

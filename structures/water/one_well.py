@@ -35,7 +35,6 @@ if TYPE_CHECKING:
 LEAST_PAIRS: Final = 4  # of the time complained of, and before completion (project choice)
 MONTHS: Final = 12
 YEARS_BACK: Final = 60  # of records of a gauge
-SEASON_FROM: Final = 2  # full water years a side for annual terms (handbook 10.5)
 
 
 @dataclass(frozen=True, slots=True)
@@ -239,9 +238,7 @@ def _step_and_rest(pairs: Pairs, completed: date) -> tuple[Step | None, Mixture]
     """Fit well less controls: a step at completion, one at a day nobody named, annual terms."""
     values, after = pairs.difference_m, pairs.after.astype(float)
     time = in_median_gaps(pairs.middle_day)
-    seasons = min(len(pairs.full_before), len(pairs.full_after)) >= SEASON_FROM
-    season = pairs.season() if seasons else np.empty((values.size, 0))
-    columns = np.column_stack([np.ones(values.size), after, season])
+    columns = np.column_stack([np.ones(values.size), after, pairs.annual_terms()])
     step = find_step(time, columns, values, barred=near_completion(pairs.middle_day, completed))
     design = SerialDesign(time, columns if step is None else step.columns)
     return step, design.mixture(values, 1)

@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 
 from structures.arrays import frozen
+from structures.units import DAYS_PER_YEAR
 from structures.water.half_months import gather_side
 
 if TYPE_CHECKING:
@@ -21,7 +22,7 @@ if TYPE_CHECKING:
     from structures.water.half_months import Side, Stretch, WellHalf
     from structures.water.rules import EffectRules
 
-DAYS_OF_YEAR: Final = 365.25
+SEASON_FROM: Final = 2  # full water years a side for annual terms (handbook 10.5)
 NO_PARTNER: Final = "no well of the other kind read in that half month"
 BOTH_DRY: Final = "dry on both sides"
 OTHER_SEASON: Final = "month without a pair on the other side of completion"
@@ -74,8 +75,16 @@ class Pairs:
 
     def season(self) -> NDArray[np.float64]:
         """Annual cosine and sine at the pairs; shape (n, 2)."""
-        angle = 2.0 * np.pi * self.middle_day / DAYS_OF_YEAR
+        angle = 2.0 * np.pi * self.middle_day / DAYS_PER_YEAR
         return np.column_stack([np.cos(angle), np.sin(angle)])
+
+    def annual_terms(self) -> NDArray[np.float64]:
+        """Give the season where both sides are long enough to tell it, else no column.
+
+        Source: handbook 10.5.
+        """
+        long = min(len(self.full_before), len(self.full_after)) >= SEASON_FROM
+        return self.season() if long else np.empty((len(self.days), 0))
 
 
 def make_pairs(readings: Sequence[WellReading], completed: date, rules: EffectRules) -> Pairs:

@@ -7,13 +7,13 @@ from typing import TYPE_CHECKING, Final
 import numpy as np
 from scipy.special import stdtrit
 
+from structures.units import DAYS_PER_YEAR
 from structures.water.serial import SerialDesign
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
 FOUND_SHARE: Final = 0.80  # an effect of this size is found 4 times in 5 (handbook 10.10)
-DAYS_OF_YEAR: Final = 365.25
 
 
 def smallest_seen_m(half_width_m: float, degrees: float, confidence: float) -> float:
@@ -50,10 +50,10 @@ def widening(
         How many more.
     """
     gap = float(np.median(np.diff(days)))
-    more = days[-1] + np.arange(gap, years * DAYS_OF_YEAR, gap)
-    last = np.flatnonzero(days > days[-1] - DAYS_OF_YEAR)
+    more = days[-1] + np.arange(gap, years * DAYS_PER_YEAR, gap)
+    last = np.flatnonzero(days > days[-1] - DAYS_PER_YEAR)
     apart = np.abs(
-        (more[:, None] - days[None, last] + DAYS_OF_YEAR / 2) % DAYS_OF_YEAR - DAYS_OF_YEAR / 2
+        (more[:, None] - days[None, last] + DAYS_PER_YEAR / 2) % DAYS_PER_YEAR - DAYS_PER_YEAR / 2
     )
     rows = design.columns[last[np.argmin(apart, axis=1)]]
     longer = np.concatenate([days, more])

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Final
 
 import numpy as np
 
+from structures.units import DAYS_PER_YEAR
 from structures.water.pairs import make_pairs
 from structures.water.rain_share import (
     PairedYears,
@@ -38,7 +39,6 @@ MARK_MOVED_M: Final = 0.001  # less is rounding of the same mark
 # comes with the first rains and not in a day (project choice).
 WORKS_DAYS: Final = 90
 FILLING_DAYS: Final = 366
-DAYS_OF_YEAR: Final = 365.25
 TREND_LEAST: Final = 12  # pairs before completion for a word on their trend (project choice)
 
 
@@ -204,6 +204,6 @@ def _trend(pairs: Pairs) -> TrendBefore | None:
     if wet.sum() < TREND_LEAST:
         return None
     return TrendBefore(
-        median_slope(pairs.middle_day[wet] / DAYS_OF_YEAR, pairs.difference_m[wet]),
+        median_slope(pairs.middle_day[wet] / DAYS_PER_YEAR, pairs.difference_m[wet]),
         mann_kendall(pairs.difference_m[before], pairs.below[before]).p_two_sided,
     )
