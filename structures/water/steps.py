@@ -21,7 +21,7 @@ LOOKED_AT: Final = slice(0, None, 10)  # every tenth coefficient of the grid pic
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Step:
-    """A step that starts with pair `first`; `law` is its distribution at that day, `place` its column."""
+    """A step that starts with pair `first`; `law` is its distribution, its column the last one."""
 
     first: int
     law: Mixture
