@@ -25,6 +25,8 @@ if TYPE_CHECKING:
 
 GAP_DAYS: Final = 62  # two months: a longer silence is a gap, not a line (look of the drawings)
 LEAST_RISE_M: Final = 1.0  # [A] a quiet well is drawn on a metre of height
+SANE_BELOW_M: Final = 0.5  # [A] below the bottom, or above the ground, a doubted level
+SANE_ABOVE_M: Final = 2.0  # farther outside the well is not drawn
 LEVEL_LINES: Final = 4
 YEARS_FEW: Final = 4  # up to so many years months are told on the axis
 DOT_MM: Final = 0.45
@@ -196,9 +198,9 @@ class _Band:
         track = self.track
         if not one.doubted:
             return True
-        low = track.bottom_m if track.bottom_m is not None else -math.inf
-        high = track.ground_m + 2.0 if track.ground_m is not None else math.inf
-        return low - 0.5 <= one.level_m <= high
+        low = -math.inf if track.bottom_m is None else track.bottom_m - SANE_BELOW_M
+        high = math.inf if track.ground_m is None else track.ground_m + SANE_ABOVE_M
+        return low <= one.level_m <= high
 
     def y(self, level_m: float) -> float:
         return self.foot - (level_m - self.low) * self.mm_per_m
@@ -370,10 +372,10 @@ def _describe(
 ) -> str:
     parts = []
     for track in tracks:
-        wet = [one.level_m for one in track.points if not (one.dry or one.doubted)]
+        wet = [one.level_m for one in track.points if not (one.dry or one.doubted or one.pumped)]
         dry = sum(one.dry for one in track.points)
         if not wet:
-            parts.append(f"{track.code}: {dry} dry readings, none with a level.")
+            parts.append(f"{track.code}: {dry} dry readings, none with a level at rest.")
             continue
         reach = f"{track.points[0].day} to {track.points[-1].day}"
         parts.append(

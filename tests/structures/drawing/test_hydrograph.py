@@ -59,6 +59,7 @@ def test_a_pumped_reading_is_a_cross_beside_the_line():
     markup = draw_hydrograph([Track("W1", "upstream", tuple(points))])
     assert [len(line) for line in lines(markup)] == [3]
     assert "cross: pump running or just stopped" in markup
+    assert "410.00 to 410.20 m" in markup  # in words as in the line: the well at rest
 
 
 def test_a_level_that_is_doubted_and_impossible_does_not_flatten_the_drawing():
