@@ -20,9 +20,9 @@ if TYPE_CHECKING:
 LEVEL_LINES: Final = 5  # lines of level on the sheet, about
 TOP_MM: Final = 9.0  # room for the numbers of the strips
 FOOT_MM: Final = 13.0
-LEAST_RISE_M: Final = 1.0
+LEAST_RISE_M: Final = 1.0  # [A] a flat bed is drawn on a metre of height
 TICK_MM: Final = 1.6  # half the length of a level that was found
-LEAST_WORD_MM: Final = 8.0  # a narrower strip shows its number alone
+TURNED_MM: Final = 12.0  # in a narrower strip the word stands upright
 WORDS: Final = {"not begun": "", "open": "open", "halted": "halted", "covered": "covered"}
 
 
@@ -219,7 +219,7 @@ def _strip(sheet: Sheet, frame: _Frame, strip: StripDrawn) -> None:
     word = "unseen" if strip.unseen else WORDS[strip.stands]
     if word:
         style = "mid small t-stop halo" if pen == "change" else "mid small halo"
-        turned = right - left < LEAST_WORD_MM + 4.0
+        turned = right - left < TURNED_MM
         place = (middle + (0.8 if turned else 0.0), frame.foot - 2.0)
         sheet.text(
             place, word, style.replace("mid ", "") if turned else style, turn=-90 if turned else 0
