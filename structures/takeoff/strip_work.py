@@ -14,6 +14,7 @@ if TYPE_CHECKING:
     from collections.abc import Iterable
 
     from structures.intake.pack import WallSettings
+    from structures.takeoff.dewatering import Pumping
     from structures.wall.cutoff import Cutoff
 
 # Measured once for the wall and not strip by strip.
@@ -73,5 +74,6 @@ def wall_work(
     return (pumped, *(one for one in listed if one.item in OF_THE_WALL[1:]))
 
 
-def _dry(cutoff: Cutoff):
+def _dry(cutoff: Cutoff) -> Pumping:
+    """Pumping of nothing: hours are those of the day sheets."""
     return plan_pumping(cutoff, GroundWater(), Works(pump_hours=0.0))
