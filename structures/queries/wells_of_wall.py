@@ -79,7 +79,8 @@ def wall_wells(site: Site) -> WallWells:
     waiting = sum(one.left_out == OUT[Reading.Standing.HELD] for one in readings)
     if completed is None:
         return WallWells(None, tuple(wells), readings, rain, rules, None, None, None, waiting)
-    affected = [one for one in readings if one.well in _compared(wells, site)]
+    compared = _compared(wells, site)
+    affected = [one for one in readings if one.well in compared]
     effect = measure_effect(affected, completed, rain=rain, rules=rules)
     pipes = pair_of_pipes(wells, site)
     head = None
